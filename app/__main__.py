@@ -1,0 +1,6 @@
+"""``python -m app VERB``."""
+
+from app.cli import main
+
+if __name__ == "__main__":
+    raise SystemExit(main())
