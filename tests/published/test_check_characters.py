@@ -1,0 +1,9 @@
+"""ISO/IEC 7064 MOD 37-2 against a published string."""
+
+from app.compliance.codes import check_character
+
+
+def test_a_published_donation_number():
+    """G1234 89 654321 has the check character Y: documentation of the open library python-stdnum, iso7064.mod_37_2."""
+    assert check_character("G123489654321") == "Y"
+
