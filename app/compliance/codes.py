@@ -84,7 +84,8 @@ def make(body: str) -> str:
     check_with = check_character(body)
     if check_with not in ALPHABET:
         raise InputError(
-            "This body is never issued.", {"body": ["its check character could be misread: take the next body"]}
+            "This body is never issued.",
+            {"body": ["its check character could be misread: take the next body"]},
         )
     return body + check_with
 

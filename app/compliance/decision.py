@@ -49,6 +49,7 @@ from app.errors import InputError
 Status = Literal["ok", "below", "over", "disagree"]
 Word = Literal["within", "above", "undecided", "no limit"]
 State = Literal["pass", "conditional pass", "conditional fail", "fail"]
+NO_LIMIT = "No limit was in force on the day of the sample."
 
 
 @dataclass(frozen=True)
@@ -165,7 +166,9 @@ def rule_named(
         If the rule is unknown or the factor is negative.
     """
     if name not in RULES:
-        raise InputError("This decision rule is not known.", {"decision_rule": [f"one of {', '.join(RULES)}"]})
+        raise InputError(
+            "This decision rule is not known.", {"decision_rule": [f"one of {', '.join(RULES)}"]}
+        )
     rule = RULES[name]
     if guard_factor is not None:
         need_number("guard_factor", guard_factor, least=0)
@@ -303,6 +306,18 @@ def _why(outcome: Outcome, limit: Limit, word: Word) -> str:
     return f"{shown} is {'equal to' if equal else 'within'} {named}{', which complies' if equal else ''}."
 
 
+def _risk(outcome: Outcome, limit: Limit) -> float | None:
+    if outcome.status != "ok" or outcome.value is None or outcome.u is None:
+        return None
+    return probability_above(outcome.value, outcome.u, limit.value, outcome.dof)
+
+
+def _state(outcome: Outcome, limit: Limit, width: float | None) -> State | None:
+    if outcome.status != "ok" or outcome.value is None or width is None:
+        return None
+    return four_state(outcome.value, limit.value, width)
+
+
 def decide(outcome: Outcome, limit: Limit | None, rule: DecisionRule = SIMPLE) -> Verdict:
     """Hold one result against one limit.
 
@@ -325,9 +340,9 @@ def decide(outcome: Outcome, limit: Limit | None, rule: DecisionRule = SIMPLE) -
         If the units differ, or a guarded rule meets a number without the
         uncertainty its guard band needs.
     """
-    told = {"rule": rule.words, "rule_name": rule.name, "rule_source": rule.source}
+    blank = Verdict("no limit", NO_LIMIT, rule.words, rule.name, rule.source)
     if limit is None:
-        return Verdict("no limit", "No limit was in force on the day of the sample.", **told)
+        return blank
     if outcome.unit != limit.unit:
         words = f"must be in {limit.unit}, as the limit is, not in {outcome.unit}"
         raise InputError("The result and its limit are in different units.", {"unit": [words]})
@@ -336,11 +351,10 @@ def decide(outcome: Outcome, limit: Limit | None, rule: DecisionRule = SIMPLE) -
         raise InputError("A guarded rule needs the uncertainty.", {rule.guard_of: ["is missing"]})
     accept, reject = _edges(limit, rule, width)
     word = _word(outcome, accept, reject)
-    measured = outcome.value if outcome.status == "ok" else None
-    return Verdict(
-        word,
-        _why(outcome, limit, word),
-        **told,
+    return replace(
+        blank,
+        verdict=word,
+        why=_why(outcome, limit, word),
         basis=limit.basis,
         limit=limit.value,
         unit=limit.unit,
@@ -349,14 +363,8 @@ def decide(outcome: Outcome, limit: Limit | None, rule: DecisionRule = SIMPLE) -
         guard_band=width,
         accept_up_to=float(accept),
         reject_above=float(reject),
-        probability_above=(
-            None
-            if measured is None or outcome.u is None
-            else probability_above(measured, outcome.u, limit.value, outcome.dof)
-        ),
-        four_state=(
-            None if measured is None or width is None else four_state(measured, limit.value, width)
-        ),
+        probability_above=_risk(outcome, limit),
+        four_state=_state(outcome, limit, width),
     )
 
 

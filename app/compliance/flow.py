@@ -184,9 +184,7 @@ def parshall(size: str) -> Device:
     """
     if size in SMALL_FLUMES:
         a, n, low, high, submergence = SMALL_FLUMES[size]
-        return Device(
-            f"Parshall flume {size}", f"Q = {a} Ha^{n}", lambda h: a * h**n, low, high, submergence
-        )
+        return Device(f"Parshall flume {size}", f"Q = {a} Ha^{n}", lambda h: a * h**n, low, high, submergence)
     if size not in LARGE_FLUMES:
         known = ", ".join([*SMALL_FLUMES, *LARGE_FLUMES])
         raise InputError("No rating is known for this flume.", {"size": [f"must be one of {known}"]})
@@ -299,7 +297,9 @@ def bucket_and_watch(volume: float, unit: str, seconds: float) -> Flow:
     return Flow("ok", volume * VOLUMES_L[unit] / seconds, "Q = volume / time")
 
 
-def totalizer_volume(start: int, end: int, *, digits: int, multiplier: float = 1.0, rolled: bool = True) -> float:
+def totalizer_volume(
+    start: int, end: int, *, digits: int, multiplier: float = 1.0, rolled: bool = True
+) -> float:
     """Return the volume between two readings of a totalizer.
 
     Parameters
@@ -325,7 +325,7 @@ def totalizer_volume(start: int, end: int, *, digits: int, multiplier: float = 1
         If a reading does not fit the register, or the end is smaller and no
         rollover was meant.
     """
-    size = 10**digits
+    size: int = 10**digits
     for name, reading in (("start", start), ("end", end)):
         if not 0 <= reading < size:
             raise InputError("The reading does not fit the register.", {name: [f"needs 0 to {size - 1}"]})

@@ -271,11 +271,15 @@ def _temperature(receipt: Receipt, rule: Preservation) -> Finding | None:
     if t <= 0:
         words = f"At {plain(t)} degrees C the sample may have been frozen."
         return Finding("temperature", "qualified", words, "T")
-    same_day = receipt.received_at.astimezone(UTC) - receipt.collected_end.astimezone(UTC) < timedelta(hours=24)
+    same_day = receipt.received_at.astimezone(UTC) - receipt.collected_end.astimezone(UTC) < timedelta(
+        hours=24
+    )
     if receipt.on_ice and same_day:
         words = f"{plain(t)} degrees C, on ice and cooling since its collection today."
         return Finding("temperature", "accepted", words)
-    words = f"{plain(t)} degrees C is above {plain(rule.cool_to_c)}; a fresh sample is preferred for compliance."
+    words = (
+        f"{plain(t)} degrees C is above {plain(rule.cool_to_c)}; a fresh sample is preferred for compliance."
+    )
     return Finding("temperature", "qualified", words, "T")
 
 
@@ -327,7 +331,7 @@ def _identity(receipt: Receipt, rule: Preservation) -> Finding | None:
 def _custody(receipt: Receipt, rule: Preservation) -> Finding | None:
     if receipt.seal != "broken":
         return None
-    words = "The seal is broken: not for enforcement; it may serve for trend and charges if the coordinator says so."
+    words = "The seal is broken: not for enforcement; for trend and charges only if the coordinator says so."
     return Finding("seal", "rejected", words, "K")
 
 

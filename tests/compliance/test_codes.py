@@ -28,7 +28,7 @@ def valid(text: str) -> bool:
 
 
 def test_every_single_slip_is_caught_at_every_position():
-    """d * 2**i is never 0 modulo 37: proven over all pairs of printed characters and all six positions."""
+    """D * 2**i is never 0 modulo 37: proven over all pairs of printed characters and all six positions."""
     value = STANDARD.index
     for a, b in permutations(ALPHABET, 2):
         for i in range(LENGTH):
@@ -40,13 +40,16 @@ def test_every_swap_of_neighbours_is_caught_at_every_position():
     value = STANDARD.index
     for a, b in permutations(ALPHABET, 2):
         for i in range(LENGTH - 1):
-            before, after = value(a) * 2 ** (i + 1) + value(b) * 2**i, value(b) * 2 ** (i + 1) + value(a) * 2**i
+            before, after = (
+                value(a) * 2 ** (i + 1) + value(b) * 2**i,
+                value(b) * 2 ** (i + 1) + value(a) * 2**i,
+            )
             assert (before - after) % 37 != 0
 
 
 @pytest.mark.parametrize("code", SAMPLE)
 def test_no_slip_or_swap_of_a_real_code_passes(code):
-    """All 6 x 26 substitutions and all swaps of unlike neighbours of a real code are refused by the real check."""
+    """All 6 x 26 substitutions and all swaps of unlike neighbours of a real code are refused."""
     assert check(code) == code
     for i in range(LENGTH):
         for other in ALPHABET:
@@ -57,7 +60,7 @@ def test_no_slip_or_swap_of_a_real_code_passes(code):
 
 
 def test_nothing_that_is_misread_is_printed():
-    """Of each group of twins at most one character is in the alphabet, and the alphabet is a part of the standard's."""
+    """Of each group of twins at most one character is used, and all stand in the standard's set."""
     for twins in ("0O", "1IL", "2Z", "5S", "8B", "UV"):
         assert sum(c in ALPHABET for c in twins) <= 1
     assert set(ALPHABET) < set(STANDARD)
@@ -72,7 +75,7 @@ def test_the_check_character_is_the_standards(text):
 
 
 def test_there_are_enough_codes():
-    """More than ten million bodies have a printable check character: counted by their remainders modulo 37."""
+    """More than ten million bodies have a printable check character: counted by remainders modulo 37."""
     ways = {0: 1}
     for _ in range(LENGTH - 1):
         step: dict[int, int] = {}
@@ -148,7 +151,9 @@ def test_the_vectors_are_what_the_server_says():
             assert caught.value.fields["bottle"] == [problem]
 
 
-@pytest.mark.skipif(shutil.which("node") is None, reason="node is not on the path: the tablet's side was not run")
+@pytest.mark.skipif(
+    shutil.which("node") is None, reason="node is not on the path: the tablet's side was not run"
+)
 def test_the_tablet_reads_codes_as_the_server_does(tmp_path):
     """The client's module, run by node on the shared vectors."""
     script = tmp_path / "run.mjs"

@@ -6,7 +6,16 @@ import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 
-from app.compliance.decision import GUARDED, GUARDED_REJECTION, RULES, SIMPLE, Outcome, decide, decide_all, rule_named
+from app.compliance.decision import (
+    GUARDED,
+    GUARDED_REJECTION,
+    RULES,
+    SIMPLE,
+    Outcome,
+    decide,
+    decide_all,
+    rule_named,
+)
 from app.compliance.limits import Limit
 from app.errors import InputError
 
@@ -61,7 +70,10 @@ def test_no_limit_is_its_own_word():
 def test_each_basis_of_the_same_unit_gets_its_verdict():
     """A mass limit is not held against a concentration."""
     found = decide_all(Outcome("ok", 800), [LIMIT, MONTH, MASS], date(2031, 5, 1))
-    assert [(v.basis, v.verdict) for v in found] == [("daily_maximum", "within"), ("monthly_average", "above")]
+    assert [(v.basis, v.verdict) for v in found] == [
+        ("daily_maximum", "within"),
+        ("monthly_average", "above"),
+    ]
 
 
 def test_units_must_agree():
@@ -91,10 +103,12 @@ def test_a_programmes_own_guard_band_is_named_as_such():
 
 @given(value=st.integers(0, 6000), u=st.integers(1, 500), limit=LIMIT_VALUES)
 def test_guarding_one_side_never_helps_the_other(value, u, limit):
-    """Guarded acceptance states "within" no oftener, guarded rejection "above" no oftener, than the simple rule."""
+    """Guarded acceptance says "within" no oftener, guarded rejection "above" no oftener, than simple."""
     outcome = Outcome("ok", value, u=u, expanded_u=2 * u)
     held = Limit("daily_maximum", limit, date(2030, 1, 1), "permit")
-    plain, sewer, discharger = (decide(outcome, held, r).verdict for r in (SIMPLE, GUARDED, GUARDED_REJECTION))
+    plain, sewer, discharger = (
+        decide(outcome, held, r).verdict for r in (SIMPLE, GUARDED, GUARDED_REJECTION)
+    )
     assert plain == ("above" if value > limit else "within")
     assert sewer in {"within": ("within", "undecided"), "above": ("above",)}[plain]
     assert discharger in {"above": ("above", "undecided"), "within": ("within",)}[plain]
@@ -105,7 +119,9 @@ def test_a_larger_value_never_looks_better(value, u, limit, rule):
     """Verdicts are monotone in the value, and the probability with them."""
     order = ["within", "undecided", "above"]
     held = Limit("daily_maximum", limit, date(2030, 1, 1), "permit")
-    low, high = (decide(Outcome("ok", v, u=u, expanded_u=2 * u), held, RULES[rule]) for v in (value, value * 1.5))
+    low, high = (
+        decide(Outcome("ok", v, u=u, expanded_u=2 * u), held, RULES[rule]) for v in (value, value * 1.5)
+    )
     assert order.index(low.verdict) <= order.index(high.verdict)
     assert low.probability_above <= high.probability_above
 

@@ -4,7 +4,15 @@ from datetime import date
 
 import pytest
 
-from app.compliance.decision import GUARDED, GUARDED_REJECTION, SIMPLE, Outcome, decide, probability_above, rule_named
+from app.compliance.decision import (
+    GUARDED,
+    GUARDED_REJECTION,
+    SIMPLE,
+    Outcome,
+    decide,
+    probability_above,
+    rule_named,
+)
 from app.compliance.limits import Limit
 
 LIMIT = Limit("daily_maximum", 1000, date(2030, 1, 1), "permit 7, page 3")

@@ -1,0 +1,411 @@
+"""What a run leaves behind: mercury, chromium, silver and acid from recipe times tubes.
+
+Mass follows from concentration and volume alone, so nothing is weighed and
+nothing forgotten. Process knowledge suffices to call the digest hazardous
+(40 CFR 262.11); the determination remains the generator's. Thresholds, clocks
+and categories are settings; the federal numbers are their defaults and are
+shown as such, and state and local rules decide.
+
+Volume and mass count the liquid only. What a tube of glass adds is left to the
+programme's own container record.
+
+References
+----------
+40 CFR 261.22 and 261.24 (characteristics), 262.13 to 262.17 (categories and
+accumulation), 268.40 (mercury subcategories).
+"""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Iterable, Mapping
+from dataclasses import dataclass, fields
+from datetime import date, timedelta
+from typing import Literal
+
+from app.errors import InputError
+
+SILVER_IN_SULFATE = 0.691923
+SULFURIC_ACID_G_PER_MOL = 98.079
+FEDERAL_NOTE = "Federal default (40 CFR); state and local rules decide."
+GALLON_L = 3.785411784
+
+
+@dataclass(frozen=True)
+class Assumptions:
+    """What the recipe does not say about its liquids; settings, printed with the totals.
+
+    Parameters
+    ----------
+    acid_density_g_ml, acid_assay : float
+        Concentrated sulfuric acid.
+    digestion_acid_ml_per_l : float
+        Concentrated acid in a litre of digestion solution (EPA 410.4 and
+        Standard Methods 5220 D: 167 mL; from memory).
+    digestion_density_g_ml, sample_density_g_ml : float
+        Of the digestion solution and the sample.
+    """
+
+    acid_density_g_ml: float = 1.84
+    acid_assay: float = 0.96
+    digestion_acid_ml_per_l: float = 167.0
+    digestion_density_g_ml: float = 1.20
+    sample_density_g_ml: float = 1.00
+
+
+@dataclass(frozen=True)
+class PerTube:
+    """What one tube holds, by its recipe.
+
+    Parameters
+    ----------
+    mercury_mg, chromium_mg, silver_mg : float
+        Metals.
+    sample_ml, digestion_solution_ml, acid_reagent_ml : float
+        Volumes.
+    """
+
+    mercury_mg: float
+    chromium_mg: float
+    silver_mg: float
+    sample_ml: float
+    digestion_solution_ml: float
+    acid_reagent_ml: float
+
+
+@dataclass(frozen=True)
+class Totals:
+    """What some tubes leave behind; totals add with ``+``.
+
+    Parameters
+    ----------
+    tubes : int
+        Number of tubes.
+    mercury_mg, chromium_mg, silver_mg : float
+        Metals.
+    acid_reagent_ml : float
+        Acid reagent, by the recipe.
+    concentrated_acid_ml, sulfuric_acid_g : float
+        Concentrated acid of reagent and digestion solution together, and the
+        sulfuric acid in it.
+    volume_ml, mass_g : float
+        Of the liquid.
+    """
+
+    tubes: int = 0
+    mercury_mg: float = 0.0
+    chromium_mg: float = 0.0
+    silver_mg: float = 0.0
+    acid_reagent_ml: float = 0.0
+    concentrated_acid_ml: float = 0.0
+    sulfuric_acid_g: float = 0.0
+    volume_ml: float = 0.0
+    mass_g: float = 0.0
+
+    def __add__(self, other: Totals) -> Totals:
+        """Add two totals."""
+        return Totals(*(getattr(self, f.name) + getattr(other, f.name) for f in fields(self)))
+
+
+def totals(per_tube: PerTube, tubes: int, assumed: Assumptions | None = None) -> Totals:
+    """Return what a number of tubes of one recipe leaves behind.
+
+    Parameters
+    ----------
+    per_tube : PerTube
+        From the recipe version of the run.
+    tubes : int
+        Every tube that was filled, blanks and standards too.
+    assumed : Assumptions, optional
+        The programme's settings.
+
+    Returns
+    -------
+    Totals
+
+    Raises
+    ------
+    InputError
+        If a number is negative or not finite.
+    """
+    wrong = {
+        f.name: ["must be zero or more"]
+        for f in fields(per_tube)
+        if not math.isfinite(getattr(per_tube, f.name)) or getattr(per_tube, f.name) < 0
+    }
+    if isinstance(tubes, bool) or tubes < 0:
+        wrong["tubes"] = ["must be zero or more"]
+    if wrong:
+        raise InputError("No waste can be counted from this.", wrong)
+    a = assumed or Assumptions()
+    acid_ml = per_tube.acid_reagent_ml + per_tube.digestion_solution_ml * a.digestion_acid_ml_per_l / 1000.0
+    mass_g = (
+        per_tube.sample_ml * a.sample_density_g_ml
+        + per_tube.digestion_solution_ml * a.digestion_density_g_ml
+        + per_tube.acid_reagent_ml * a.acid_density_g_ml
+        + per_tube.silver_mg / SILVER_IN_SULFATE / 1000.0
+    )
+    volume_ml = per_tube.sample_ml + per_tube.digestion_solution_ml + per_tube.acid_reagent_ml
+    return Totals(
+        tubes,
+        tubes * per_tube.mercury_mg,
+        tubes * per_tube.chromium_mg,
+        tubes * per_tube.silver_mg,
+        tubes * per_tube.acid_reagent_ml,
+        tubes * acid_ml,
+        tubes * acid_ml * a.acid_density_g_ml * a.acid_assay,
+        tubes * volume_ml,
+        tubes * mass_g,
+    )
+
+
+def whole_tubes_within(
+    per_tube: PerTube, *, mass_kg: float | None = None, volume_l: float | None = None
+) -> int:
+    """Return how many whole tubes fit within a mass, a volume or both.
+
+    Parameters
+    ----------
+    per_tube : PerTube
+        One recipe.
+    mass_kg, volume_l : float, optional
+        At least one of the two.
+
+    Returns
+    -------
+    int
+    """
+    one = totals(per_tube, 1)
+    counts = []
+    if mass_kg is not None:
+        counts.append(mass_kg * 1000.0 / one.mass_g)
+    if volume_l is not None:
+        counts.append(volume_l * 1000.0 / one.volume_ml)
+    if not counts:
+        raise InputError("Give a mass or a volume.", {"mass_kg": ["give a mass or a volume"]})
+    return math.floor(min(counts) + 1e-9)
+
+
+@dataclass(frozen=True)
+class Characteristic:
+    """One hazardous waste code and why it applies.
+
+    Parameters
+    ----------
+    code : str
+        For example "D009".
+    words : str
+        What it stands for.
+    found, threshold : float
+        Estimate and threshold in ``unit``.
+    unit : str
+        mg/L, or mol/L of acid.
+    """
+
+    code: str
+    words: str
+    found: float
+    threshold: float
+    unit: str
+
+
+TOXICITY: tuple[tuple[str, str, str, float], ...] = (
+    ("D007", "chromium", "chromium_mg", 5.0),
+    ("D009", "mercury", "mercury_mg", 0.2),
+    ("D011", "silver", "silver_mg", 5.0),
+)
+ACID_MOL_L_AT_PH_2 = 0.01
+
+
+def waste_codes(waste: Totals) -> tuple[Characteristic, ...]:
+    """Return the characteristic codes that the recipe alone makes likely.
+
+    Parameters
+    ----------
+    waste : Totals
+        Of a run or a container, with a volume above zero.
+
+    Returns
+    -------
+    tuple of Characteristic
+        D002 by the acid (pH 2 or less), D007, D009 and D011 at or above the
+        thresholds of 40 CFR 261.24; the liquid itself counts as the extract.
+    """
+    if waste.volume_ml <= 0:
+        raise InputError("An empty container has no code.", {"volume_ml": ["must be above zero"]})
+    litres = waste.volume_ml / 1000.0
+    acid = waste.sulfuric_acid_g / SULFURIC_ACID_G_PER_MOL / litres
+    found = []
+    if acid >= ACID_MOL_L_AT_PH_2:
+        found.append(Characteristic("D002", "corrosive, pH 2 or less", acid, ACID_MOL_L_AT_PH_2, "mol/L"))
+    for code, metal, name, threshold in TOXICITY:
+        level = getattr(waste, name) / litres
+        if level >= threshold:
+            found.append(Characteristic(code, f"toxic for {metal}", level, threshold, "mg/L"))
+    return tuple(found)
+
+
+def mercury_mg_per_kg(waste: Totals) -> float:
+    """Return the mercury content; 260 mg/kg and more is "high mercury" for nonwastewaters (40 CFR 268.40)."""
+    if waste.mass_g <= 0:
+        raise InputError("Nothing has no content.", {"mass_g": ["must be above zero"]})
+    return waste.mercury_mg / (waste.mass_g / 1000.0)
+
+
+@dataclass(frozen=True)
+class Generator:
+    """Thresholds of a site's category in one calendar month; settings.
+
+    Parameters
+    ----------
+    small_above_kg, large_from_kg : float
+        Very small up to the first, large from the second on.
+    acute_above_kg : float
+        Acute waste above this makes a large generator.
+    small_days, small_far_days, large_days : int
+        Central accumulation; "far" means beyond 200 miles.
+    satellite_l : float
+        Most that may stand at the point of generation.
+    satellite_days : int
+        Consecutive calendar days to move what is beyond it.
+    note : str
+        Shown beside every number.
+    """
+
+    small_above_kg: float = 100.0
+    large_from_kg: float = 1000.0
+    acute_above_kg: float = 1.0
+    small_days: int = 180
+    small_far_days: int = 270
+    large_days: int = 90
+    satellite_l: float = 55 * GALLON_L
+    satellite_days: int = 3
+    note: str = FEDERAL_NOTE
+
+
+FEDERAL = Generator()
+Category = Literal["very small", "small", "large"]
+
+
+@dataclass(frozen=True)
+class MonthTotal:
+    """A site's hazardous waste in one calendar month.
+
+    Parameters
+    ----------
+    total_kg : float
+        All streams together.
+    category : {"very small", "small", "large"}
+        By the thresholds.
+    days : int or None
+        Longest central accumulation; None for a very small generator.
+    note : str
+        What else counts, and who decides.
+    """
+
+    total_kg: float
+    category: Category
+    days: int | None
+    note: str
+
+
+def month_total(
+    streams_kg: Mapping[str, float], acute_kg: float = 0.0, far: bool = False, rules: Generator = FEDERAL
+) -> MonthTotal:
+    """Add up a month's streams and name the category of the whole site.
+
+    Parameters
+    ----------
+    streams_kg : mapping of str to float
+        Each waste stream of the site, COD digest and all others.
+    acute_kg : float
+        Acute hazardous waste among them.
+    far : bool
+        The waste travels more than 200 miles.
+    rules : Generator
+        The programme's thresholds.
+
+    Returns
+    -------
+    MonthTotal
+
+    Raises
+    ------
+    InputError
+        If an amount is negative or not finite.
+    """
+    amounts = {**streams_kg, "acute": acute_kg}
+    wrong = {k: ["must be zero or more"] for k, v in amounts.items() if not math.isfinite(v) or v < 0}
+    if wrong:
+        raise InputError("These amounts cannot be added.", wrong)
+    total = math.fsum(streams_kg.values())
+    note = f"The whole site counts, not the laboratory alone. {rules.note}"
+    if total >= rules.large_from_kg or acute_kg > rules.acute_above_kg:
+        return MonthTotal(total, "large", rules.large_days, note)
+    if total > rules.small_above_kg:
+        return MonthTotal(total, "small", rules.small_far_days if far else rules.small_days, note)
+    return MonthTotal(total, "very small", None, note)
+
+
+@dataclass(frozen=True)
+class Clock:
+    """A deadline with the day on which it is called to mind.
+
+    Parameters
+    ----------
+    due : datetime.date
+        Last day.
+    remind_on : datetime.date
+        When 75 % of the days have passed.
+    words : str
+        What is due.
+    """
+
+    due: date
+    remind_on: date
+    words: str
+
+
+def central_clock(start: date, days: int) -> Clock:
+    """Return the clock of a container in central accumulation.
+
+    Parameters
+    ----------
+    start : datetime.date
+        Day on which central accumulation began; stands on the container.
+    days : int
+        From :func:`month_total`.
+
+    Returns
+    -------
+    Clock
+    """
+    words = f"Ship by {start + timedelta(days)}: {days} days from {start}."
+    return Clock(start + timedelta(days), start + timedelta(math.ceil(0.75 * days)), words)
+
+
+def satellite_clock(passed_on: date, rules: Generator = FEDERAL) -> Clock:
+    """Return the clock of what exceeds the limit at the point of generation.
+
+    Parameters
+    ----------
+    passed_on : datetime.date
+        Day on which the limit was passed; before it there is no clock.
+    rules : Generator
+        The programme's thresholds.
+
+    Returns
+    -------
+    Clock
+        Consecutive calendar days, weekends and holidays included.
+    """
+    due = passed_on + timedelta(rules.satellite_days)
+    return Clock(due, passed_on, f"Date the excess {passed_on} and move it by {due}, weekends included.")
+
+
+def sum_totals(parts: Iterable[Totals]) -> Totals:
+    """Return the sum of totals of runs with different recipes."""
+    whole = Totals()
+    for part in parts:
+        whole = whole + part
+    return whole
