@@ -7,7 +7,8 @@ import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 
-from app.compliance.holding import DECISIONS, Preservation, Receipt, elapsed_hours, hold_until, receive
+from app.compliance.holding import Preservation, elapsed_hours, hold_until
+from app.compliance.receipt import DECISIONS, Receipt, receive
 from app.errors import InputError
 
 COLLECTED = datetime(2031, 5, 14, 8, 15, tzinfo=timezone(timedelta(hours=-5)))
@@ -47,7 +48,7 @@ def test_a_bottle_as_it_should_be_is_accepted_without_a_word():
     ],
 )
 def test_each_check_at_receipt(change, decision, check, letter):
-    """The table of receipt checks: common practice around 40 CFR 136.3 Table II; 6.4 C is not rounded to 6."""
+    """The receipt checks: common practice around 40 CFR 136.3 Table II; 6.4 C is not rounded to 6."""
     found = receive(replace(GOOD, **change))
     assert found.decision == decision
     assert [f.check for f in found.findings] == ([check] if check else [])

@@ -38,13 +38,13 @@ def test_the_three_rules_and_the_four_states(value, simple, guarded, guarded_rej
 
 
 def test_the_risk_at_the_edges():
-    """Normal distribution, ILAC-G8:09/2019 table 1: 2.28 % at T - 2u, 5.0 % at T - 1.645 u, 50 % at the limit."""
+    """ILAC-G8:09/2019 table 1, normal: 2.28 % at T - 2u, 5.0 % at T - 1.645 u, 50 % at the limit."""
     risks = [100 * probability_above(x, 40, 1000) for x in (920, 1000 - 1.645 * 40, 960, 1000)]
     assert risks == pytest.approx([2.28, 5.0, 15.9, 50.0], abs=0.04)
 
 
 def test_one_sided_edges_of_a_result_near_its_limit():
-    """580 with u 17.5 beside 600 (JCGM 106:2012, 7.4 and 8.3): 0.1265; edges at 1.645 u are 571.2 and 628.8."""
+    """580, u 17.5, beside 600 (JCGM 106:2012, 7.4 and 8.3): 0.1265; edges at 1.645 u 571.2, 628.8."""
     limit = Limit("daily_maximum", 600, date(2030, 1, 1), "permit 7, page 3")
     outcome = Outcome("ok", 580, u=17.5)
     guarded = decide(outcome, limit, rule_named("guarded", 1.645, "u"))

@@ -72,7 +72,7 @@ def test_an_error_of_the_head_is_an_error_of_the_flow():
 
 
 def test_bucket_totalizer_and_compositing():
-    """Arithmetic of common practice: 5.00 gal in 12.4 s; a six-digit register through zero; volumes by flow."""
+    """Arithmetic of common practice: 5.00 gal in 12.4 s; a register through zero; volumes by flow."""
     flow = bucket_and_watch(5.00, "gal", 12.4)
     assert flow.in_unit("gpm") == pytest.approx(24.194, abs=0.0005)
     assert flow.in_unit("MGD") == pytest.approx(0.034839, abs=5e-7)

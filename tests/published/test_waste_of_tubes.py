@@ -10,7 +10,8 @@ O 15.999, S 32.06.
 
 import pytest
 
-from app.safety.waste import PerTube, mercury_mg_per_kg, month_total, totals, waste_codes, whole_tubes_within
+from app.safety.accumulation import month_total
+from app.safety.waste import PerTube, mercury_mg_per_kg, totals, waste_codes, whole_tubes_within
 
 CR = 2 * 51.996 / (2 * 39.098 + 2 * 51.996 + 7 * 15.999)
 HG = 200.592 / (200.592 + 32.06 + 4 * 15.999)
@@ -30,7 +31,7 @@ def tube(dichromate_g_per_l: float = 10.216) -> PerTube:
 
 
 def test_one_tube():
-    """Standard Methods 5220 D, 16 x 100 mm tube: Cr 5.4170, Hg 33.7760, Ag 24.5079 mg; 6.6249 g acid; 10.775 g."""
+    """5220 D, 16 x 100 mm tube: Cr 5.4170, Hg 33.7760, Ag 24.5079 mg; 6.6249 g acid; 10.775 g."""
     one = totals(tube(), 1)
     assert one.chromium_mg == pytest.approx(5.4170, abs=2e-4)
     assert one.mercury_mg == pytest.approx(33.7760, abs=2e-3)

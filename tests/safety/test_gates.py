@@ -105,7 +105,7 @@ def test_a_wider_tolerance_is_a_setting():
 
 
 def test_a_container_must_be_named():
-    """ "Yes" is not a container."""
+    """A bare yes is not a container."""
     said = {**ALL, "waste_container": Confirmation("waste_container")}
     assert [m.why for m in missing(run_gates(FACTS), said, FACTS)] == ["no container was chosen"]
 
@@ -161,7 +161,7 @@ def test_cooling_over_a_clock_change_is_not_shortened():
     ],
 )
 def test_alarm_points_of_a_manhole(reading, blocks):
-    """29 CFR 1910.146 appendix E: O2 below 19.5 %, LEL 10 %, H2S 10 ppm, CO 35 ppm and above; not measured blocks."""
+    """29 CFR 1910.146 appendix E: O2 under 19.5 %, LEL 10 %, H2S 10 ppm, CO 35 ppm; not measured blocks."""
     assert bool(gas_alarms(reading)) == blocks
     assert gas_gate([reading]).blocked == blocks
     assert "cannot permit entry" in gas_gate([reading]).words

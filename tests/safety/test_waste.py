@@ -7,16 +7,12 @@ from hypothesis import given
 from hypothesis import strategies as st
 
 from app.errors import InputError
+from app.safety.accumulation import FEDERAL, Generator, central_clock, month_total, satellite_clock
 from app.safety.container import COD_DIGEST, Container, fill, label, room_for
 from app.safety.waste import (
-    FEDERAL,
-    Generator,
     PerTube,
     Totals,
-    central_clock,
     mercury_mg_per_kg,
-    month_total,
-    satellite_clock,
     sum_totals,
     totals,
     waste_codes,
