@@ -175,11 +175,15 @@ class Replaces:
 
 @dataclass(frozen=True)
 class Standard:
-    """One calibration standard: drawn values, and the texts of its table row."""
+    """One calibration standard: drawn values, and the texts of its table row.
+
+    ``cod_text`` and ``absorbance_texts`` are what the analyst entered.
+    """
 
     cod: float
     absorbance: tuple[float, ...]
-    cod_text: str = ""
+    cod_text: str
+    absorbance_texts: tuple[str, ...]
     back_calculated: str = ""
     recovery_percent: str = ""
 
