@@ -214,11 +214,11 @@ def _beale(ratio: float, q: Vector, load: Vector, theta: float) -> tuple[float |
     q_bar, l_bar = float(q.mean()), float(load.mean())
     if l_bar == 0:
         return 0.0, None
-    cov = np.cov(load, q, ddof=1)
-    s_ll, s_lq, s_qq = cov[0, 0] / l_bar**2, cov[0, 1] / (l_bar * q_bar), cov[1, 1] / q_bar**2
+    cov = np.cov(load / l_bar, q / q_bar, ddof=1)
+    s_ll, s_lq, s_qq = float(cov[0, 0]), float(cov[0, 1]), float(cov[1, 1])
     beale = ratio * (1.0 + theta * s_lq) / (1.0 + theta * s_qq)
     variance = max(theta * (s_qq + s_ll - 2.0 * s_lq), 0.0)
-    return float(beale), math.sqrt(variance)
+    return beale, math.sqrt(variance)
 
 
 def load_of(flow_m3: Sequence[float | None], samples: Sequence[tuple[int, float]]) -> Load:

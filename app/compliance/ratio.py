@@ -30,7 +30,7 @@ from scipy.special import stdtrit
 
 from app.errors import Fields, InputError
 
-FEWEST = 3
+FEWEST, NARROWEST = 3, 0.001
 
 
 @dataclass(frozen=True)
@@ -99,8 +99,8 @@ def _refuse(pairs: Sequence[tuple[float, float]]) -> None:
                 wrong[f"pairs.{i}.{name}"] = ["must be a finite number, 0 or more"]
     if not wrong and len(pairs) < FEWEST:
         wrong["pairs"] = [f"needs at least {FEWEST}"]
-    elif not wrong and min(c for c, _ in pairs) == max(c for c, _ in pairs):
-        wrong["pairs"] = ["need at least two different COD"]
+    elif not wrong and max(c for c, _ in pairs) - min(c for c, _ in pairs) < NARROWEST:
+        wrong["pairs"] = [f"need COD that differ by {NARROWEST} mg/L or more"]
     if wrong:
         raise InputError("No line can be drawn through these pairs.", wrong)
 

@@ -20,6 +20,7 @@ import math
 from collections.abc import Iterable
 from dataclasses import dataclass, fields
 
+from app.chemistry.recipe import Recipe, derive
 from app.errors import InputError
 
 SILVER_IN_SULFATE = 0.691923
@@ -102,12 +103,35 @@ class Totals:
         return Totals(*(getattr(self, f.name) + getattr(other, f.name) for f in fields(self)))
 
 
-def totals(per_tube: PerTube, tubes: int, assumed: Assumptions | None = None) -> Totals:
+def per_tube(recipe: Recipe) -> PerTube:
+    """Return what one tube of a recipe holds.
+
+    Parameters
+    ----------
+    recipe : app.chemistry.recipe.Recipe
+        The recipe version of the run.
+
+    Returns
+    -------
+    PerTube
+    """
+    metals = derive(recipe).per_tube_mg
+    return PerTube(
+        metals.mercury,
+        metals.chromium,
+        metals.silver,
+        recipe.sample_ml,
+        recipe.digestion_solution_ml,
+        recipe.acid_reagent_ml,
+    )
+
+
+def totals(tube: PerTube, tubes: int, assumed: Assumptions | None = None) -> Totals:
     """Return what a number of tubes of one recipe leaves behind.
 
     Parameters
     ----------
-    per_tube : PerTube
+    tube : PerTube
         From the recipe version of the run.
     tubes : int
         Every tube that was filled, blanks and standards too.
@@ -125,28 +149,28 @@ def totals(per_tube: PerTube, tubes: int, assumed: Assumptions | None = None) ->
     """
     wrong = {
         f.name: ["must be zero or more"]
-        for f in fields(per_tube)
-        if not math.isfinite(getattr(per_tube, f.name)) or getattr(per_tube, f.name) < 0
+        for f in fields(tube)
+        if not math.isfinite(getattr(tube, f.name)) or getattr(tube, f.name) < 0
     }
     if isinstance(tubes, bool) or tubes < 0:
         wrong["tubes"] = ["must be zero or more"]
     if wrong:
         raise InputError("No waste can be counted from this.", wrong)
     a = assumed or Assumptions()
-    acid_ml = per_tube.acid_reagent_ml + per_tube.digestion_solution_ml * a.digestion_acid_ml_per_l / 1000.0
+    acid_ml = tube.acid_reagent_ml + tube.digestion_solution_ml * a.digestion_acid_ml_per_l / 1000.0
     mass_g = (
-        per_tube.sample_ml * a.sample_density_g_ml
-        + per_tube.digestion_solution_ml * a.digestion_density_g_ml
-        + per_tube.acid_reagent_ml * a.acid_density_g_ml
-        + per_tube.silver_mg / SILVER_IN_SULFATE / 1000.0
+        tube.sample_ml * a.sample_density_g_ml
+        + tube.digestion_solution_ml * a.digestion_density_g_ml
+        + tube.acid_reagent_ml * a.acid_density_g_ml
+        + tube.silver_mg / SILVER_IN_SULFATE / 1000.0
     )
-    volume_ml = per_tube.sample_ml + per_tube.digestion_solution_ml + per_tube.acid_reagent_ml
+    volume_ml = tube.sample_ml + tube.digestion_solution_ml + tube.acid_reagent_ml
     return Totals(
         tubes,
-        tubes * per_tube.mercury_mg,
-        tubes * per_tube.chromium_mg,
-        tubes * per_tube.silver_mg,
-        tubes * per_tube.acid_reagent_ml,
+        tubes * tube.mercury_mg,
+        tubes * tube.chromium_mg,
+        tubes * tube.silver_mg,
+        tubes * tube.acid_reagent_ml,
         tubes * acid_ml,
         tubes * acid_ml * a.acid_density_g_ml * a.acid_assay,
         tubes * volume_ml,
@@ -154,14 +178,12 @@ def totals(per_tube: PerTube, tubes: int, assumed: Assumptions | None = None) ->
     )
 
 
-def whole_tubes_within(
-    per_tube: PerTube, *, mass_kg: float | None = None, volume_l: float | None = None
-) -> int:
+def whole_tubes_within(tube: PerTube, *, mass_kg: float | None = None, volume_l: float | None = None) -> int:
     """Return how many whole tubes fit within a mass, a volume or both.
 
     Parameters
     ----------
-    per_tube : PerTube
+    tube : PerTube
         One recipe.
     mass_kg, volume_l : float, optional
         At least one of the two.
@@ -170,7 +192,7 @@ def whole_tubes_within(
     -------
     int
     """
-    one = totals(per_tube, 1)
+    one = totals(tube, 1)
     counts = []
     if mass_kg is not None:
         counts.append(mass_kg * 1000.0 / one.mass_g)

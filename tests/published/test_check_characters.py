@@ -1,6 +1,10 @@
 """ISO/IEC 7064 MOD 37-2 against a published string."""
 
+import pytest
+
 from app.compliance.codes import check_character
+
+pytestmark = pytest.mark.published
 
 
 def test_a_published_donation_number():

@@ -3,7 +3,11 @@
 from datetime import datetime
 from zoneinfo import ZoneInfo
 
+import pytest
+
 from app.compliance.holding import acid_dilution_factor, elapsed_hours, hold_until
+
+pytestmark = pytest.mark.published
 
 NEW_YORK = ZoneInfo("America/New_York")
 

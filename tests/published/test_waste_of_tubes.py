@@ -10,24 +10,16 @@ O 15.999, S 32.06.
 
 import pytest
 
+from app.chemistry.recipe import Recipe
 from app.safety.accumulation import month_total
-from app.safety.waste import PerTube, mercury_mg_per_kg, totals, waste_codes, whole_tubes_within
+from app.safety.waste import PerTube, mercury_mg_per_kg, per_tube, totals, waste_codes, whole_tubes_within
 
-CR = 2 * 51.996 / (2 * 39.098 + 2 * 51.996 + 7 * 15.999)
-HG = 200.592 / (200.592 + 32.06 + 4 * 15.999)
-AG = 2 * 107.868 / (2 * 107.868 + 32.06 + 4 * 15.999)
+pytestmark = pytest.mark.published
 
 
 def tube(dichromate_g_per_l: float = 10.216) -> PerTube:
-    """Return the tube of the recipe named above."""
-    return PerTube(
-        mercury_mg=33.3 * 1.5 * HG,
-        chromium_mg=dichromate_g_per_l * 1.5 * CR,
-        silver_mg=5.5 * 1.84 * 3.5 * AG,
-        sample_ml=2.5,
-        digestion_solution_ml=1.5,
-        acid_reagent_ml=3.5,
-    )
+    """Return the tube of the recipe named above; 5.5 g/kg of acid are 10.12 g/L."""
+    return per_tube(Recipe(2.5, 1.5, 3.5, dichromate_g_per_l, 33.3, 5.5 * 1.84, 600))
 
 
 def test_one_tube():
