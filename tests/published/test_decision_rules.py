@@ -15,6 +15,8 @@ from app.compliance.decision import (
 )
 from app.compliance.limits import Limit
 
+pytestmark = pytest.mark.published
+
 LIMIT = Limit("daily_maximum", 1000, date(2030, 1, 1), "permit 7, page 3")
 
 
@@ -29,8 +31,6 @@ LIMIT = Limit("daily_maximum", 1000, date(2030, 1, 1), "permit 7, page 3")
         (1081, "above", "above", "above", "fail"),
     ],
 )
-
-pytestmark = pytest.mark.published
 def test_the_three_rules_and_the_four_states(value, simple, guarded, guarded_rejection, four):
     """ILAC-G8:09/2019, 4.2.1 to 4.2.3: limit 1000, U = 80 (k = 2), so A = 920 and T + U = 1080."""
     outcome = Outcome("ok", value, u=40, expanded_u=80)

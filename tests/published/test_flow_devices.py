@@ -18,6 +18,8 @@ from app.compliance.flow import (
     v_notch_90,
 )
 
+pytestmark = pytest.mark.published
+
 V90 = v_notch_90()
 
 
@@ -39,8 +41,6 @@ V90 = v_notch_90()
         (parshall("4 ft"), 1.00, 16.000, 10.34107),
     ],
 )
-
-pytestmark = pytest.mark.published
 def test_a_head_gives_the_manuals_flow(device, head_ft, cfs, mgd):
     """USBR Water Measurement Manual ch. 7 (weirs) and ch. 8 (Parshall)."""
     flow = measure(device, head_ft)
