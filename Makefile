@@ -18,6 +18,7 @@ PINS := pyproject.toml .ci/constraints.txt
 CLIENT := static/vendor/LICENCES.txt
 AXE := build/client/node_modules/axe-core/axe.min.js
 
+.NOTPARALLEL:
 .PHONY: run demo install install-test install-lint install-bench test lint bench clean
 
 run: install

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import os
+from collections.abc import Iterator
 from pathlib import Path
 
 import pytest
@@ -57,8 +58,12 @@ def pytest_runtest_setup(item: pytest.Item) -> None:
     pytest.skip("no Chromium was found")
 
 
-def pytest_terminal_summary(terminalreporter: pytest.TerminalReporter, config: pytest.Config) -> None:
-    """Say at the end, too loudly to miss, what was not tested."""
+@pytest.hookimpl(wrapper=True, tryfirst=True)
+def pytest_terminal_summary(
+    terminalreporter: pytest.TerminalReporter, config: pytest.Config
+) -> Iterator[None]:
+    """Say last of all, too loudly to miss, what was not tested."""
+    yield
     left_out = config.stash.get(WITHOUT_BROWSER, 0)
     if left_out:
         terminalreporter.section("NOT EVERYTHING WAS TESTED", sep="!", red=True, bold=True)
