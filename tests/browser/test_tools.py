@@ -3,9 +3,13 @@
 from __future__ import annotations
 
 from collections.abc import Callable
+from urllib.error import URLError
+from urllib.request import urlopen
 
+import pytest
 from playwright.sync_api import BrowserContext, Page, Route
 
+from tests.browser.server import Server
 from tests.browser.watch import Axe, Watch
 
 ORIGIN = "http://localhost:1"
@@ -76,3 +80,17 @@ def test_two_contexts_share_nothing(context_factory: Callable[..., BrowserContex
         show(each, GOOD)
     first.evaluate("() => localStorage.setItem('a', '1')")
     assert second.evaluate("() => localStorage.getItem('a')") is None
+
+
+def test_a_killed_server_is_gone_and_comes_back_on_its_port(server: Server) -> None:
+    server.kill()
+    with pytest.raises(URLError):
+        urlopen(f"{server.url}/healthz", timeout=2)
+    server.start()
+    with urlopen(f"{server.url}/healthz", timeout=5) as answer:
+        assert answer.status == 200
+
+
+def test_a_second_server_is_not_started_over_a_first(server: Server) -> None:
+    with pytest.raises(RuntimeError, match="already listens"):
+        server.start()
