@@ -1,0 +1,62 @@
+"""The programme's settings: every number of a rule that a person may set.
+
+Each has a default with its source; whatever decided something is printed
+beside the verdict it decided.
+"""
+
+from __future__ import annotations
+
+from typing import Any
+
+from marshmallow import fields, validate
+
+from app.journal.kinds import Body
+
+
+def _share(**kwargs: Any) -> fields.Float:
+    return fields.Float(validate=validate.Range(min=0, max=1), **kwargs)
+
+
+def _percent(**kwargs: Any) -> fields.Float:
+    return fields.Float(validate=validate.Range(min=0, max=1000), **kwargs)
+
+
+class Repeatability(Body):
+    """Scatter of one tube, sqrt(a² + (k x)²), and the degrees of freedom it was found with."""
+
+    a = fields.Float(required=True, validate=validate.Range(min=0, max=1000))
+    k = _share(required=True)
+    dof = fields.Float(required=True, allow_none=True, validate=validate.Range(min=1))
+
+
+class Settings(Body):
+    """All settings of a programme."""
+
+    replicates = fields.Integer(strict=True, validate=validate.Range(min=1, max=10))
+    repeatability = fields.Nested(Repeatability)
+    bias_relative_u = _share()
+    bias_dof = fields.Float(allow_none=True, validate=validate.Range(min=1))
+    standards_relative_u = _share()
+    verification_percent = _percent()
+    duplicate_rpd_percent = _percent()
+    spike_percent = fields.List(_percent(), validate=validate.Length(equal=2))
+    dilutions = fields.List(
+        fields.Float(validate=validate.Range(min=1, max=1_000_000)), validate=validate.Length(min=1, max=40)
+    )
+    decision_rule = fields.String(validate=validate.OneOf(["simple", "guarded", "guarded_rejection"]))
+    address = fields.String(validate=validate.Length(max=300))
+
+
+DEFAULTS: dict[str, Any] = {
+    "replicates": 3,  # common practice
+    "repeatability": {"a": 4.0, "k": 0.025, "dof": None},  # start values until 20 own sets exist: practice
+    "bias_relative_u": 0.02,  # from own control samples once 20 exist: practice
+    "bias_dof": None,
+    "standards_relative_u": 0.005,  # potassium hydrogen phthalate, balance and flask: practice
+    "verification_percent": 10.0,  # EPA 410.4 rev 2.0, 9.3.4
+    "duplicate_rpd_percent": 20.0,  # common practice
+    "spike_percent": [90.0, 110.0],  # EPA 410.4 rev 2.0, 9.4.2
+    "dilutions": [1.0, 2.0, 4.0, 5.0, 10.0, 20.0, 25.0, 50.0, 100.0],
+    "decision_rule": "simple",  # ILAC-G8:09/2019, 4.2.1
+    "address": "",
+}

@@ -1,0 +1,36 @@
+"""Handlers: what each kind of entry does to the records.
+
+A handler gets a :class:`~app.records.change.Change` and puts records; it reads
+no clock and computes nothing that could come out differently at a rebuild. An
+entry that cannot come into force raises :class:`~app.records.change.Refused`.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from importlib import import_module
+
+from app.records.change import Change
+
+Handler = Callable[[Change], None]
+
+_MODULES = ("programme", "field", "stores", "runs", "review")
+_handlers: dict[str, Handler] = {}
+
+
+def handles(kind: str) -> Callable[[Handler], Handler]:
+    """Declare the handler of a kind."""
+
+    def declare(handler: Handler) -> Handler:
+        _handlers[kind] = handler
+        return handler
+
+    return declare
+
+
+def table() -> dict[str, Handler]:
+    """Return all handlers by kind."""
+    if not _handlers:
+        for module in _MODULES:
+            import_module(f"app.records.handlers.{module}")
+    return _handlers

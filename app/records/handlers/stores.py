@@ -1,0 +1,102 @@
+"""What the laboratory works with: recipes, lots, instruments, containers, calibrations."""
+
+from __future__ import annotations
+
+from datetime import date
+from typing import Any
+
+from app.journal import measured
+from app.records.change import Change, Refused
+from app.records.handlers import handles
+
+_NUMBERS = (
+    "sample_ml",
+    "digestion_solution_ml",
+    "acid_reagent_ml",
+    "dichromate_g_per_l",
+    "mercury_sulfate_g_per_l",
+    "silver_sulfate_g_per_l",
+    "wavelength_nm",
+    "working_low",
+    "working_high",
+    "temperature_c",
+    "minutes",
+)
+
+
+@handles("recipe.adopted")
+def recipe_adopted(change: Change) -> None:
+    """A recipe; what follows from it comes as an entry of the server."""
+    numbers: dict[str, Any] = {name: measured.read(change.body[name]).value for name in _NUMBERS}
+    body = change.body | numbers
+    if body["working_low"] >= body["working_high"]:
+        raise Refused("wrong_range", "The working range's lower end must lie under its top.")
+    change.put("recipe", change.entry.about, body | {"derived": None})
+
+
+@handles("recipe.derived")
+def recipe_derived(change: Change) -> None:
+    """Capacity, chloride limit and metals per tube, as the server computed them."""
+    body = change.need("recipe", change.entry.about)
+    change.update("recipe", change.entry.about, body | {"derived": change.body["derived"]})
+
+
+@handles("lot.made")
+def lot_made(change: Change) -> None:
+    """A reagent batch of one recipe."""
+    change.need("recipe", change.body["recipe"])
+    if date.fromisoformat(change.body["expires_on"]) < date.fromisoformat(change.body["made_on"]):
+        raise Refused("wrong_dates", "A lot cannot expire before it was made.")
+    change.put("lot", change.entry.about, change.body, parent=change.body["recipe"], at=change.body["made_on"])
+
+
+@handles("instrument.added")
+def instrument_added(change: Change) -> None:
+    """An instrument."""
+    change.put("instrument", change.entry.about, {"positions": None, **change.body})
+
+
+@handles("container.opened")
+def container_opened(change: Change) -> None:
+    """An empty waste container."""
+    body = {
+        "name": change.body["name"],
+        "capacity_ml": measured.read(change.body["capacity_ml"]).value,
+        "filled_ml": 0.0,
+        "mercury_mg": 0.0,
+        "chromium_mg": 0.0,
+        "silver_mg": 0.0,
+        "acid_ml": 0.0,
+        "tubes": 0,
+        "runs": [],
+        "opened_at": change.entry.at,
+    }
+    change.put("container", change.entry.about, body)
+
+
+@handles("calibration.made")
+def calibration_made(change: Change) -> None:
+    """Standards of one recipe, lot and photometer; the fit follows as an entry of the server."""
+    body = change.body
+    recipe, lot = change.need("recipe", body["recipe"]), change.need("lot", body["lot"])
+    change.need("instrument", body["instrument"])
+    if lot["recipe"] != body["recipe"]:
+        raise Refused("wrong_lot", "This lot belongs to another recipe.", {"lot": ["Of another recipe."]})
+    wavelength = measured.read(body["wavelength_nm"]).value
+    if abs(wavelength - recipe["wavelength_nm"]) > 20:
+        raise Refused(
+            "wrong_wavelength",
+            f"The recipe reads at {recipe['wavelength_nm']:g} nm; standards read elsewhere make no curve for it.",
+            {"wavelength_nm": ["More than 20 nm from the recipe's."]},
+        )
+    made = {"wavelength_nm": wavelength, "made_at": change.entry.at, "made_by": change.name_of(change.entry.by)}
+    change.put(
+        "calibration", change.entry.about, body | made | {"fitted": None}, parent=body["recipe"], at=change.entry.at
+    )
+
+
+@handles("calibration.fitted")
+def calibration_fitted(change: Change) -> None:
+    """The curve, as the server fitted it."""
+    body = change.need("calibration", change.entry.about)
+    change.update("calibration", change.entry.about, body | {"fitted": change.body["fitted"]})

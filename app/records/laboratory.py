@@ -1,0 +1,244 @@
+"""The laboratory's sums, stated by the server: recipes derived, curves fitted, runs calculated.
+
+A run's answer is the verb ``calculate``'s, for the very input that is kept
+beside it: anybody can give that input to ``python -m app calculate`` and get
+the same digits.
+"""
+
+from __future__ import annotations
+
+import json
+from collections.abc import Iterable
+from dataclasses import asdict
+from datetime import datetime
+from typing import TYPE_CHECKING, Any
+from zoneinfo import ZoneInfo
+
+from app import __version__, verbs
+from app.chemistry.recipe import Recipe
+from app.errors import WeirbookError
+from app.journal import measured
+from app.journal.entry import digest
+from app.records import verdicts
+from app.records.change import Body
+from app.safety import waste
+
+if TYPE_CHECKING:
+    from app.records.ledger import Writing
+
+SOFTWARE = f"weirbook {__version__}"
+_RECIPE = (
+    "sample_ml",
+    "digestion_solution_ml",
+    "acid_reagent_ml",
+    "dichromate_g_per_l",
+    "mercury_sulfate_g_per_l",
+    "silver_sulfate_g_per_l",
+    "wavelength_nm",
+)
+
+
+def inputs_digest(given: Body) -> str:
+    """Return the digest of a sum's input, as entries of the server carry it."""
+    return digest(json.dumps(given, sort_keys=True, separators=(",", ":")).encode("utf-8"))
+
+
+def recipe_input(recipe: Body) -> Body:
+    """Return a recipe as the sums take it."""
+    return {name: recipe[name] for name in _RECIPE}
+
+
+def derive_recipe(writing: Writing, id_: str) -> None:
+    """State what follows from a recipe."""
+    recipe = writing.get("recipe", id_) or {}
+    derived = verbs.find("recipe")(recipe_input(recipe))
+    writing.state("recipe.derived", id_, {"software": SOFTWARE, "derived": derived})
+
+
+def fit_curve(writing: Writing, id_: str) -> None:
+    """State the curve of a calibration; one that cannot be fitted keeps the reason."""
+    calibration = writing.get("calibration", id_) or {}
+    given = {"standards": standards(calibration), "model": calibration["model"], "weights": "equal"}
+    try:
+        fitted = verbs.find("fit")(given)
+    except WeirbookError as error:
+        fitted = error.body()
+    body = {"software": SOFTWARE, "inputs_digest": inputs_digest(given), "fitted": fitted}
+    writing.state("calibration.fitted", id_, body)
+
+
+def standards(calibration: Body) -> list[Body]:
+    """Return a calibration's standards as numbers."""
+    return [
+        {
+            "cod": measured.read(one["cod"]).value,
+            "absorbance": [measured.read(text).value for text in one["absorbance"]],
+        }
+        for one in calibration["standards"]
+    ]
+
+
+def _absorbance(tube: Body) -> float | None:
+    return measured.value(tube["absorbance"], "AU")
+
+
+def _read(run: Body, role: str) -> list[Body]:
+    return [tube for tube in run["tubes"] if tube["role"] == role and tube["absorbance"] is not None]
+
+
+def sample_names(run: Body) -> dict[str, list[Body]]:
+    """Return the read sample tubes by the sample's name: the bottle, and its dilution where it has several."""
+    factors: dict[str, set[float]] = {}
+    for tube in _read(run, "sample"):
+        factors.setdefault(tube["bottle"], set()).add(tube["dilution"]["factor"])
+    found: dict[str, list[Body]] = {}
+    for tube in _read(run, "sample"):
+        code, factor = tube["bottle"], tube["dilution"]["factor"]
+        name = code if len(factors[code]) == 1 else f"{code} 1:{factor:g}"
+        found.setdefault(name, []).append(tube)
+    return found
+
+
+def _worst_colour(tubes: Iterable[Body]) -> str | None:
+    seen = {tube["colour"] for tube in tubes if tube["excluded"] is None}
+    return next((colour for colour in ("green", "olive", "orange") if colour in seen), None)
+
+
+def _sample_input(name: str, tubes: list[Body]) -> Body:
+    kept = [tube for tube in tubes if tube["excluded"] is None]
+    oxidant = [measured.value(tube["remaining_oxidant"], "1") for tube in kept if tube["remaining_oxidant"]]
+    return {
+        "sample": name,
+        "absorbance": [_absorbance(tube) for tube in tubes],
+        "dilution_factor": tubes[0]["dilution"]["factor"],
+        "dilution_relative_u": tubes[0]["dilution"]["relative_u"],
+        "colour": _worst_colour(tubes),
+        "remaining_oxidant": min((one for one in oxidant if one is not None), default=None),
+        "excluded": [
+            {"index": index, "reason": tube["excluded"]["cause"]}
+            for index, tube in enumerate(tubes)
+            if tube["excluded"] is not None
+        ],
+    }
+
+
+def run_input(run: Body, recipe: Body, calibration: Body, settings: Body) -> Body:
+    """Return what the verb ``calculate`` is given for a run."""
+    blanks = [_absorbance(tube) for tube in _read(run, "blank") if tube["excluded"] is None]
+    checks = [tube for tube in _read(run, "verification") if tube["excluded"] is None]
+    return {
+        "recipe": recipe_input(recipe),
+        "calibration": {
+            "standards": standards(calibration),
+            "model": calibration["model"],
+            "standards_relative_u": settings["standards_relative_u"],
+        },
+        "working_range": [recipe["working_low"], recipe["working_high"]],
+        "blanks": blanks or None,
+        "tubes": [
+            _sample_input(name, tubes)
+            for name, tubes in sample_names(run).items()
+            if any(tube["excluded"] is None for tube in tubes)
+        ],
+        "verifications": [
+            {"expected": measured.read(tube["expected"]).value, "absorbance": [_absorbance(tube)]}
+            for tube in checks
+        ],
+        "duplicates": [],
+        "spikes": [],
+        "policy": {
+            name: settings[name]
+            for name in (
+                "repeatability",
+                "bias_relative_u",
+                "bias_dof",
+                "verification_percent",
+                "duplicate_rpd_percent",
+                "spike_percent",
+            )
+        },
+    }
+
+
+def _tubes_found(run: Body, answer: Body, capacity: float) -> list[Body]:
+    """Return each read tube's COD in the tube and the share of the oxidant that it used."""
+    blank = answer["checks"]["blank"]
+    zero = blank["mean"] if blank else 0.0
+    read = [tube for tube in run["tubes"] if tube["absorbance"] is not None]
+    corrected = [[(_absorbance(tube) or 0.0) - zero] for tube in read]
+    given = answer["fit_input"] | {"read": corrected}
+    found = verbs.find("fit")(given)["read"]
+    return [
+        {"position": tube["position"], "in_tube": one["cod"], "share": max(0.0, one["cod"] / capacity)}
+        for tube, one in zip(read, found, strict=True)
+    ]
+
+
+def calculate_run(writing: Writing, id_: str) -> None:
+    """State a run's answer and the result of each of its samples."""
+    run = writing.get("run", id_) or {}
+    recipe = writing.get("recipe", run["recipe"]) or {}
+    calibration = writing.get("calibration", run["calibration"]) or {}
+    settings = writing.find("programme")[0][1]["settings"]
+    given = run_input(run, recipe, calibration, settings)
+    answer = verbs.find("calculate")(given)
+    fit_input = {
+        "standards": given["calibration"]["standards"],
+        "model": calibration["model"],
+        "weights": "equal",
+    }
+    capacity = recipe["derived"]["oxidant_capacity"]
+    body = {
+        "software": SOFTWARE,
+        "inputs_digest": inputs_digest(given),
+        "input": given,
+        "answer": answer,
+        "tubes": _tubes_found(run, {**answer, "fit_input": fit_input}, capacity),
+        "results": [_result(writing, id_, run, recipe, settings, one, answer) for one in answer["samples"]],
+        "waste": _waste(run, recipe),
+    }
+    writing.state("run.calculated", id_, body)
+
+
+def _waste(run: Body, recipe: Body) -> Body:
+    total = waste.totals(waste.per_tube(Recipe(**recipe_input(recipe))), len(run["tubes"]))
+    return asdict(total)
+
+
+def _result(
+    writing: Writing, run_id: str, run: Body, recipe: Body, settings: Body, one: Body, answer: Body
+) -> Body:
+    tubes = sample_names(run)[one["sample"]]
+    code, factor = tubes[0]["bottle"], tubes[0]["dilution"]["factor"]
+    known = writing.get("bottle", code) or {}
+    sample: Body = (known.get("sample") and writing.get("sample", known["sample"])) or {}
+    result: dict[str, Any] = {
+        name: one[name] for name in ("cod", "u", "expanded_u", "dof", "status", "reported", "components", "advice")
+    }
+    result |= {
+        "id": f"{run_id}:{one['sample'].replace(' ', ':')}",
+        "run": run_id,
+        "bottle": code,
+        "sample": known.get("sample"),
+        "point": known.get("point"),
+        "collected_at": sample.get("collected_at"),
+        "field": sample.get("field", {}),
+        "activity": sample.get("activity"),
+        "dilution": tubes[0]["dilution"],
+        "dilution_factor": factor,
+        "reporting_level": recipe["working_low"] * factor,
+        "top": recipe["working_high"] * factor,
+        "shown": (one["reported"] or {}).get("cod_text"),
+        "checks_ok": answer["ok"],
+        "source": "run",
+    }
+    return result | {"verdicts": _verdicts(writing, result, settings)}
+
+
+def _verdicts(writing: Writing, result: Body, settings: Body) -> list[Body]:
+    point = result["point"] and writing.get("point", result["point"])
+    if not point or not result["collected_at"]:
+        return []
+    zone = ZoneInfo(writing.find("programme")[0][1]["zone"])
+    day = datetime.fromisoformat(result["collected_at"]).astimezone(zone).date()
+    return verdicts.beside_limits(result, point["limits"], day, settings["decision_rule"])

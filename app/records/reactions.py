@@ -1,0 +1,64 @@
+"""What the server answers: results, fitted curves, expectations, as entries of its own.
+
+A handler only records; a reaction computes. What is due after an entry is
+collected by subject, so that a hundred results of one point lead to one new
+expectation, and runs before the transaction commits. A rebuild replays the
+server's entries and never comes here.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Iterator
+from typing import TYPE_CHECKING
+
+from app.records import laboratory, outlooks
+from app.records.change import Change
+
+if TYPE_CHECKING:
+    from app.records.ledger import Writing
+
+Due = tuple[int, str]
+
+DERIVE_RECIPE, FIT_CURVE, CALCULATE_RUN, LOOK_AHEAD = range(4)
+
+_REACTIONS: dict[int, Callable[["Writing", str], None]] = {
+    DERIVE_RECIPE: laboratory.derive_recipe,
+    FIT_CURVE: laboratory.fit_curve,
+    CALCULATE_RUN: laboratory.calculate_run,
+    LOOK_AHEAD: outlooks.look_ahead,
+}
+
+
+def due(change: Change) -> Iterator[Due]:
+    """Yield what an entry makes due, in the order of the sums."""
+    kind, about = change.entry.kind, change.entry.about
+    if kind == "recipe.adopted":
+        yield DERIVE_RECIPE, about
+    elif kind == "calibration.made":
+        yield FIT_CURVE, about
+    elif kind == "readings.finished" or (kind == "tube.excluded" and _calculated(change)):
+        yield CALCULATE_RUN, about
+    elif kind in ("point.registered", "result.recorded", "result.reviewed", "run.calculated"):
+        yield from ((LOOK_AHEAD, point) for point in _points(change))
+
+
+def run(what: Due, writing: Writing) -> None:
+    """Do what is due."""
+    _REACTIONS[what[0]](writing, what[1])
+
+
+def _calculated(change: Change) -> bool:
+    body = change.get("run", change.entry.about)
+    return body is not None and body["state"] == "calculated"
+
+
+def _points(change: Change) -> Iterator[str]:
+    kind = change.entry.kind
+    if kind == "point.registered":
+        yield change.entry.about
+    elif kind == "result.recorded":
+        yield change.body["point"]
+    elif kind == "result.reviewed":
+        yield change.need("result", change.entry.about)["point"]
+    else:
+        yield from sorted({one["point"] for one in change.body["results"] if one["point"]})
