@@ -123,7 +123,7 @@ def charge(
         decimal.
     """
     wrong = {
-        f"quantities.{name}": [f"must be a decimal under {LARGEST:.0e} in size"]
+        f"quantities.{name}": ["must be a decimal under 10^15 in size"]
         for name, number in quantities.items()
         if not isinstance(number, Decimal) or not number.is_finite() or abs(number) >= LARGEST
     }
@@ -136,7 +136,7 @@ def charge(
         amount = work(term, quantities)
         lines.append(Line(write(term), write(term, quantities), -amount if sign == "-" else amount))
     if abs(whole) >= LARGEST:
-        raise InputError("The charge grows beyond all bounds.", {"formula": [f"gives {LARGEST:.0e} or more"]})
+        raise InputError("The charge grows beyond all bounds.", {"formula": ["gives 10^15 or more"]})
     with localcontext() as context:
         context.prec = DIGITS
         rounded = whole.quantize(Decimal(1).scaleb(-places), rounding=ROUNDINGS[rounding])

@@ -115,7 +115,7 @@ class Standing:
     chronic, technical_review : bool or None
         None: cannot be judged.
     exceedances : tuple of Exceedance
-        In order of time.
+        In order of time, a month after its days.
     excluded : tuple of Measured
         Results of the window that a person took out, with reason and name.
     unjudged : tuple of str
@@ -275,7 +275,7 @@ class PointHistory:
             counts.get("monthly_average"),
             any(is_chronic(c.exceeding, c.n, policy.chronic_percent) for c in told) if told else None,
             any(is_chronic(c.technical, c.n, policy.technical_percent) for c in told) if told else None,
-            tuple(sorted(exceedances, key=lambda e: e.when)),
+            tuple(sorted(exceedances, key=lambda e: (e.when[:7], e.basis, e.when))),
             tuple(r for r in self.excluded if start <= r.taken.astimezone(policy.zone).date() <= end),
             tuple(basis for basis, _ in sets if basis in counts and not counts[basis].n),
             policy,
