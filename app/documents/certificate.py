@@ -33,6 +33,12 @@ from app.documents.words import (
 from app.errors import Fields, InputError
 
 NUMBER = re.compile(r"[A-Za-z0-9][A-Za-z0-9-]{0,31}")
+# A sign belongs to a bound and to nothing else.
+REPORTED = {
+    "ok": re.compile(r"\d+([.,]\d+)?"),
+    "below": re.compile(r"< ?\d+([.,]\d+)?"),
+    "over": re.compile(r"> ?\d+([.,]\d+)?"),
+}
 HEX = re.compile(r"[0-9a-f]{64}")
 VERDICT_WORDS = {
     "within": "Within the limit",
@@ -49,9 +55,8 @@ NOTES = (
     "The result concerns only the sample described here, not other times, and not the discharge as a whole.",
     "This document is not to be reproduced except in full, all its pages together, without the written "
     "approval of the laboratory.",
-    "Field readings were taken at the discharge point; they are not results of the laboratory.",
-    "An amendment is a later certificate that names this one. The address below tells whether this one still "
-    "stands.",
+    "An amendment is a later certificate that names this one; whether this one still stands is told at the "
+    "address below.",
 )
 
 Rows = list[list[str]]
@@ -59,22 +64,33 @@ Rows = list[list[str]]
 
 def _problems(data: CertificateData) -> Fields:
     wrong: Fields = {}
+    result = data.result
     if not HEX.fullmatch(data.journal.digest):
         wrong["journal.digest"] = ["must be 64 hexadecimal digits"]
     if data.sample.kind == "composite" and not data.sample.period_start:
         wrong["sample.period_start"] = ["a composite needs the beginning of its period"]
-    if not data.result.reported.strip():
-        wrong["result.reported"] = ["is missing"]
-    if data.number is None:
-        return wrong
-    if not NUMBER.fullmatch(data.number):
+    if not REPORTED[result.status].fullmatch(result.reported):
+        wrong["result.reported"] = [
+            f"{result.reported!r} is not how a result that is {result.status!r} reads"
+        ]
+    if result.status != "ok" and result.expanded_u is not None:
+        wrong["result.expanded_u"] = ["a bound carries no uncertainty"]
+    for index, check in enumerate(data.checks):
+        if data.number is not None and check.ok is False and not check.decision.strip():
+            wrong[f"checks.{index}.decision"] = ["a check that does not hold needs a decision"]
+    return wrong | _problems_of_issue(data)
+
+
+def _problems_of_issue(data: CertificateData) -> Fields:
+    wrong: Fields = {}
+    if data.number is not None and not NUMBER.fullmatch(data.number):
         wrong["number"] = ["takes letters, digits and hyphens, 32 at most"]
     for name in ("issued_at", "authorised"):
-        if getattr(data, name) is None:
+        given = getattr(data, name) is not None
+        if data.number is not None and not given:
             wrong[name] = ["a certificate with a number needs it"]
-    for index, check in enumerate(data.checks):
-        if check.ok is False and not check.decision.strip():
-            wrong[f"checks.{index}.decision"] = ["a check that does not hold needs a decision"]
+        if data.number is None and given:
+            wrong[name] = ["a draft has none"]
     return wrong
 
 
@@ -177,6 +193,8 @@ def _verdict_view(verdict: Verdict) -> dict[str, str]:
     words = VERDICT_WORDS[verdict.verdict]
     if verdict.basis and verdict.verdict in ("within", "above"):
         words = words.replace("limit", printable(verdict.basis))
+    elif verdict.basis and verdict.verdict == "undecided":
+        words = f"{words}: {printable(verdict.basis)}"
     return {"verdict": verdict.verdict, "words": words, "why": printable(verdict.why)}
 
 
@@ -209,12 +227,14 @@ def _authorised_rows(data: CertificateData) -> Rows:
 
 
 def _notes(data: CertificateData) -> list[str]:
-    received = (
-        ()
-        if data.sample.collected_by_laboratory
-        else ("The laboratory did not take the sample: the result applies to the sample as received.",)
-    )
-    return [*NOTES, *received, *(printable(note) for note in data.notes)]
+    notes = list(NOTES)
+    if data.sample.field_readings:
+        notes.append(
+            "Field readings were taken at the discharge point; they are not results of the laboratory."
+        )
+    if not data.sample.collected_by_laboratory:
+        notes.append("The laboratory did not take the sample: the result applies to the sample as received.")
+    return notes + [printable(note) for note in data.notes]
 
 
 def _proof(data: CertificateData, address: str | None) -> list[list[str]]:
@@ -228,48 +248,54 @@ def _proof(data: CertificateData, address: str | None) -> list[list[str]]:
     return [*rows, [journal, data.journal.digest]]
 
 
-def _view(data: CertificateData, base_url: str, paper: str) -> dict[str, Any]:
-    digest = data_digest(data)
-    address = None if data.number is None else f"{base_url.rstrip('/')}/verify/{data.number}"
+def _frame(data: CertificateData, paper: str) -> dict[str, Any]:
+    """Return what stands on every page."""
     title = "Certificate of analysis" if data.number else "Draft of a certificate of analysis"
     named = f"Certificate {data.number}" if data.number else "Draft, no number"
-    under = ["Not issued." if data.issued_at is None else f"Issued {moment(data.issued_at, data.zone)}"]
-    if data.replaces is not None:
-        under += [
-            f"Amendment: replaces certificate {held_together(data.replaces.number)}.",
-            f"What changed: {printable(data.replaces.change)}",
-        ]
-    if data.example:
-        under.append("Invented example data: nothing on this page was measured.")
-    watermark = "DRAFT" if data.number is None else "EXAMPLE DATA" if data.example else None
     return {
         "title": f"{title} {data.number or ''}".strip(),
         "title-words": title,
         "author": printable(data.laboratory.name),
         "description": f"Chemical oxygen demand of sample {printable(data.sample.bottle)}",
         "paper": paper,
-        "watermark": watermark,
+        "watermark": "DRAFT" if data.number is None else "EXAMPLE DATA" if data.example else None,
         "head-left": f"{title}, {printable(data.discharger.name)}",
         "head-right": named,
         "foot": f"{named}, made by {printable(data.software)}",
+        "end": f"End of certificate {data.number}" if data.number else "End of draft",
+    }
+
+
+def _under_title(data: CertificateData) -> list[str]:
+    issued = "Not issued." if data.issued_at is None else f"Issued {moment(data.issued_at, data.zone)}"
+    lines = [issued]
+    if data.replaces is not None:
+        lines += [
+            f"Amendment: replaces certificate {held_together(data.replaces.number)}.",
+            f"What changed: {printable(data.replaces.change)}",
+        ]
+    if data.example:
+        lines.append("Invented example data: nothing on this page was measured.")
+    return lines
+
+
+def _view(data: CertificateData, base_url: str, paper: str) -> dict[str, Any]:
+    address, qr = None, None
+    if data.number is not None:
+        address = f"{base_url.rstrip('/')}/verify/{data.number}"
+        said_of_it = f"QR code that leads to {address}"
+        qr = {"svg": qr_svg(f"{address}#{data_digest(data)}", said_of_it), "alt": said_of_it}
+    left = [("Whose and where", _who_rows(data)), ("Receipt", _receipt_rows(data))]
+    right = [("Sample", _sample_rows(data)), ("Method", _method_rows(data))]
+    return {
+        **_frame(data, paper),
         "programme": printable(data.programme.name),
         "number": data.number,
-        "under-title": under,
-        "qr": None
-        if address is None
-        else {"svg": qr_svg(f"{address}#{digest}", "QR code"), "alt": f"QR code that leads to {address}"},
+        "under-title": _under_title(data),
+        "qr": qr,
         **_result_view(data),
         "verdicts": [_verdict_view(v) for v in data.verdicts],
-        "columns": [
-            [
-                {"title": "Whose and where", "rows": _who_rows(data)},
-                {"title": "Receipt", "rows": _receipt_rows(data)},
-            ],
-            [
-                {"title": "Sample", "rows": _sample_rows(data)},
-                {"title": "Method", "rows": _method_rows(data)},
-            ],
-        ],
+        "columns": [[{"title": t, "rows": rows} for t, rows in side] for side in (left, right)],
         "decisions": [{"rows": _decision_rows(v)} for v in data.verdicts],
         "qualifiers": [
             [printable(q.letter), printable(q.meaning), printable(q.note)] for q in data.qualifiers
@@ -278,7 +304,6 @@ def _view(data: CertificateData, base_url: str, paper: str) -> dict[str, Any]:
         "notes": _notes(data),
         "proof": _proof(data, address),
         "appendix": appendix(data),
-        "end": f"End of certificate {data.number}" if data.number else "End of draft",
     }
 
 

@@ -13,11 +13,11 @@ from __future__ import annotations
 
 import hashlib
 import json
-import types
 import typing
-from dataclasses import asdict, dataclass, fields, is_dataclass
-from typing import Any, Literal
+from dataclasses import asdict, dataclass
+from typing import Literal
 
+from app.documents.plain import build
 from app.errors import Fields, InputError
 
 SCHEMA = "weirbook-certificate-1"
@@ -374,47 +374,12 @@ def certificate_from_json(content: bytes) -> CertificateData:
     """
     try:
         plain = json.loads(content)
-    except ValueError as error:
+    except (ValueError, RecursionError) as error:
         raise InputError("The attached data are not JSON.", {"data": [str(error)]}) from error
     wrong: Fields = {}
     if not isinstance(plain, dict) or plain.get("schema") != SCHEMA:
         raise InputError("These are not the data of a certificate.", {"schema": [f"must be {SCHEMA}"]})
-    found = _build(CertificateData, plain, "", wrong)
+    found = build(CertificateData, plain, "", wrong)
     if wrong:
         raise InputError("The attached data do not fit the schema.", wrong)
     return typing.cast(CertificateData, found)
-
-
-def _build(kind: Any, value: Any, path: str, wrong: Fields) -> Any:
-    """Turn plain JSON into the annotated type, collecting what does not fit."""
-    origin, inner = typing.get_origin(kind), typing.get_args(kind)
-    if is_dataclass(kind) and isinstance(value, dict):
-        return _build_dataclass(kind, value, path, wrong)
-    if origin is types.UnionType:
-        if value is None and type(None) in inner:
-            return None
-        return _build(next(k for k in inner if k is not type(None)), value, path, wrong)
-    if origin is tuple and isinstance(value, list):
-        kinds = inner[:1] * len(value) if inner[-1] is Ellipsis else inner
-        if len(kinds) == len(value):
-            parts = zip(kinds, value, strict=True)
-            return tuple(_build(k, v, f"{path}.{i}", wrong) for i, (k, v) in enumerate(parts))
-    if (
-        (origin is Literal and value in inner)
-        or (kind is float and type(value) in (int, float))
-        or (isinstance(kind, type) and type(value) is kind)
-    ):
-        return value
-    wrong.setdefault(path or "data", []).append("does not fit the schema")
-    return None
-
-
-def _build_dataclass(kind: Any, value: dict[str, Any], path: str, wrong: Fields) -> Any:
-    hints = typing.get_type_hints(kind)
-    names = {f.name for f in fields(kind)}
-    for name in sorted(names ^ set(value)):
-        where = f"{path}.{name}" if path else name
-        wrong.setdefault(where, []).append("is missing" if name in names else "is not known")
-    if names != set(value):
-        return None
-    return kind(**{n: _build(hints[n], value[n], f"{path}.{n}" if path else n, wrong) for n in names})

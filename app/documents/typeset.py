@@ -14,7 +14,7 @@ import re
 from datetime import datetime
 from functools import cache
 from pathlib import Path
-from typing import Any
+from typing import Any, Literal
 
 import typst
 
@@ -23,7 +23,7 @@ from app.errors import InputError
 
 TEMPLATES = Path(__file__).parent / "typst"
 PAPERS = {"a4": "a4", "letter": "us-letter"}
-STANDARDS = ["a-3a", "ua-1"]
+STANDARDS: list[Literal["a-3a", "ua-1"]] = ["a-3a", "ua-1"]
 TRIES = 3
 
 
@@ -60,7 +60,7 @@ def _compile(template: str, view: Any, data: str, made_at: datetime) -> bytes:
         ignore_system_fonts=True,
         timestamp=int(made_at.timestamp()),
         sys_inputs={"view": json.dumps(view, ensure_ascii=False), "data": data},
-        pdf_standards=STANDARDS,
+        pdf_standards=[*STANDARDS],
     )
     return made
 

@@ -29,7 +29,7 @@ def _readings(calibration: Calibration) -> list[tuple[float, float]]:
 def _words(calibration: Calibration, residuals: list[float]) -> str:
     levels = ", ".join(tick_words(s.cod) for s in calibration.standards)
     said = f"Standards of {levels} mg/L; the largest distance of a reading from the curve is "
-    said += f"{max(abs(r) for r in residuals):.4f} AU."
+    said += f"{max(abs(r) for r in residuals):.5f} AU."
     if calibration.read is not None:
         said += " The mean reading of this sample is marked with a diamond."
     return said
