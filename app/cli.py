@@ -14,7 +14,7 @@ import sys
 from collections.abc import Sequence
 from typing import Any, NoReturn, TextIO
 
-from app import verbs
+from app import care, verbs
 from app.errors import InputError, WeirbookError
 
 
@@ -52,20 +52,25 @@ def run_lines(verb: verbs.Verb, source: TextIO) -> int:
     return 0 if good else 2
 
 
-def run_sum(name: str, arguments: argparse.Namespace) -> int:
+def run_sum(arguments: argparse.Namespace) -> int:
     """Run one of the sums on a file or on standard input."""
-    verb = verbs.find(name)
+    verb = verbs.find(arguments.verb)
+    if arguments.file == "-":
+        return _run_on(verb, sys.stdin, arguments.lines)
     try:
-        source = sys.stdin if arguments.file == "-" else open(arguments.file, encoding="utf-8")
-    except OSError as error:
-        reason = error.strerror or str(error)
+        with open(arguments.file, encoding="utf-8") as source:
+            return _run_on(verb, source, arguments.lines)
+    except (OSError, UnicodeDecodeError) as error:
+        reason = getattr(error, "strerror", None) or str(error)
         body = InputError(f"{arguments.file} cannot be read: {reason}.", {"file": [reason]}).body()
         sys.stderr.write(_encode(body) + "\n")
         return 2
-    with source:
-        if arguments.lines:
-            return run_lines(verb, source)
-        reply, ok = answer(verb, source.read())
+
+
+def _run_on(verb: verbs.Verb, source: TextIO, lines: bool) -> int:
+    if lines:
+        return run_lines(verb, source)
+    reply, ok = answer(verb, source.read())
     (sys.stdout if ok else sys.stderr).write(_encode(reply) + "\n")
     return 0 if ok else 2
 
@@ -78,10 +83,13 @@ def parser() -> argparse.ArgumentParser:
         one = commands.add_parser(name, help=f"the sum '{name}' on JSON")
         one.add_argument("file", nargs="?", default="-", help="a JSON file, or - for standard input")
         one.add_argument("--lines", action="store_true", help="one JSON object a line")
+        one.set_defaults(run=run_sum)
+    care.add_verbs(commands)
     return top
 
 
 def main(argv: Sequence[str] | None = None) -> int:
     """Run a verb and return the exit status."""
     arguments = parser().parse_args(argv)
-    return run_sum(arguments.verb, arguments)
+    status: int = arguments.run(arguments)
+    return status

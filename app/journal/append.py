@@ -37,7 +37,12 @@ class Hold:
 
 
 def append(
-    connection: sqlite3.Connection, head: Head, entry: Entry, carrier: str, received_at: str, held: Hold | None
+    connection: sqlite3.Connection,
+    head: Head,
+    entry: Entry,
+    carrier: str,
+    received_at: str,
+    held: Hold | None,
 ) -> Head:
     """Append an entry and return the new head. The caller holds the write transaction."""
     position, linked = head.position + 1, link(head.digest, entry.raw)
@@ -106,8 +111,8 @@ def collision(connection: sqlite3.Connection, entry: Entry) -> Hold | None:
     ).fetchone():
         return Hold(
             "device_fork",
-            f"This device already sent a different entry number {entry.n}: it may be a copy of another device. "
-            "Both entries are kept; a coordinator decides.",
+            f"This device already sent a different entry number {entry.n}: it may be a copy of another "
+            "device. Both entries are kept; a coordinator decides.",
         )
     return None
 
@@ -115,14 +120,15 @@ def collision(connection: sqlite3.Connection, entry: Entry) -> Hold | None:
 def contiguous(connection: sqlite3.Connection, device: str, incarnation: str) -> int:
     """Return the first number of a device that the server has not seen."""
     last, count = connection.execute(
-        "SELECT coalesce(max(n), 0), count(DISTINCT n) FROM journal WHERE device = ? AND incarnation = ? AND n > 0",
+        "SELECT coalesce(max(n), 0), count(DISTINCT n) FROM journal "
+        "WHERE device = ? AND incarnation = ? AND n > 0",
         (device, incarnation),
     ).fetchone()
     if last == count:
         return int(last) + 1
     gap = connection.execute(
-        "SELECT min(a.n) + 1 FROM (SELECT 0 AS n UNION SELECT n FROM journal WHERE device = ?1 AND incarnation = ?2) a "
-        "WHERE NOT EXISTS (SELECT 1 FROM journal b WHERE b.device = ?1 AND b.incarnation = ?2 AND b.n = a.n + 1)",
+        "WITH seen AS (SELECT n FROM journal WHERE device = ? AND incarnation = ?) "
+        "SELECT min(n) + 1 FROM (SELECT 0 AS n UNION SELECT n FROM seen) WHERE n + 1 NOT IN (SELECT n FROM seen)",
         (device, incarnation),
     ).fetchone()
     return int(gap[0])

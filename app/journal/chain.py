@@ -44,9 +44,7 @@ def link(previous: str, raw: bytes) -> str:
 
 def head(connection: sqlite3.Connection) -> Head:
     """Return the newest entry's place and digest."""
-    row = connection.execute(
-        "SELECT position, digest FROM journal ORDER BY position DESC LIMIT 1"
-    ).fetchone()
+    row = connection.execute("SELECT position, digest FROM journal ORDER BY position DESC LIMIT 1").fetchone()
     return Head(*row) if row else Head(0, GENESIS)
 
 
@@ -69,7 +67,8 @@ def first_bad(connection: sqlite3.Connection) -> int | None:
 def rows(connection: sqlite3.Connection, after: int = 0) -> Iterator[Row]:
     """Yield the journal's rows in order, one at a time."""
     for position, device, carrier, received_at, held, raw in connection.execute(
-        "SELECT position, device, carrier, received_at, held, raw FROM journal WHERE position > ? ORDER BY position",
+        "SELECT position, device, carrier, received_at, held, raw FROM journal "
+        "WHERE position > ? ORDER BY position",
         (after,),
     ):
         yield Row(position, device, carrier, received_at, json.loads(held) if held else None, raw)

@@ -116,5 +116,18 @@ def reopen(raw: bytes) -> Entry:
 
 
 def _entry(given: dict[str, Any], raw: bytes) -> Entry:
-    names = ("id", "device", "incarnation", "n", "prev", "kind", "version", "about", "at", "zone", "by", "base")
+    names = (
+        "id",
+        "device",
+        "incarnation",
+        "n",
+        "prev",
+        "kind",
+        "version",
+        "about",
+        "at",
+        "zone",
+        "by",
+        "base",
+    )
     return Entry(**{name: given[name] for name in names}, body=given["body"], raw=raw)

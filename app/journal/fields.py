@@ -18,7 +18,9 @@ _ID = re.compile(r"[A-Za-z0-9:._-]{1,80}")
 class Id(fields.String):
     """Something's identity: 1 to 80 letters, digits, ``:``, ``.``, ``_`` or ``-``."""
 
-    def _deserialize(self, value: Any, attr: str | None, data: Mapping[str, Any] | None, **kwargs: Any) -> str:
+    def _deserialize(
+        self, value: Any, attr: str | None, data: Mapping[str, Any] | None, **kwargs: Any
+    ) -> str:
         text: str = super()._deserialize(value, attr, data, **kwargs)
         if not _ID.fullmatch(text):
             raise ValidationError("Not an identity that Weirbook gives.")
@@ -33,7 +35,9 @@ class Text(fields.String):
         self.longest = longest
         self.blank = blank
 
-    def _deserialize(self, value: Any, attr: str | None, data: Mapping[str, Any] | None, **kwargs: Any) -> str:
+    def _deserialize(
+        self, value: Any, attr: str | None, data: Mapping[str, Any] | None, **kwargs: Any
+    ) -> str:
         text: str = super()._deserialize(value, attr, data, **kwargs)
         if not self.blank and not text.strip():
             raise ValidationError("Must not be blank.")
@@ -45,7 +49,9 @@ class Text(fields.String):
 class When(fields.String):
     """A moment: RFC 3339 with its offset from UTC; kept as the text that came."""
 
-    def _deserialize(self, value: Any, attr: str | None, data: Mapping[str, Any] | None, **kwargs: Any) -> str:
+    def _deserialize(
+        self, value: Any, attr: str | None, data: Mapping[str, Any] | None, **kwargs: Any
+    ) -> str:
         text: str = super()._deserialize(value, attr, data, **kwargs)
         try:
             moment = datetime.fromisoformat(text)
@@ -59,7 +65,9 @@ class When(fields.String):
 class Day(fields.String):
     """A day, as 2031-06-01."""
 
-    def _deserialize(self, value: Any, attr: str | None, data: Mapping[str, Any] | None, **kwargs: Any) -> str:
+    def _deserialize(
+        self, value: Any, attr: str | None, data: Mapping[str, Any] | None, **kwargs: Any
+    ) -> str:
         text: str = super()._deserialize(value, attr, data, **kwargs)
         try:
             date.fromisoformat(text)
@@ -77,7 +85,9 @@ class Number(fields.String):
         super().__init__(**kwargs)
         self.low, self.high, self.bounds = low, high, bounds
 
-    def _deserialize(self, value: Any, attr: str | None, data: Mapping[str, Any] | None, **kwargs: Any) -> str:
+    def _deserialize(
+        self, value: Any, attr: str | None, data: Mapping[str, Any] | None, **kwargs: Any
+    ) -> str:
         text: str = super()._deserialize(value, attr, data, **kwargs)
         self.check(text)
         return text
@@ -125,8 +135,15 @@ class Measured(fields.Nested):
         self.number = Number(bounds=bounds)
         self.low, self.high = low, high
 
-    def _deserialize(self, value: Any, attr: str | None, data: Mapping[str, Any] | None, **kwargs: Any) -> Any:
-        given = super()._deserialize(value, attr, data, **kwargs)
+    def _deserialize(
+        self,
+        value: Any,
+        attr: str | None,
+        data: Mapping[str, Any] | None,
+        partial: Any = None,
+        **kwargs: Any,
+    ) -> Any:
+        given = super()._deserialize(value, attr, data, partial, **kwargs)
         reading = self.number.check(given["text"])
         try:
             if units.quantity(given["unit"]) != self.quantity:
@@ -139,7 +156,7 @@ class Measured(fields.Nested):
     def _in_bounds(self, number: float, unit: str) -> None:
         one = units.table()[unit]
         base = number * float(one["factor"]) + float(one.get("offset", 0))
-        if self.low is not None and base < self.low or self.high is not None and base > self.high:
+        if (self.low is not None and base < self.low) or (self.high is not None and base > self.high):
             low = "" if self.low is None else f" from {self.low:g}"
             high = "" if self.high is None else f" up to {self.high:g}"
             raise ValidationError(f"Not a possible {self.quantity}: expected{low}{high}.")

@@ -17,9 +17,12 @@ from typing import Any
 from app.errors import InputError
 from app.journal import units
 
-_SPACES = "    "
+_SPACES = "\u00a0\u2007\u2009\u202f"
 _TEXT = re.compile(
-    r"(?P<sign>[<>]?)(?P<number>-?(?:\d{1,3}(?: \d{3})+|\d+)(?:[.,]\d+)?|-?[.,]\d+)(?P<exponent>[eE][+-]?\d{1,3})?"
+    r"(?P<sign>[<>]?)"
+    r"(?P<number>-?(?:\d{1,3}(?: \d{3})+|\d+)(?:[.,]\d+)?|-?[.,]\d+)"
+    r"(?P<exponent>[eE][+-]?\d{1,3})?",
+    re.ASCII,
 )
 _SIGNS = str.maketrans({"≤": "<", "≥": ">", "−": "-"} | dict.fromkeys(_SPACES, " "))
 

@@ -73,7 +73,8 @@ class Store:
         newer = [m.name for m in migrations.applied(db) if m.name not in known]
         if newer:
             raise StoreError(
-                f"The store in {self.folder} was written by a newer Weirbook: install that version; nothing was changed."
+                f"The store in {self.folder} was written by a newer Weirbook: install that version. "
+                "Nothing was changed."
             )
         migrations.apply(db)
 

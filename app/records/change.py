@@ -71,8 +71,8 @@ class Change:
         if body is None:
             raise Refused(
                 f"unknown_{type_}",
-                f"This {type_} is not known to the server yet. The entry is kept; when the {type_} has arrived, a "
-                "coordinator can bring it into force.",
+                f"This {type_} is not known to the server yet. The entry is kept; when the {type_} has "
+                "arrived, a coordinator can bring it into force.",
             )
         return body
 
@@ -93,7 +93,8 @@ class Change:
         """Put a record's new body and leave its parent and time as they are."""
         text = json.dumps(body, ensure_ascii=False, separators=(",", ":"))
         self.connection.execute(
-            "UPDATE record SET position = ?, body = ? WHERE type = ? AND id = ?", (self.position, text, type_, id_)
+            "UPDATE record SET position = ?, body = ? WHERE type = ? AND id = ?",
+            (self.position, text, type_, id_),
         )
 
     def name_of(self, person: str) -> str:

@@ -15,6 +15,7 @@ from typing import TYPE_CHECKING, Any
 from zoneinfo import ZoneInfo
 
 from app import __version__, verbs
+from app.chemistry import rounding
 from app.chemistry.recipe import Recipe
 from app.errors import WeirbookError
 from app.journal import measured
@@ -87,7 +88,7 @@ def _read(run: Body, role: str) -> list[Body]:
 
 
 def sample_names(run: Body) -> dict[str, list[Body]]:
-    """Return the read sample tubes by the sample's name: the bottle, and its dilution where it has several."""
+    """Return the read tubes by sample: the bottle's code, and its dilution where it has several."""
     factors: dict[str, set[float]] = {}
     for tube in _read(run, "sample"):
         factors.setdefault(tube["bottle"], set()).add(tube["dilution"]["factor"])
@@ -160,18 +161,23 @@ def run_input(run: Body, recipe: Body, calibration: Body, settings: Body) -> Bod
     }
 
 
-def _tubes_found(run: Body, answer: Body, capacity: float) -> list[Body]:
+def _tubes_found(run: Body, given: Body, answer: Body, capacity: float) -> list[Body]:
     """Return each read tube's COD in the tube and the share of the oxidant that it used."""
     blank = answer["checks"]["blank"]
     zero = blank["mean"] if blank else 0.0
-    read = [tube for tube in run["tubes"] if tube["absorbance"] is not None]
-    corrected = [[(_absorbance(tube) or 0.0) - zero] for tube in read]
-    given = answer["fit_input"] | {"read": corrected}
-    found = verbs.find("fit")(given)["read"]
-    return [
-        {"position": tube["position"], "in_tube": one["cod"], "share": max(0.0, one["cod"] / capacity)}
-        for tube, one in zip(read, found, strict=True)
-    ]
+    curve = {"standards": given["calibration"]["standards"], "model": given["calibration"]["model"]}
+    found = []
+    for tube in run["tubes"]:
+        if tube["absorbance"] is None:
+            continue
+        try:
+            corrected = (_absorbance(tube) or 0.0) - zero
+            cod = verbs.find("fit")(curve | {"weights": "equal", "read": [[corrected]]})["read"][0]["cod"]
+        except WeirbookError:  # beyond the curve's turning point there is no number
+            cod = None
+        share = None if cod is None else max(0.0, cod / capacity)
+        found.append({"position": tube["position"], "in_tube": cod, "share": share})
+    return found
 
 
 def calculate_run(writing: Writing, id_: str) -> None:
@@ -182,18 +188,13 @@ def calculate_run(writing: Writing, id_: str) -> None:
     settings = writing.find("programme")[0][1]["settings"]
     given = run_input(run, recipe, calibration, settings)
     answer = verbs.find("calculate")(given)
-    fit_input = {
-        "standards": given["calibration"]["standards"],
-        "model": calibration["model"],
-        "weights": "equal",
-    }
     capacity = recipe["derived"]["oxidant_capacity"]
     body = {
         "software": SOFTWARE,
         "inputs_digest": inputs_digest(given),
         "input": given,
         "answer": answer,
-        "tubes": _tubes_found(run, {**answer, "fit_input": fit_input}, capacity),
+        "tubes": _tubes_found(run, given, answer, capacity),
         "results": [_result(writing, id_, run, recipe, settings, one, answer) for one in answer["samples"]],
         "waste": _waste(run, recipe),
     }
@@ -213,7 +214,8 @@ def _result(
     known = writing.get("bottle", code) or {}
     sample: Body = (known.get("sample") and writing.get("sample", known["sample"])) or {}
     result: dict[str, Any] = {
-        name: one[name] for name in ("cod", "u", "expanded_u", "dof", "status", "reported", "components", "advice")
+        name: one[name]
+        for name in ("cod", "u", "expanded_u", "dof", "status", "reported", "components", "advice")
     }
     result |= {
         "id": f"{run_id}:{one['sample'].replace(' ', ':')}",
@@ -228,11 +230,22 @@ def _result(
         "dilution_factor": factor,
         "reporting_level": recipe["working_low"] * factor,
         "top": recipe["working_high"] * factor,
-        "shown": (one["reported"] or {}).get("cod_text"),
+        **_shown(one),
         "checks_ok": answer["ok"],
         "source": "run",
     }
     return result | {"verdicts": _verdicts(writing, result, settings)}
+
+
+def _shown(one: Body) -> Body:
+    """Return a result's texts as they are printed, rounded once by the reporting rule."""
+    if one["status"] == "ok":
+        u = one["expanded_u"]
+        return {
+            "shown": rounding.plain(rounding.reported_cod(one["cod"])),
+            "shown_u": None if u is None else rounding.plain(rounding.reported_u(u)),
+        }
+    return {"shown": (one["reported"] or {}).get("cod"), "shown_u": None}
 
 
 def _verdicts(writing: Writing, result: Body, settings: Body) -> list[Body]:

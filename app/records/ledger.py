@@ -71,7 +71,10 @@ class Ledger:
     def push(self, texts: Sequence[str], carrier: str, device: str, incarnation: str) -> list[Answer]:
         """Take the entries of a device, in their order; each is answered."""
         with self.transaction() as writing:
-            return [writing.take(text.encode("utf-8", "surrogatepass"), carrier, device, incarnation) for text in texts]
+            return [
+                writing.take(text.encode("utf-8", "surrogatepass"), carrier, device, incarnation)
+                for text in texts
+            ]
 
     def state(self, kind: str, about: str, body: Body, by: str = SYSTEM) -> Entry:
         """State one entry as the server."""
@@ -174,7 +177,9 @@ class Writing:
     def _objection(self, entry: Entry) -> Hold | None:
         kind = kinds.table().get(entry.kind)
         if kind is None:
-            return Hold("unknown_kind", f"This server does not know entries of kind {entry.kind}; update the server.")
+            return Hold(
+                "unknown_kind", f"This server does not know entries of kind {entry.kind}; update the server."
+            )
         if entry.version > kind.version:
             return Hold("newer_version", "This entry was made by a newer client; update the server.")
         author = self.get("person", entry.by)
@@ -236,7 +241,9 @@ def _settle(change: Change) -> Change:
     decision = change.body["decision"]
     state = "admitted" if decision == "admit" else "set aside"
     settled = {"by": change.name_of(change.entry.by), "at": change.entry.at, "reason": change.body["reason"]}
-    change.put("held", change.entry.about, held | {"state": state, "settled": settled}, at=held["received_at"])
+    change.put(
+        "held", change.entry.about, held | {"state": state, "settled": settled}, at=held["received_at"]
+    )
     if decision != "admit":
         return change
     if held["code"] in ("unreadable", "unknown_kind", "newer_version", "not_permitted"):
@@ -273,5 +280,3 @@ def put_held(
     known = get(connection, "held", entry.id)
     id_ = entry.id if known is None else f"{entry.id}:{position}"
     Change(connection, entry, {}, position, received_at).put("held", id_, body, at=received_at)
-
-

@@ -21,7 +21,7 @@ Due = tuple[int, str]
 
 DERIVE_RECIPE, FIT_CURVE, CALCULATE_RUN, LOOK_AHEAD = range(4)
 
-_REACTIONS: dict[int, Callable[["Writing", str], None]] = {
+_REACTIONS: dict[int, Callable[[Writing, str], None]] = {
     DERIVE_RECIPE: laboratory.derive_recipe,
     FIT_CURVE: laboratory.fit_curve,
     CALCULATE_RUN: laboratory.calculate_run,

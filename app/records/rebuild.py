@@ -61,7 +61,8 @@ def rebuild(store: Store) -> Rebuilt:
                 replay(connection, row)
             except Refused as refusal:
                 raise StoreError(
-                    f"Entry {row.position} no longer comes into force: {refusal}. The records were left as they were."
+                    f"Entry {row.position} no longer comes into force: {refusal}. The records were left as "
+                    "they were."
                 ) from refusal
             count += 1
         after = digest_of_records(connection)

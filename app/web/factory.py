@@ -18,7 +18,10 @@ MAX_REQUEST_BYTES = 16 * 1024 * 1024
 
 
 def create_app(
-    folder: Path, base_url: str = "http://localhost:8700", hosts: tuple[str, ...] = (), fast_passwords: bool = False
+    folder: Path,
+    base_url: str = "http://localhost:8700",
+    hosts: tuple[str, ...] = (),
+    fast_passwords: bool = False,
 ) -> Flask:
     """Return the application for the store in a folder.
 
@@ -52,5 +55,6 @@ def create_app(
     api = security.OneBodyApi(app)
     for module in (sessions, programme, sync, certificates):
         api.register_blueprint(module.blueprint)
+    app.register_blueprint(certificates.public)
     app.register_blueprint(shell.blueprint)
     return app

@@ -44,13 +44,16 @@ WORDS = {
     400: ("bad_request", "The request could not be read. Nothing was changed."),
     404: ("not_found", "There is nothing under this address."),
     405: ("method", "This address does not take that kind of request."),
-    413: ("too_large", "That is more than the server takes at once. Nothing was changed; send it in smaller parts."),
+    413: (
+        "too_large",
+        "That is more than the server takes at once. Nothing was changed; send it in smaller parts.",
+    ),
     415: ("media_type", "The server takes JSON only. Nothing was changed."),
     422: ("invalid_input", "Some of what was given cannot be used. Nothing was changed."),
     500: (
         "failed",
-        "The server failed at this. Nothing was half written; what is on this device is kept. Try again, then tell "
-        "the administrator.",
+        "The server failed at this. Nothing was half written; what is on this device is kept. Try again, then "
+        "tell the administrator.",
     ),
 }
 

@@ -106,7 +106,9 @@ def need(*roles: str) -> Callable[[Callable[P, R]], Callable[P, R]]:
         def guarded(*args: P.args, **kwargs: P.kwargs) -> R:
             who = person()
             if who is None:
-                raise SignInNeeded("Sign in first. What is recorded on this device is kept and goes out afterwards.")
+                raise SignInNeeded(
+                    "Sign in first. What is recorded on this device is kept and goes out afterwards."
+                )
             if roles and not who.roles & set(roles):
                 raise NotPermitted(f"Only {' or '.join(roles)} may do this. Nothing was changed.")
             return view(*args, **kwargs)
@@ -184,7 +186,9 @@ def _verify(sign_in: str, password: str) -> str:
         .execute("SELECT person, password FROM account WHERE sign_in = ?", (sign_in.casefold(),))
         .fetchone()
     )
-    hashed = row[1] if row else context().passwords.hash("nobody")  # an unknown name takes as long as a known one
+    hashed = (
+        row[1] if row else context().passwords.hash("nobody")
+    )  # an unknown name takes as long as a known one
     try:
         context().passwords.verify(hashed, password)
     except VerificationError:

@@ -66,7 +66,7 @@ class AnswerSchema(Body):
     position = fields.Integer()
     code = fields.String()
     message = fields.String()
-    fields = fields.Dict()
+    fields_ = fields.Dict(data_key="fields", attribute="fields")
 
 
 class PushedSchema(Body):
@@ -150,6 +150,8 @@ def push(given: dict[str, Any]) -> dict[str, Any]:
 def pull(given: dict[str, Any]) -> dict[str, Any]:
     """Give the records changed after a position."""
     if given["epoch"] != context().store.epoch:
-        raise Reset("The server's records begin anew: this device reads them all again. Nothing unsent is lost.")
+        raise Reset(
+            "The server's records begin anew: this device reads them all again. Nothing unsent is lost."
+        )
     found = page(context().store.read(), given["after"], given["limit"])
     return _common() | {"records": found.records, "next": found.next, "more": found.more}

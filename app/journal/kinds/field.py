@@ -86,5 +86,3 @@ class CustodyHandedOver(Body):
     to = Text(required=True)
     temperature = Measured("temperature", low=-5, high=60, required=True, allow_none=True)
     note = Text(required=True, blank=True, longest=2000)
-
-

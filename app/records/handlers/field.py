@@ -69,8 +69,8 @@ def sample_taken(change: Change) -> None:
     if known["sample"] not in (None, id_):
         raise Refused(
             "bottle_in_use",
-            f"Bottle {code} already belongs to another sample. Both entries are kept; a coordinator decides which "
-            "label was wrong.",
+            f"Bottle {code} already belongs to another sample. Both entries are kept; a coordinator decides "
+            "which label was wrong.",
             {"bottle": ["This code is taken."]},
         )
     if change.get("sample", id_):

@@ -79,5 +79,3 @@ def outlook_computed(change: Change) -> None:
     ]
     body = change.body | {"computed_at": change.entry.at, "recent": recent}
     change.put("outlook", change.entry.about, body, parent=change.entry.about)
-
-

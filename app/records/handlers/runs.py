@@ -37,7 +37,8 @@ def _open_gates(change: Change, run: Body, stage: safety.Stage) -> None:
     if left:
         raise Refused(
             "gate_open",
-            f"“{left[0].gate.title}”: {left[0].why}. The step is kept, but it does not count before the gate is confirmed.",
+            f"“{left[0].gate.title}”: {left[0].why}. The step is kept, but it does not count before the gate "
+            "is confirmed.",
             {f"gate.{one.gate.id}": [one.why] for one in left},
         )
 
@@ -160,7 +161,9 @@ def tube_read(change: Change, run: Body) -> None:
     tube = _tube(run, change.body["position"])
     if tube["absorbance"] is not None and not change.body.get("reason", "").strip():
         raise Refused(
-            "reason_needed", "This tube was read before: a correction needs its reason.", {"reason": ["Missing."]}
+            "reason_needed",
+            "This tube was read before: a correction needs its reason.",
+            {"reason": ["Missing."]},
         )
     reading = {
         "absorbance": change.body["absorbance"],
@@ -277,7 +280,7 @@ def _fill_container(change: Change, run: Body) -> None:
     waste = run["waste"]
     if waste is None:
         return
-    for name in ("mercury_mg", "chromium_mg", "silver_mg", "acid_ml"):
+    for name in ("mercury_mg", "chromium_mg", "silver_mg", "acid_reagent_ml", "sulfuric_acid_g", "mass_g"):
         container[name] += waste[name]
     container["filled_ml"] += waste["volume_ml"]
     container["tubes"] += waste["tubes"]

@@ -47,7 +47,9 @@ def lot_made(change: Change) -> None:
     change.need("recipe", change.body["recipe"])
     if date.fromisoformat(change.body["expires_on"]) < date.fromisoformat(change.body["made_on"]):
         raise Refused("wrong_dates", "A lot cannot expire before it was made.")
-    change.put("lot", change.entry.about, change.body, parent=change.body["recipe"], at=change.body["made_on"])
+    change.put(
+        "lot", change.entry.about, change.body, parent=change.body["recipe"], at=change.body["made_on"]
+    )
 
 
 @handles("instrument.added")
@@ -66,7 +68,9 @@ def container_opened(change: Change) -> None:
         "mercury_mg": 0.0,
         "chromium_mg": 0.0,
         "silver_mg": 0.0,
-        "acid_ml": 0.0,
+        "acid_reagent_ml": 0.0,
+        "sulfuric_acid_g": 0.0,
+        "mass_g": 0.0,
         "tubes": 0,
         "runs": [],
         "opened_at": change.entry.at,
@@ -86,12 +90,21 @@ def calibration_made(change: Change) -> None:
     if abs(wavelength - recipe["wavelength_nm"]) > 20:
         raise Refused(
             "wrong_wavelength",
-            f"The recipe reads at {recipe['wavelength_nm']:g} nm; standards read elsewhere make no curve for it.",
+            f"The recipe reads at {recipe['wavelength_nm']:g} nm; standards read elsewhere make no curve "
+            "for it.",
             {"wavelength_nm": ["More than 20 nm from the recipe's."]},
         )
-    made = {"wavelength_nm": wavelength, "made_at": change.entry.at, "made_by": change.name_of(change.entry.by)}
+    made = {
+        "wavelength_nm": wavelength,
+        "made_at": change.entry.at,
+        "made_by": change.name_of(change.entry.by),
+    }
     change.put(
-        "calibration", change.entry.about, body | made | {"fitted": None}, parent=body["recipe"], at=change.entry.at
+        "calibration",
+        change.entry.about,
+        body | made | {"fitted": None},
+        parent=body["recipe"],
+        at=change.entry.at,
     )
 
 

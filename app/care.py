@@ -1,0 +1,104 @@
+"""The care of a store on the command line: serve it, rebuild its records, verify its chain."""
+
+from __future__ import annotations
+
+import argparse
+import logging
+import os
+import sys
+from pathlib import Path
+
+from app.errors import WeirbookError
+from app.journal import chain
+from app.journal.store import Store
+from app.records.rebuild import rebuild
+
+PORT = 8700
+
+
+def add_verbs(commands: argparse._SubParsersAction[argparse.ArgumentParser]) -> None:
+    """Add the verbs of this module to the command line."""
+    one = commands.add_parser("serve", help="serve the programme in a store")
+    _add_store(one)
+    one.add_argument("--port", type=int, default=PORT)
+    one.add_argument("--example", action="store_true", help="fill an empty store with the invented programme")
+    one.set_defaults(run=serve)
+    for name, function, words in (
+        ("rebuild", rebuild_records, "derive every record again from the journal"),
+        ("verify", verify_chain, "walk the journal's chain and name the first bad entry"),
+    ):
+        one = commands.add_parser(name, help=words)
+        _add_store(one)
+        one.set_defaults(run=function)
+
+
+def _add_store(one: argparse.ArgumentParser) -> None:
+    one.add_argument("--store", type=Path, default=Path("data"), help="the store's folder")
+
+
+def serve(arguments: argparse.Namespace) -> int:
+    """Serve until the process is ended."""
+    from waitress.server import create_server
+
+    from app.scenarios import load
+    from app.web.factory import create_app
+
+    logging.basicConfig(level=logging.WARNING, format="%(message)s")
+    address = f"http://localhost:{arguments.port}"
+    fast = os.environ.get("WEIRBOOK_FAST_PASSWORDS") == "1"
+    try:
+        app = create_app(arguments.store, address, fast_passwords=fast)
+        store = app.extensions["weirbook"].store
+        if arguments.example and chain.head(store.read()).position == 0:
+            load(store)
+        server = create_server(app, host="127.0.0.1", port=arguments.port, threads=8, ident=None)
+    except (WeirbookError, OSError) as error:
+        return _fail(error, f"Port {arguments.port} cannot be used")
+    print(f"Weirbook serves {arguments.store} on {address}", flush=True)
+    try:
+        server.run()
+    except KeyboardInterrupt:
+        pass
+    finally:
+        store.close()
+    return 0
+
+
+def _fail(error: Exception, about: str) -> int:
+    words = error.message if isinstance(error, WeirbookError) else f"{about}: {error}."
+    print(words, file=sys.stderr)
+    return 1
+
+
+def _open(folder: Path) -> Store:
+    if not (folder / "weirbook.db").exists():
+        raise WeirbookError(f"There is no store in {folder}.")
+    return Store(folder)
+
+
+def rebuild_records(arguments: argparse.Namespace) -> int:
+    """Derive every record again and say whether they came out the same."""
+    try:
+        store = _open(arguments.store)
+        done = rebuild(store)
+    except WeirbookError as error:
+        return _fail(error, "")
+    store.close()
+    same = "the same as before" if done.before == done.after else "different from before"
+    print(f"{done.entries} entries replayed; the records are {same} ({done.after[:16]}).")
+    return 0
+
+
+def verify_chain(arguments: argparse.Namespace) -> int:
+    """Walk the chain; 1 where an entry is bad."""
+    try:
+        store = _open(arguments.store)
+    except WeirbookError as error:
+        return _fail(error, "")
+    bad, head = chain.first_bad(store.read()), chain.head(store.read())
+    store.close()
+    if bad is not None:
+        print(f"Entry {bad} is not as it was written; entries before it are whole.")
+        return 1
+    print(f"{head.position} entries, each as it was written; head {head.digest}.")
+    return 0
