@@ -128,7 +128,8 @@ def contiguous(connection: sqlite3.Connection, device: str, incarnation: str) ->
         return int(last) + 1
     gap = connection.execute(
         "WITH seen AS (SELECT n FROM journal WHERE device = ? AND incarnation = ?) "
-        "SELECT min(n) + 1 FROM (SELECT 0 AS n UNION SELECT n FROM seen) WHERE n + 1 NOT IN (SELECT n FROM seen)",
+        "SELECT min(n) + 1 FROM (SELECT 0 AS n UNION SELECT n FROM seen) "
+        "WHERE n + 1 NOT IN (SELECT n FROM seen)",
         (device, incarnation),
     ).fetchone()
     return int(gap[0])

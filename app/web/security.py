@@ -52,8 +52,8 @@ WORDS = {
     422: ("invalid_input", "Some of what was given cannot be used. Nothing was changed."),
     500: (
         "failed",
-        "The server failed at this. Nothing was half written; what is on this device is kept. Try again, then "
-        "tell the administrator.",
+        "The server failed at this. Nothing was half written; what is on this device is kept. Try again, "
+        "then tell the administrator.",
     ),
 }
 
