@@ -42,7 +42,7 @@ def _strip(data: CertificateData) -> list[Part]:
         "each dilution, and the limit. The dilution used is the filled bar."
     )
     svg = strip_svg(data.strip, "print", 600)
-    return [_part("Expected range, dilution and limit", words, picture=picture(svg), **{"picture-width": 88})]
+    return [_part("Expected range, dilution and limit", words, picture=picture(svg), **{"picture-width": 78})]
 
 
 def _calibration(data: CertificateData) -> list[Part]:
@@ -59,7 +59,7 @@ def _calibration(data: CertificateData) -> list[Part]:
     )
     svg = calibration_svg(c, "print", 600)
     return [
-        _part("Calibration with residuals", words, picture=picture(svg), **{"picture-width": 88}),
+        _part("Calibration with residuals", words, picture=picture(svg), **{"picture-width": 78}),
         _part(
             "Standards",
             facts=[[printable(f.name), number_with_unit(f.text, f.unit)] for f in c.facts],
@@ -108,7 +108,7 @@ def _budget(data: CertificateData) -> list[Part]:
             header=["Source", "u, mg/L", "Share, %", "Degrees of freedom", "Where from"],
             rows=rows,
             right=[1, 2, 3],
-            **{"picture-width": 84},
+            **{"picture-width": 72},
         )
     ]
 

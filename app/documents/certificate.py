@@ -59,6 +59,8 @@ NOTES = (
     "address below.",
 )
 
+NO_DECISION = [{"rows": [["Limit", "no statement of conformity is made in this document"]]}]
+
 Rows = list[list[str]]
 
 
@@ -267,16 +269,19 @@ def _frame(data: CertificateData, paper: str) -> dict[str, Any]:
 
 
 def _under_title(data: CertificateData) -> list[str]:
-    issued = "Not issued." if data.issued_at is None else f"Issued {moment(data.issued_at, data.zone)}"
-    lines = [issued]
-    if data.replaces is not None:
-        lines += [
-            f"Amendment: replaces certificate {held_together(data.replaces.number)}.",
-            f"What changed: {printable(data.replaces.change)}",
-        ]
+    lines = ["Not issued." if data.issued_at is None else f"Issued {moment(data.issued_at, data.zone)}"]
     if data.example:
         lines.append("Invented example data: nothing on this page was measured.")
     return lines
+
+
+def _amendment(data: CertificateData) -> list[str]:
+    if data.replaces is None:
+        return []
+    return [
+        f"Amendment: replaces certificate {held_together(data.replaces.number)}.",
+        f"What changed: {said(data.replaces.change)}",
+    ]
 
 
 def _view(data: CertificateData, base_url: str, paper: str) -> dict[str, Any]:
@@ -292,11 +297,12 @@ def _view(data: CertificateData, base_url: str, paper: str) -> dict[str, Any]:
         "programme": printable(data.programme.name),
         "number": data.number,
         "under-title": _under_title(data),
+        "amendment": _amendment(data),
         "qr": qr,
         **_result_view(data),
         "verdicts": [_verdict_view(v) for v in data.verdicts],
         "columns": [[{"title": t, "rows": rows} for t, rows in side] for side in (left, right)],
-        "decisions": [{"rows": _decision_rows(v)} for v in data.verdicts],
+        "decisions": [{"rows": rows} for rows in map(_decision_rows, data.verdicts)] or NO_DECISION,
         "qualifiers": [
             [printable(q.letter), printable(q.meaning), printable(q.note)] for q in data.qualifiers
         ],

@@ -194,7 +194,7 @@ class Calibration:
 
     ``coefficients`` are b0, b1 (and b2), absorbance on COD in mg/L; ``read``
     holds the (COD, absorbance) of this sample's mean, in the tube. ``facts``
-    are rows for the table under the picture, e.g. slope or residual scatter.
+    are rows beside the table of standards, e.g. slope or residual scatter.
     """
 
     name: str

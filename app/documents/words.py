@@ -84,8 +84,13 @@ def period(sample: Sample, zone: str) -> str:
 
 
 def number_with_unit(text: str, unit: str) -> str:
-    """Return a reported number with its unit, never to be parted by a line break."""
-    return held_together(f"{text} {unit}".strip())
+    """Return a reported number with its unit, never to be parted by a line break.
+
+    Of a unit of several words ("AU per mg/L") the first stays with the number.
+    """
+    first, _, rest = unit.partition(" ")
+    held = held_together(f"{text} {first}".strip())
+    return f"{held} {printable(rest)}" if rest else held
 
 
 def reading(measured: Measured) -> str:

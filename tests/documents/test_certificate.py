@@ -210,6 +210,12 @@ def test_without_a_limit_it_says_so(text_of: Read) -> None:
     assert "Limit none was in force on the day of the sample" in shown
 
 
+def test_without_a_verdict_no_conformity_is_claimed(text_of: Read, made: dict[str, bytes]) -> None:
+    shown = text_of(made["bare"])
+    assert "no statement of conformity is made" in shown
+    assert "Within" not in shown and "Above" not in shown
+
+
 def test_a_draft_has_a_watermark_no_number_and_no_code(
     text_of: Read, made: dict[str, bytes], poppler: Poppler
 ) -> None:
@@ -261,6 +267,8 @@ def test_a_long_name_stays_whole_and_on_the_page(made: dict[str, bytes], poppler
     words = poppler("pdftotext", made["long"], "-bbox", "-")
     found = [float(x) for x in re.findall(r'xMax="([\d.]+)"', words)]
     assert max(found) < 595.3 - 19 / 25.4 * 72 + 1
+    tops = [float(y) for y in re.findall(r'yMin="([\d.]+)"', words)]
+    assert min(tops) > 20
     letters = re.sub(r"<[^>]*>|\s|\u200b", "", words)
     assert letters.count(LONG) >= 3
 

@@ -17,6 +17,7 @@ from app.documents.words import (
     duration_words,
     listed,
     moment,
+    number_with_unit,
     period,
     reading,
     said,
@@ -160,6 +161,11 @@ def test_the_coverage_factor_names_its_source() -> None:
         "k = 2.20 (Student's t, 11 effective degrees of freedom, 95 %)"
     )
     assert plain(coverage_words("1.96", None, "95")) == "k = 1.96 (normal distribution, 95 %)"
+
+
+def test_a_long_unit_may_break_but_not_from_its_number() -> None:
+    shown = number_with_unit("0.0003805", "AU per mg/L")
+    assert shown.split(" ") == [f"0.0003805{NBSP}AU", "per", "mg/L"]
 
 
 def test_a_reading_keeps_the_text_that_was_typed() -> None:
