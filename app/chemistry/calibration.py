@@ -75,10 +75,7 @@ def standard_problems(standards: Sequence[Standard], prefix: str = "") -> Fields
     wrong = Problems(prefix)
     for i, standard in enumerate(standards):
         wrong.number(f"standards.{i}.cod", standard.cod, least=0)
-        if not standard.absorbance:
-            wrong.add(f"standards.{i}.absorbance", "needs at least one reading")
-        for j, value in enumerate(standard.absorbance):
-            wrong.number(f"standards.{i}.absorbance.{j}", value)
+        wrong.readings(f"standards.{i}.absorbance", standard.absorbance)
     levels = len({standard.cod for standard in standards})
     if levels < FEWEST_LEVELS:
         words = "all standards are at one level" if levels == 1 else f"{levels} different standard levels"

@@ -7,6 +7,7 @@ attempts. A :class:`Problems` gathers them under dotted paths and raises once.
 from __future__ import annotations
 
 import math
+from collections.abc import Sequence
 
 from app.errors import Fields, InputError
 
@@ -84,6 +85,24 @@ class Problems:
             self.add(path, f"must be {in_words(least)} or more")
         elif most is not None and value > most:
             self.add(path, f"must be {in_words(most)} or less")
+
+    def readings(self, path: str, values: Sequence[float]) -> None:
+        """Note readings that are missing or are no numbers, under the one path of their list.
+
+        Parameters
+        ----------
+        path : str
+            Dotted path of the list.
+        values : sequence of float
+            The readings.
+        """
+        if not values:
+            self.add(path, "needs at least one reading")
+        for i, value in enumerate(values):
+            if isinstance(value, bool) or not math.isfinite(value):
+                self.add(path, f"reading {i + 1} must be a finite number")
+            elif abs(value) > LARGEST:
+                self.add(path, f"reading {i + 1} is larger than {in_words(LARGEST)}, which no measurement is")
 
     def stop(self, message: str) -> None:
         """Raise what was noted, if anything was.

@@ -1,0 +1,327 @@
+"""Detection limits: the federal procedure, its plan and duties, and DIN 32645.
+
+40 CFR 136 Appendix B, revision 2. At least seven spikes at 2 to 10 times the
+estimate and at least seven method blanks go through the whole procedure in at
+least three batches on three dates. From the spikes t(0.99, n - 1) s; from the
+blanks nothing when no blank gives a number, the highest when some do, and
+max(mean, 0) + t s when all do. The limit is the larger. A blank without a
+number is None here, never 0 and never half of anything. An interval of 95 % for
+a limit from seven spikes runs from 0.64 to 2.2 times it: two figures at most.
+
+Dates are arguments; nothing here knows what day it is.
+"""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Sequence
+from dataclasses import dataclass
+from datetime import date
+
+from scipy.special import chdtri
+
+from app.chemistry.curve import Curve, t_quantile
+from app.chemistry.problems import Problems
+
+FEWEST_SPIKES = 7
+FEWEST_BLANKS = 7
+CONFIDENCE_ONE_SIDED = 0.99
+
+
+def t_99(n: int) -> float:
+    """Return the one-sided 99 % point of Student's t for n results (n - 1 degrees of freedom)."""
+    return t_quantile(n - 1, 2.0 * CONFIDENCE_ONE_SIDED - 1.0)
+
+
+@dataclass(frozen=True)
+class DetectionLimit:
+    """A method detection limit.
+
+    Parameters
+    ----------
+    mdl_spikes : float
+        From the spikes, mg/L.
+    mdl_blanks : float or None
+        From the blanks; None when no blank gave a number.
+    mdl : float
+        The larger.
+    low, high : float
+        95 % interval of ``mdl_spikes``.
+    """
+
+    mdl_spikes: float
+    mdl_blanks: float | None
+    mdl: float
+    low: float
+    high: float
+
+
+def _sd(values: Sequence[float]) -> float:
+    mean = math.fsum(values) / len(values)
+    return math.sqrt(math.fsum((v - mean) ** 2 for v in values) / (len(values) - 1))
+
+
+def detection_limit(spikes: Sequence[float], blanks: Sequence[float | None]) -> DetectionLimit:
+    """Calculate the method detection limit.
+
+    Parameters
+    ----------
+    spikes : sequence of float
+        At least seven results in mg/L, all above zero, of one spike level.
+    blanks : sequence of float or None
+        At least seven results of method blanks; None where a blank gave no
+        number.
+
+    Returns
+    -------
+    DetectionLimit
+
+    Raises
+    ------
+    InputError
+        Naming the wrong fields.
+
+    References
+    ----------
+    40 CFR part 136, Appendix B, revision 2 (2017), sections 2 and 4.
+    """
+    wrong = Problems()
+    for i, value in enumerate(spikes):
+        wrong.number(f"spikes.{i}", value, above=0)
+    if len(spikes) < FEWEST_SPIKES:
+        wrong.add("spikes", f"{len(spikes)} spikes: the procedure asks for at least {FEWEST_SPIKES}")
+    for i, blank in enumerate(blanks):
+        if blank is not None:
+            wrong.number(f"blanks.{i}", blank)
+    if len(blanks) < FEWEST_BLANKS:
+        wrong.add("blanks", f"{len(blanks)} blanks: the procedure asks for at least {FEWEST_BLANKS}")
+    wrong.stop("No detection limit can be calculated from these results.")
+    of_spikes, of_blanks = t_99(len(spikes)) * _sd(spikes), _from_blanks(blanks)
+    dof = len(spikes) - 1
+    return DetectionLimit(
+        of_spikes,
+        of_blanks,
+        of_spikes if of_blanks is None else max(of_spikes, of_blanks),
+        of_spikes * math.sqrt(dof / float(chdtri(dof, 0.025))),
+        of_spikes * math.sqrt(dof / float(chdtri(dof, 0.975))),
+    )
+
+
+def _from_blanks(blanks: Sequence[float | None]) -> float | None:
+    numbers = [b for b in blanks if b is not None]
+    if not numbers:
+        return None
+    if len(numbers) < len(blanks):
+        return max(numbers)
+    return max(math.fsum(numbers) / len(numbers), 0.0) + t_99(len(numbers)) * _sd(numbers)
+
+
+def minimum_level(mdl: float) -> float:
+    """Return EPA's minimum level: 3.18 times the limit, to the nearest 1, 2 or 5 times a power of ten.
+
+    Parameters
+    ----------
+    mdl : float
+        Above zero.
+
+    Returns
+    -------
+    float
+
+    References
+    ----------
+    EPA 1631E; EPA 1621, 9.2.2; 68 FR 11770.
+    """
+    wrong = Problems()
+    wrong.number("mdl", mdl, above=0)
+    wrong.stop("No minimum level follows from this.")
+    exact = 3.18 * mdl
+    decade = 10.0 ** math.floor(math.log10(exact))
+    return min((step * decade for step in (1.0, 2.0, 5.0, 10.0)), key=lambda level: abs(level - exact))
+
+
+@dataclass(frozen=True)
+class CalibrationLimits:
+    """Limits that a calibration in the low range gives.
+
+    Parameters
+    ----------
+    decision, detection, quantification : float
+        In the unit of the standards.
+    """
+
+    decision: float
+    detection: float
+    quantification: float
+
+
+def calibration_limits(
+    curve: Curve, readings: int = 1, alpha: float = 0.01, factor: float = 3.0
+) -> CalibrationLimits:
+    """Return decision, detection and quantification limits from a straight calibration.
+
+    Parameters
+    ----------
+    curve : Curve
+        Linear, equal weights, standards close to the limits sought.
+    readings : int
+        Readings of an unknown.
+    alpha : float
+        Risk, one-sided for decision and detection, two-sided for
+        quantification.
+    factor : float
+        The quantification limit has a relative half-width of 1 / factor.
+
+    Returns
+    -------
+    CalibrationLimits
+
+    Raises
+    ------
+    InputError
+        For a curve that is no equal-weight line, or one too scattered to
+        quantify anything.
+
+    References
+    ----------
+    DIN 32645:2008, indirect (calibration) method.
+    """
+    wrong = Problems()
+    if curve.model != "linear" or curve.weights != "equal":
+        wrong.add("curve", "must be a straight line with equal weights")
+    wrong.number("readings", readings, least=1)
+    wrong.number("alpha", alpha, above=0, most=0.5)
+    wrong.number("factor", factor, above=1)
+    wrong.stop("These limits cannot be taken from this curve.")
+
+    def half_width(x: float, confidence: float) -> float:
+        variance = curve.residual_sd**2 / readings + curve.line_variance(x)
+        return t_quantile(curve.dof, confidence) * math.sqrt(variance) / abs(curve.slope(x))
+
+    decision = half_width(0.0, 1.0 - 2.0 * alpha)
+    level = factor * half_width(decision, 1.0 - alpha)
+    for _ in range(200):
+        new = factor * half_width(level, 1.0 - alpha)
+        if abs(new - level) <= 1e-12 * level:
+            break
+        level = new
+        if level > 1e6 * curve.high:
+            wrong.add("curve", "scatters too much: no level is quantified at this factor")
+            wrong.stop("These limits cannot be taken from this curve.")
+    return CalibrationLimits(decision, 2.0 * decision, level)
+
+
+@dataclass(frozen=True)
+class StudyResult:
+    """One result of a detection limit study.
+
+    Parameters
+    ----------
+    on : date
+        Day of the batch.
+    batch : str
+        Its name.
+    kind : str
+        ``spike`` or ``blank``.
+    """
+
+    on: date
+    batch: str
+    kind: str
+
+
+def study_gaps(results: Sequence[StudyResult]) -> tuple[str, ...]:
+    """Say what an initial study still lacks.
+
+    Parameters
+    ----------
+    results : sequence of StudyResult
+        Done so far.
+
+    Returns
+    -------
+    tuple of str
+        Empty when numbers, batches and dates suffice.
+    """
+    words = []
+    for kind, fewest in (("spike", FEWEST_SPIKES), ("blank", FEWEST_BLANKS)):
+        mine = [r for r in results if r.kind == kind]
+        if len(mine) < fewest:
+            words.append(f"{fewest - len(mine)} more {kind}s (at least {fewest})")
+        if len({r.batch for r in mine}) < 3:
+            words.append(f"{kind}s in at least three batches")
+        if len({r.on for r in mine}) < 3:
+            words.append(f"{kind}s on at least three dates")
+    return tuple(words)
+
+
+@dataclass(frozen=True)
+class PlannedDay:
+    """What one day of a study holds.
+
+    Parameters
+    ----------
+    on : date
+        The day.
+    spikes, blanks : int
+        Tubes to digest.
+    """
+
+    on: date
+    spikes: int
+    blanks: int
+
+
+@dataclass(frozen=True)
+class StudyPlan:
+    """An initial study.
+
+    Parameters
+    ----------
+    spike_low, spike_high : float
+        Twice and ten times the estimated limit, mg/L.
+    days : tuple of PlannedDay
+        At least three.
+    """
+
+    spike_low: float
+    spike_high: float
+    days: tuple[PlannedDay, ...]
+
+
+def plan_study(estimate: float, days: Sequence[date], spikes: int = 7, blanks: int = 7) -> StudyPlan:
+    """Spread an initial study over the days given.
+
+    Parameters
+    ----------
+    estimate : float
+        Estimated detection limit, mg/L.
+    days : sequence of date
+        At least three different ones.
+    spikes, blanks : int
+        At least seven each.
+
+    Returns
+    -------
+    StudyPlan
+
+    Raises
+    ------
+    InputError
+        Naming the wrong fields.
+    """
+    wrong = Problems()
+    wrong.number("estimate", estimate, above=0)
+    wrong.number("spikes", spikes, least=FEWEST_SPIKES)
+    wrong.number("blanks", blanks, least=FEWEST_BLANKS)
+    dates = sorted(set(days))
+    if len(dates) < 3:
+        wrong.add("days", "at least three different dates are needed")
+    wrong.stop("No study can be planned like this.")
+    planned = [
+        PlannedDay(
+            on, (spikes + len(dates) - 1 - i) // len(dates), (blanks + len(dates) - 1 - i) // len(dates)
+        )
+        for i, on in enumerate(dates)
+    ]
+    return StudyPlan(2.0 * estimate, 10.0 * estimate, tuple(planned))
