@@ -131,7 +131,7 @@ def _checks(data: CertificateData) -> list[Part]:
 
 
 def _tube_row(tube: Tube) -> list[str]:
-    use = "used"
+    use = "used" if tube.absorbance else "not read"
     if tube.excluded:
         use = f"excluded: {printable(tube.excluded)}"
         use += f" ({printable(tube.excluded_by)})" if tube.excluded_by else ""

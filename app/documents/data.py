@@ -274,7 +274,11 @@ class Check:
 
 @dataclass(frozen=True)
 class Tube:
-    """One tube with its raw absorbance; ``excluded`` is the cause, or empty."""
+    """One tube with its raw absorbance, empty when not read.
+
+    ``excluded`` is the cause why it was left out, by a person or by rule; empty
+    for a tube that was used.
+    """
 
     position: int
     what: str
@@ -289,7 +293,8 @@ class Tube:
 class CertificateData:
     """Everything that one certificate says.
 
-    ``number`` None makes a draft: a watermark, no number, no QR code.
+    ``number`` None makes a draft: a watermark, no number, no QR code; a draft has
+    neither ``issued_at`` nor ``authorised``.
     ``example`` prints across every page that the data are invented.
     """
 

@@ -253,6 +253,12 @@ def test_what_is_not_recorded_is_said_and_not_left_out(text_of: Read) -> None:
         assert f"{name} not recorded" in shown
 
 
+def test_a_tube_that_was_not_read_is_not_called_used(text_of: Read) -> None:
+    tubes = (Tube(3, "K7QF3P", ""), Tube(4, "K7QF3P", "0.179", "441", "orange"))
+    shown = text_of(render_certificate(replace(EXAMPLE, tubes=tubes), BASE_URL))
+    assert "3 K7QF3P not read 4 K7QF3P 0.179 441 orange used" in shown
+
+
 def test_two_dilution_steps_are_told_in_order(text_of: Read) -> None:
     data = replace(EXAMPLE, dilution=Dilution("50", (Step("10", "100"), Step("20", "100"))))
     words = "10 mL made up to 100 mL, of that 20 mL made up to 100 mL, factor 50"

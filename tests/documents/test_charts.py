@@ -216,6 +216,13 @@ def test_the_strip_without_forecast_still_shows_windows_limit_and_result() -> No
     assert {"factor 5", "94 %", "daily maximum 1500", "result 2210 ± 130"} <= set(shown)
 
 
+def test_an_interval_that_reaches_zero_ends_at_the_left_edge() -> None:
+    low = replace(STRIP, result=(25, -5, 55))
+    assert "result 2210" in strip_svg(low)
+    with pytest.raises(InputError):
+        strip_svg(replace(STRIP, result=(-25, -55, 5)))
+
+
 def test_close_limits_do_not_write_over_each_other() -> None:
     marks = (Mark(1500, "daily maximum 1500"), Mark(1400, "monthly average 1400"))
     root = ElementTree.fromstring(strip_svg(replace(STRIP, limits=marks)))

@@ -24,7 +24,9 @@ SIZE = 13
 def _domain(strip: Strip) -> tuple[float, float]:
     values = [v for bar in strip.bars for v in (bar.low, bar.high)]
     values += [x for x, _ in strip.density] + [m.value for m in strip.limits]
-    values += list(strip.result or ())
+    if strip.result is not None:
+        value, low, high = strip.result
+        values += [value, high] + ([low] if low > 0 else [])
     if not values or any(not math.isfinite(v) or v <= 0 for v in values):
         raise InputError(
             "The strip needs concentrations above zero.", {"strip": ["every value must be above zero"]}
@@ -101,7 +103,7 @@ def _bars(svg: Svg, strip: Strip, scale: Scale, p: Palette, top: float) -> None:
 def _result(svg: Svg, strip: Strip, scale: Scale, p: Palette, y: float) -> None:
     if strip.result is None:
         return
-    value, low, high = (scale.at(v) for v in strip.result)
+    value, low, high = (scale.held(v) for v in strip.result)
     if strip.result_sign:
         up = strip.result_sign == ">"
         svg.line(value, y - 6, value, y + 6, p.ink, stroke_width=2)
@@ -134,7 +136,9 @@ def strip_svg(strip: Strip, palette: str = "light", width: float = 560) -> str:
     Parameters
     ----------
     strip : Strip
-        At least one bar, mark, result or density; all values above zero, mg/L.
+        At least one bar, mark, result or density; all values above zero, mg/L. Only
+        the lower end of the result's interval may reach zero or less: it is then
+        drawn at the left edge.
     palette : {"light", "dark", "print"}
         Colours and font.
     width : float
