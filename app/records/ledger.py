@@ -127,6 +127,7 @@ class Writing:
             return Answer(entry.id, "duplicate", position, held)
         hold = hold or append.collision(self.connection, entry) or self._objection(entry)
         hold = self._enter(entry, carrier, hold)
+        self.react(reactions.AT_ONCE)
         return Answer(entry.id, "held" if hold else "stored", self.head.position, hold)
 
     def state(self, kind: str, about: str, body: Body, by: str = SYSTEM) -> Entry:
@@ -146,12 +147,27 @@ class Writing:
         self._last = (entry.n, entry.raw_digest)
         return entry
 
-    def react(self) -> None:
-        """Answer what was stated, until nothing is due."""
-        while self._due:
-            due = min(self._due)
+    def react(self, kinds_of_sum: Sequence[int] = reactions.ALL) -> None:
+        """Answer what was stated, until nothing of these kinds is due."""
+        while due := min((one for one in self._due if one[0] in kinds_of_sum), default=None):
             del self._due[due]
+            self._react_to(due)
+
+    def _react_to(self, due: reactions.Due) -> None:
+        """Run one reaction; one that fails is stated, and never stops the entries that caused it."""
+        head, last = self.head, self._last
+        self.connection.execute("SAVEPOINT reaction")
+        try:
             reactions.run(due, self)
+        except sqlite3.Error:
+            raise
+        except Exception as error:
+            self.connection.execute("ROLLBACK TO reaction")
+            self.head, self._last = head, last
+            self.state("sum.failed", due[1], reactions.failure(due, error))
+        finally:
+            if self.connection.in_transaction:
+                self.connection.execute("RELEASE reaction")
 
     def _own(self, kind: str, about: str, body: Body, by: str) -> Entry:
         now, (n, previous) = self.now(), self._last

@@ -1,16 +1,19 @@
 """What the server answers: results, fitted curves, expectations, as entries of its own.
 
-A handler only records; a reaction computes. What is due after an entry is
-collected by subject, so that a hundred results of one point lead to one new
-expectation, and runs before the transaction commits. A rebuild replays the
+A handler only records; a reaction computes. What the next entry may build on
+(a recipe's limits, a curve, a run's results) is stated at once; expectations
+wait for the end of the transaction, so that a hundred results of one point
+lead to one new expectation. A rebuild replays the
 server's entries and never comes here.
 """
 
 from __future__ import annotations
 
+import logging
 from collections.abc import Callable, Iterator
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, Any
 
+from app.errors import WeirbookError
 from app.records import laboratory, outlooks
 from app.records.change import Change
 
@@ -20,6 +23,11 @@ if TYPE_CHECKING:
 Due = tuple[int, str]
 
 DERIVE_RECIPE, FIT_CURVE, CALCULATE_RUN, LOOK_AHEAD = range(4)
+AT_ONCE = (DERIVE_RECIPE, FIT_CURVE, CALCULATE_RUN)
+ALL = (*AT_ONCE, LOOK_AHEAD)
+NAMES = ("derive", "fit", "calculate", "look ahead")
+
+log = logging.getLogger("weirbook")
 
 _REACTIONS: dict[int, Callable[[Writing, str], None]] = {
     DERIVE_RECIPE: laboratory.derive_recipe,
@@ -40,6 +48,17 @@ def due(change: Change) -> Iterator[Due]:
         yield CALCULATE_RUN, about
     elif kind in ("point.registered", "result.recorded", "result.reviewed", "run.calculated"):
         yield from ((LOOK_AHEAD, point) for point in _points(change))
+
+
+def failure(what: Due, error: Exception) -> dict[str, Any]:
+    """Return what is stated of a sum that could not be done."""
+    if not isinstance(error, WeirbookError):
+        log.exception("a sum failed", exc_info=error)
+        error = WeirbookError(
+            "The server failed at this sum. What was stated is kept; tell the administrator."
+        )
+    named = {"software": laboratory.SOFTWARE, "what": NAMES[what[0]]}
+    return named | {"error": error.message, "fields": error.fields}
 
 
 def run(what: Due, writing: Writing) -> None:

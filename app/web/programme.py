@@ -51,7 +51,7 @@ class StartSchema(Body):
     person = fields.Nested(Account, required=True)
 
 
-class PersonSchema(Account):
+class NewPersonSchema(Account):
     """Somebody new, and the roles they hold."""
 
     roles = fields.List(
@@ -120,7 +120,7 @@ def example() -> dict[str, Any]:
 
 @blueprint.route("/people", methods=["POST"])
 @need("administrator")
-@blueprint.arguments(PersonSchema)
+@blueprint.arguments(NewPersonSchema)
 @blueprint.response(201, AddedSchema)
 def add_person(given: dict[str, Any]) -> dict[str, str]:
     """Add a person with a way to sign in."""

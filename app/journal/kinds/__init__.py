@@ -10,6 +10,7 @@ from __future__ import annotations
 
 from collections.abc import Callable
 from dataclasses import dataclass
+from functools import cache
 from importlib import import_module
 from typing import Any
 
@@ -76,10 +77,14 @@ def upcaster(name: str, version: int) -> Callable[[Upcaster], Upcaster]:
 
 def table() -> dict[str, Kind]:
     """Return all kinds by name."""
-    if not _kinds:
-        for module in _MODULES:
-            import_module(f"app.journal.kinds.{module}")
+    _load()
     return _kinds
+
+
+@cache
+def _load() -> None:
+    for module in _MODULES:
+        import_module(f"app.journal.kinds.{module}")
 
 
 def newest(name: str, version: int, body: dict[str, Any]) -> dict[str, Any]:

@@ -46,6 +46,16 @@ class CertificateIssued(Body):
     software = Text(required=True)
 
 
+@kind("sum.failed", SERVER)
+class SumFailed(Body):
+    """The server could not do a sum that was due; what it was given is kept."""
+
+    software = Text(required=True)
+    what = Text(required=True, longest=40)
+    error = Text(required=True, longest=2000)
+    fields_ = fields.Dict(data_key="fields", required=True)
+
+
 @kind("outlook.computed", SERVER)
 class OutlookComputed(Body):
     """What the server expects of a point's next sample, from all it knows."""

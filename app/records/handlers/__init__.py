@@ -8,6 +8,7 @@ entry that cannot come into force raises :class:`~app.records.change.Refused`.
 from __future__ import annotations
 
 from collections.abc import Callable
+from functools import cache
 from importlib import import_module
 
 from app.records.change import Change
@@ -30,7 +31,11 @@ def handles(kind: str) -> Callable[[Handler], Handler]:
 
 def table() -> dict[str, Handler]:
     """Return all handlers by kind."""
-    if not _handlers:
-        for module in _MODULES:
-            import_module(f"app.records.handlers.{module}")
+    _load()
     return _handlers
+
+
+@cache
+def _load() -> None:
+    for module in _MODULES:
+        import_module(f"app.records.handlers.{module}")

@@ -70,6 +70,16 @@ def certificate_issued(change: Change) -> None:
     put_bottle(change, known | {"certificate": change.body["number"]})
 
 
+@handles("sum.failed")
+def sum_failed(change: Change) -> None:
+    """A sum that could not be done, shown beside its subject until it can."""
+    problem = change.body | {"at": change.entry.at}
+    run = change.get("run", change.entry.about) if change.body["what"] == "calculate" else None
+    if run is not None:
+        change.update("run", change.entry.about, run | {"problem": problem})
+    change.put("problem", f"{change.body['what']}:{change.entry.about}", problem, at=change.entry.at)
+
+
 @handles("outlook.computed")
 def outlook_computed(change: Change) -> None:
     """What to expect at a point, and what it was made from."""

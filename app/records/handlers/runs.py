@@ -99,6 +99,7 @@ def run_planned(change: Change) -> None:
         "answer": None,
         "input": None,
         "questions": [],
+        "problem": None,
         "waste": None,
         "closed": None,
         "planned_by": change.name_of(change.entry.by),
@@ -238,6 +239,7 @@ def run_calculated(change: Change) -> None:
         "answer": change.body["answer"],
         "input": change.body["input"],
         "questions": questions(change.body["answer"]),
+        "problem": None,
         "waste": change.body["waste"],
     }
     change.update("run", change.entry.about, run)
