@@ -89,6 +89,7 @@ def test_the_attached_data_are_the_canonical_bytes(
     content = (tmp_path / "certificate.json").read_bytes()
     assert content == certificate_json(KINDS[kind])
     assert hashlib.sha256(content).hexdigest() == data_digest(KINDS[kind])
+    assert b"/AFRelationship/Data" in made[kind]
 
 
 def printed_texts(data: CertificateData) -> list[str]:

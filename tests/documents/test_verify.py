@@ -40,11 +40,11 @@ def test_a_page_that_says_something_else_is_not_made_again() -> None:
 
 
 def test_something_appended_is_refused() -> None:
-    """An incremental update (ISO 32000-1, 7.5.6) would change pages and keep the attachment."""
-    update = (
-        b"\n1 0 obj\n<<>>\nendobj\nxref\n0 1\n0000000000 65535 f\r\ntrailer\n<</Size 1/Prev 1/Root 1 0 R>>\n"
-    )
-    forged = PDF + update + b"startxref\n%d\n%%%%EOF" % (len(PDF) + 23)
+    """An incremental update (ISO 32000-1, 7.5.6) may change pages and keep the attachment."""
+    start = int(PDF[PDF.rindex(b"startxref") :].split()[1])
+    table = PDF[start : PDF.rindex(b"startxref")]
+    update = table.replace(b"trailer\n<<", b"trailer\n<</Prev %d" % start)
+    forged = PDF + b"\n" + update + b"startxref\n%d\n%%%%EOF" % (len(PDF) + 1)
     with pytest.raises(InputError, match="changed since"):
         embedded_json(forged)
     with pytest.raises(InputError, match="changed since"):
