@@ -28,6 +28,7 @@ from typing import Literal
 from app.chemistry.advice import Advice, NextDilutionRule, Seen, Status, advise, next_dilution_by_rule
 from app.chemistry.calibration import fit
 from app.chemistry.curve import Curve
+from app.chemistry.diagnostics import slope_findings
 from app.chemistry.quality import (
     BlankCheck,
     DuplicateCheck,
@@ -38,7 +39,7 @@ from app.chemistry.quality import (
     spike_check,
     verification_check,
 )
-from app.chemistry.recipe import USABLE_SHARE, range_warnings, slope_band, usable_top
+from app.chemistry.recipe import USABLE_SHARE, range_warnings, usable_top
 from app.chemistry.replicates import Screening, screen
 from app.chemistry.rounding import bound_text, plain, reported_cod, reported_u
 from app.chemistry.run import Run, SampleTubes, run_problems
@@ -205,25 +206,24 @@ def calculate(run: Run, next_dilution: NextDilutionRule = next_dilution_by_rule)
     if wrong:
         raise InputError("This run cannot be calculated.", wrong)
     curve = fit(run.standards, run.model, prefix="calibration.")
-    _refuse_wrong_sign(run, curve)
+    warnings = (*_range_warnings(run, curve), *_slope_warnings(run, curve))
     blank = blank_check(run.blanks)
     bench = _Bench(run, curve, blank.mean if blank else 0.0, usable_top(run.recipe, run.working_range))
     samples = tuple(bench.sample(tubes, next_dilution) for tubes in run.tubes)
     checks = _checks(run, bench, {s.sample: s for s in samples}, blank)
-    return RunResult(samples, checks, checks.ok, curve, _warnings(run, curve))
+    return RunResult(samples, checks, checks.ok, curve, warnings)
 
 
-def _refuse_wrong_sign(run: Run, curve: Curve) -> None:
-    expected = run.recipe.response
-    if expected is not None and curve.response != expected:
-        words = (
-            f"at {run.recipe.wavelength_nm:g} nm absorbance {expected} with COD, but these standards say "
-            f"that it {curve.response}: look for exchanged standards, a wrong wavelength or a reversed zero"
-        )
-        raise InputError(f"The curve runs the wrong way: {words}.", {"calibration.standards": [words]})
+def _slope_warnings(run: Run, curve: Curve) -> list[str]:
+    """Return what the slope says of itself, and stop where it has the wrong sign."""
+    found = slope_findings(curve, run.recipe)
+    stops = [finding.words for finding in found if finding.severity == "stop"]
+    if stops:
+        raise InputError("The curve runs the wrong way.", {"calibration.standards": stops})
+    return [finding.words for finding in found]
 
 
-def _warnings(run: Run, curve: Curve) -> tuple[str, ...]:
+def _range_warnings(run: Run, curve: Curve) -> list[str]:
     words = list(range_warnings(run.recipe, run.working_range))
     low, high = run.working_range
     if high > curve.high or low < curve.low:
@@ -231,15 +231,7 @@ def _warnings(run: Run, curve: Curve) -> tuple[str, ...]:
             f"The working range ({low:g} to {high:g} mg/L) reaches beyond the standards "
             f"({curve.low:g} to {curve.high:g} mg/L): outside them the curve is a guess."
         )
-    if run.recipe.response == "rises":
-        least, most = slope_band(run.recipe)
-        per_au = 1.0 / abs(curve.slope((curve.low + curve.high) / 2.0))
-        if not least <= per_au <= most:
-            words.append(
-                f"The slope is {per_au:.0f} mg/L per AU; stoichiometry and this tube allow {least:.0f} to "
-                f"{most:.0f}: look at wavelength, tube and standards."
-            )
-    return tuple(words)
+    return words
 
 
 @dataclass(frozen=True)

@@ -1,4 +1,4 @@
-"""Detection limits: the federal procedure, its plan and duties, and DIN 32645.
+"""Detection limits: the federal procedure, and DIN 32645 from a calibration.
 
 40 CFR 136 Appendix B, revision 2. At least seven spikes at 2 to 10 times the
 estimate and at least seven method blanks go through the whole procedure in at
@@ -7,8 +7,7 @@ blanks nothing when no blank gives a number, the highest when some do, and
 max(mean, 0) + t s when all do. The limit is the larger. A blank without a
 number is None here, never 0 and never half of anything. An interval of 95 % for
 a limit from seven spikes runs from 0.64 to 2.2 times it: two figures at most.
-
-Dates are arguments; nothing here knows what day it is.
+The plan of a study and its duties are in :mod:`app.chemistry.detection_study`.
 """
 
 from __future__ import annotations
@@ -16,7 +15,6 @@ from __future__ import annotations
 import math
 from collections.abc import Sequence
 from dataclasses import dataclass
-from datetime import date
 
 from scipy.special import chdtri
 
@@ -209,119 +207,3 @@ def calibration_limits(
             wrong.add("curve", "scatters too much: no level is quantified at this factor")
             wrong.stop("These limits cannot be taken from this curve.")
     return CalibrationLimits(decision, 2.0 * decision, level)
-
-
-@dataclass(frozen=True)
-class StudyResult:
-    """One result of a detection limit study.
-
-    Parameters
-    ----------
-    on : date
-        Day of the batch.
-    batch : str
-        Its name.
-    kind : str
-        ``spike`` or ``blank``.
-    """
-
-    on: date
-    batch: str
-    kind: str
-
-
-def study_gaps(results: Sequence[StudyResult]) -> tuple[str, ...]:
-    """Say what an initial study still lacks.
-
-    Parameters
-    ----------
-    results : sequence of StudyResult
-        Done so far.
-
-    Returns
-    -------
-    tuple of str
-        Empty when numbers, batches and dates suffice.
-    """
-    words = []
-    for kind, fewest in (("spike", FEWEST_SPIKES), ("blank", FEWEST_BLANKS)):
-        mine = [r for r in results if r.kind == kind]
-        if len(mine) < fewest:
-            words.append(f"{fewest - len(mine)} more {kind}s (at least {fewest})")
-        if len({r.batch for r in mine}) < 3:
-            words.append(f"{kind}s in at least three batches")
-        if len({r.on for r in mine}) < 3:
-            words.append(f"{kind}s on at least three dates")
-    return tuple(words)
-
-
-@dataclass(frozen=True)
-class PlannedDay:
-    """What one day of a study holds.
-
-    Parameters
-    ----------
-    on : date
-        The day.
-    spikes, blanks : int
-        Tubes to digest.
-    """
-
-    on: date
-    spikes: int
-    blanks: int
-
-
-@dataclass(frozen=True)
-class StudyPlan:
-    """An initial study.
-
-    Parameters
-    ----------
-    spike_low, spike_high : float
-        Twice and ten times the estimated limit, mg/L.
-    days : tuple of PlannedDay
-        At least three.
-    """
-
-    spike_low: float
-    spike_high: float
-    days: tuple[PlannedDay, ...]
-
-
-def plan_study(estimate: float, days: Sequence[date], spikes: int = 7, blanks: int = 7) -> StudyPlan:
-    """Spread an initial study over the days given.
-
-    Parameters
-    ----------
-    estimate : float
-        Estimated detection limit, mg/L.
-    days : sequence of date
-        At least three different ones.
-    spikes, blanks : int
-        At least seven each.
-
-    Returns
-    -------
-    StudyPlan
-
-    Raises
-    ------
-    InputError
-        Naming the wrong fields.
-    """
-    wrong = Problems()
-    wrong.number("estimate", estimate, above=0)
-    wrong.number("spikes", spikes, least=FEWEST_SPIKES)
-    wrong.number("blanks", blanks, least=FEWEST_BLANKS)
-    dates = sorted(set(days))
-    if len(dates) < 3:
-        wrong.add("days", "at least three different dates are needed")
-    wrong.stop("No study can be planned like this.")
-    planned = [
-        PlannedDay(
-            on, (spikes + len(dates) - 1 - i) // len(dates), (blanks + len(dates) - 1 - i) // len(dates)
-        )
-        for i, on in enumerate(dates)
-    ]
-    return StudyPlan(2.0 * estimate, 10.0 * estimate, tuple(planned))
