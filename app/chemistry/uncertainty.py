@@ -3,9 +3,11 @@
 Components are standard uncertainties in the unit of the result and independent
 of each other; they add in quadrature. The effective degrees of freedom are
 those of Welch and Satterthwaite over the components whose own are finite. They
-are rounded to three decimals before they are truncated, because 18.9987 is the
-19.0 of the GUM's own example and not 18; at least 1. Where none is finite, or
-more than a million, the normal quantile serves.
+are rounded to three decimals before they are truncated, so that a nineteen with
+rounding noise (18.99996) does not become 18; at least 1. The 18.9987 of the
+GUM's own example, printed there as 19.0, is 18 by this rule, which errs on the
+safe side by half a percent of the factor. Where none is finite, or more than a
+million, the normal quantile serves.
 
 References
 ----------
