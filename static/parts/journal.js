@@ -1,0 +1,96 @@
+// Making entries. The number, the digest of the entry before and the entry itself are written in one transaction;
+// a promise of this module is fulfilled only when that transaction is complete.
+
+import { begin } from "./db.js";
+import { sha256 } from "./sha256.js";
+import { uuid7 } from "./uuid7.js";
+import { entryAdded } from "./view.js";
+
+/** What is told when an entry could not be kept; the form keeps what was typed. */
+export class NotSaved extends Error {}
+
+const pad = (number) => String(number).padStart(2, "0");
+
+/** A moment as RFC 3339 with this device's offset from UTC. */
+export function withOffset(moment = new Date()) {
+  const offset = -moment.getTimezoneOffset();
+  const sign = offset < 0 ? "-" : "+";
+  const local = new Date(moment.getTime() + offset * 60000).toISOString().slice(0, 19);
+  return `${local}${sign}${pad(Math.floor(Math.abs(offset) / 60))}:${pad(Math.abs(offset) % 60)}`;
+}
+
+function textOf(kind, about, body, { device, last, person, contact, base }) {
+  return JSON.stringify({
+    id: uuid7(),
+    device: device.id,
+    incarnation: device.incarnation,
+    n: last.n + 1,
+    prev: last.digest,
+    kind,
+    version: 1,
+    about,
+    at: withOffset(),
+    zone: Intl.DateTimeFormat().resolvedOptions().timeZone,
+    skew_ms: contact?.skew_ms ?? null,
+    by: person.id,
+    base,
+    body,
+    blobs: [],
+  });
+}
+
+async function write(made, tx) {
+  const meta = tx.objectStore("meta");
+  const [device, person, contact, cursor] = await Promise.all(
+    ["device", "person", "contact", "cursor"].map((key) => meta.get(key)),
+  );
+  if (!person?.id) throw new NotSaved("Nobody has signed in on this device yet, so nothing can be stated here.");
+  let last = await meta.get("last");
+  const rows = [];
+  for (const { kind, about, body } of made) {
+    const text = textOf(kind, about, body, { device, last, person, contact, base: cursor?.position ?? 0 });
+    const { id, at, n } = JSON.parse(text);
+    last = { key: "last", n, digest: sha256(text) };
+    rows.push({ n, id, kind, about, at, text, state: "tablet", position: null, told: null });
+  }
+  for (const row of rows) await tx.objectStore("outbox").add(row);
+  await meta.put(last);
+  return rows;
+}
+
+/**
+ * State several things at once: all are kept, or none.
+ * @param {{kind: string, about: string, body: object}[]} made
+ */
+export async function stateAll(made) {
+  let rows;
+  try {
+    const tx = await begin(["meta", "outbox"], "readwrite");
+    try {
+      rows = await write(made, tx);
+    } catch (error) {
+      tx.abort();
+      await tx.done.catch(() => {});
+      throw error;
+    }
+    await tx.done;
+  } catch (error) {
+    if (error instanceof NotSaved) throw error;
+    const full = error.name === "QuotaExceededError";
+    throw new NotSaved(
+      full
+        ? "Not saved: this device has no room left. What you typed is still in the form; free some space and save again."
+        : `Not saved (${error.name}). What you typed is still in the form; save again.`,
+    );
+  }
+  entryAdded(rows);
+  return rows;
+}
+
+/** State one thing. */
+export async function state(kind, about, body) {
+  return (await stateAll([{ kind, about, body }]))[0];
+}
+
+/** A new identity for a thing. */
+export const newId = () => uuid7();

@@ -1,0 +1,167 @@
+// This device's own entries laid over the server's records, so that what was stated offline is seen at once.
+// Only what a screen shows is made here; once an entry is in the records, the server's word stands.
+
+import { read } from "./measured.js";
+
+const number = (text) => read(text).value ?? null;
+
+/** A writable view of the records: a type's map is copied when it is first changed. */
+class Layer {
+  constructor(base) {
+    this.maps = new Map(base);
+    this.copied = new Set();
+  }
+
+  get(type, id) {
+    return this.maps.get(type)?.get(id)?.body ?? null;
+  }
+
+  put(type, id, body, { parent = "", at = "" } = {}) {
+    if (!this.copied.has(type)) {
+      this.maps.set(type, new Map(this.maps.get(type)));
+      this.copied.add(type);
+    }
+    const before = this.maps.get(type).get(id);
+    const where = before ? { parent: before.parent, at: before.at } : { parent, at };
+    this.maps.get(type).set(id, { type, id, position: null, local: true, ...where, body });
+  }
+
+  update(type, id, change) {
+    const body = this.get(type, id);
+    if (body) this.put(type, id, { ...body, ...change(structuredClone(body)) });
+  }
+
+  name(person) {
+    return this.get("person", person)?.name ?? "";
+  }
+}
+
+const EMPTY_BOTTLE = {
+  sample: null, point: null, holder: null, received: null, runs: [], results: [], certificate: null, state: "unknown",
+};
+
+function stateOf(bottle) {
+  if (bottle.certificate) return "certified";
+  if (bottle.results.length) return "result";
+  if (bottle.runs.length) return "in digestion";
+  if (bottle.received) return bottle.received.decision === "rejected" ? "rejected" : "received";
+  return bottle.holder ? "handed over" : "taken";
+}
+
+function putBottle(layer, code, change) {
+  const bottle = { ...EMPTY_BOTTLE, code, ...layer.get("bottle", code), ...change };
+  bottle.state = stateOf(bottle);
+  layer.put("bottle", code, bottle, { parent: bottle.sample ?? "" });
+  const { holder, received, results, certificate, state } = bottle;
+  if (bottle.sample) layer.update("sample", bottle.sample, () => ({ holder, received, results, certificate, state }));
+}
+
+const RECIPE_NUMBERS = [
+  "sample_ml", "digestion_solution_ml", "acid_reagent_ml", "dichromate_g_per_l", "mercury_sulfate_g_per_l",
+  "silver_sulfate_g_per_l", "wavelength_nm", "working_low", "working_high", "temperature_c", "minutes",
+];
+
+const newTube = (tube) => ({
+  bottle: null, expected: null, dilution: null, ...tube, absorbance: null, colour: null, remaining_oxidant: null,
+  excluded: null, in_tube: null, share: null, readings: [],
+});
+
+function tubes(run, position, change) {
+  return run.tubes.map((tube) => (tube.position === position ? { ...tube, ...change(tube) } : tube));
+}
+
+const HOLD_DAYS = 28;
+
+/** What each kind does: (layer, entry, body). */
+const KINDS = new Map(Object.entries({
+  "discharger.registered": (layer, { about }, body) => layer.put("discharger", about, body),
+  "point.registered": (layer, { about }, body) => {
+    const discharger = layer.get("discharger", body.discharger);
+    const limits = layer.get("point", about)?.limits ?? [];
+    const names = { discharger_name: discharger?.name ?? "", sector: discharger?.sector ?? null };
+    layer.put("point", about, { ...body, ...names, limits }, { parent: body.discharger });
+  },
+  "limit.set": (layer, { about, by }, body) => layer.update("point", about, (point) => ({
+    limits: [...point.limits, { ...body, value: number(body.value.text), unit: "mg/L", set_by: layer.name(by) }],
+  })),
+  "recipe.adopted": (layer, { about }, body) => {
+    const numbers = Object.fromEntries(RECIPE_NUMBERS.map((name) => [name, number(body[name])]));
+    layer.put("recipe", about, { ...body, ...numbers, derived: null });
+  },
+  "lot.made": (layer, { about }, body) => layer.put("lot", about, body, { parent: body.recipe, at: body.made_on }),
+  "instrument.added": (layer, { about }, body) => layer.put("instrument", about, { positions: null, ...body }),
+  "container.opened": (layer, { about, at }, body) => layer.put("container", about, {
+    name: body.name, capacity_ml: number(body.capacity_ml), filled_ml: 0, mercury_mg: 0, chromium_mg: 0, silver_mg: 0,
+    acid_reagent_ml: 0, sulfuric_acid_g: 0, mass_g: 0, tubes: 0, runs: [], opened_at: at,
+  }),
+  "calibration.made": (layer, { about, at, by }, body) => layer.put("calibration", about, {
+    ...body, wavelength_nm: number(body.wavelength_nm), made_at: at, made_by: layer.name(by), fitted: null,
+  }, { parent: body.recipe, at }),
+  "sample.taken": (layer, { about, at, by }, body) => {
+    const until = new Date(new Date(body.collected_at).getTime() + HOLD_DAYS * 86400000).toISOString();
+    const stated = { ...body, by, by_name: layer.name(by), recorded_at: at, hold_until: until };
+    const state = { holder: null, received: null, results: [], certificate: null, state: "taken" };
+    layer.put("sample", about, { ...stated, ...state }, { parent: body.point, at: body.collected_at });
+    putBottle(layer, body.bottle, { sample: about, point: body.point });
+  },
+  "custody.handed_over": (layer, _entry, body) => body.bottles.forEach((code) => putBottle(layer, code, { holder: body.to })),
+  "bottle.received": (layer, { at, by }, body) => putBottle(layer, body.bottle, {
+    received: { ...body, at, by, by_name: layer.name(by) }, holder: "laboratory",
+  }),
+  "run.planned": (layer, { about, at, by }, body) => {
+    layer.put("run", about, {
+      ...body, state: "planned", tubes: [...body.tubes].sort((a, b) => a.position - b.position).map(newTube), gates: {},
+      heating: null, answer: null, input: null, questions: [], problem: null, waste: null, closed: null,
+      planned_by: layer.name(by), planned_at: at,
+    }, { at });
+    for (const code of new Set(body.tubes.map((tube) => tube.bottle).filter(Boolean))) {
+      const runs = layer.get("bottle", code)?.runs ?? [];
+      putBottle(layer, code, { runs: [...runs, about] });
+    }
+  },
+  "gate.confirmed": (layer, { about, at, by }, body) => layer.update("run", about, (run) => ({
+    gates: { ...run.gates, [body.gate]: { by: layer.name(by), at, value: body.value ? number(body.value.text) : null } },
+  })),
+  "heating.started": (layer, { about }, body) => layer.update("run", about, () => ({
+    state: "heating", heating: { ...body, ended_at: null, complete: null, reason: "" },
+  })),
+  "heating.ended": (layer, { about }, body) => layer.update("run", about, (run) => ({
+    state: body.complete ? "cooling" : "failed", heating: { ...run.heating, ...body },
+  })),
+  "tube.read": (layer, { about, at, by }, body) => layer.update("run", about, (run) => ({
+    state: run.state === "cooling" ? "reading" : run.state,
+    tubes: tubes(run, body.position, (tube) => {
+      const { absorbance, colour, remaining_oxidant = null } = body;
+      const reading = { absorbance, colour, remaining_oxidant, reason: body.reason ?? "", by: layer.name(by), at };
+      return { absorbance, colour, remaining_oxidant, readings: [...tube.readings, reading] };
+    }),
+  })),
+  "tube.excluded": (layer, { about, at, by }, body) => layer.update("run", about, (run) => ({
+    tubes: tubes(run, body.position, () => ({ excluded: { cause: body.cause, note: body.note, by: layer.name(by), at } })),
+  })),
+  "readings.finished": (layer, { about }) => layer.update("run", about, () => ({ asked: true })),
+  "run.closed": (layer, { about, at, by }, body) => layer.update("run", about, (run) => ({
+    state: run.state === "failed" ? "failed" : "closed", closed: { by: layer.name(by), at, decisions: body.decisions },
+  })),
+  "result.reviewed": (layer, { about, at, by }, body) => layer.update("result", about, () => ({
+    review: { ...body, by: layer.name(by), at },
+  })),
+  "entry.settled": (layer, { about }, body) => layer.update("held", about, () => ({
+    state: body.decision === "admit" ? "admitted" : "set aside",
+  })),
+}));
+
+/**
+ * Lay entries over records.
+ * @param {Map<string, Map<string, object>>} base the server's records by type and id; left as they are
+ * @param {{text: string}[]} rows this device's entries, oldest first
+ */
+export function overlay(base, rows) {
+  if (!rows.length) return base;
+  const layer = new Layer(base);
+  for (const row of rows) {
+    const entry = JSON.parse(row.text);
+    KINDS.get(entry.kind)?.(layer, entry, entry.body);
+  }
+  return layer.maps;
+}

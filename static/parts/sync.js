@@ -1,0 +1,181 @@
+// Push what waits, pull what is new. An entry leaves the outbox's waiting part only on our server's own word for it.
+
+import { begin, getMeta, putMeta } from "./db.js";
+import { ask, keep, NoContact, Refusal } from "./session.js";
+import { sha256 } from "./sha256.js";
+import { outboxChanged, recordsDropped, recordsPulled, subscribe } from "./view.js";
+
+const PROTOCOL = 1;
+const BATCH = 100;
+const BATCH_BYTES = 2_000_000;
+const PAGE = 1000;
+const CALM_MS = 20_000;
+const LONGEST_MS = 300_000;
+
+/** How the last exchange went: shown as words, never guessed from navigator.onLine. */
+export const health = { contact: null, problem: "", signIn: false, running: false };
+const watchers = new Set();
+let again = false;
+let failures = 0;
+let timer = 0;
+
+/** Call back when the state of the exchange changes. */
+export function watch(watcher) {
+  watchers.add(watcher);
+  return () => watchers.delete(watcher);
+}
+
+function tell(changes) {
+  Object.assign(health, changes);
+  watchers.forEach((watcher) => watcher());
+}
+
+async function nextBatch() {
+  const tx = await begin("outbox");
+  const rows = (await tx.store.getAll()).filter((row) => row.state === "tablet");
+  const batch = [];
+  let bytes = 0;
+  for (const row of rows) {
+    bytes += row.text.length;
+    if (batch.length === BATCH || (batch.length && bytes > BATCH_BYTES)) break;
+    batch.push(row);
+  }
+  return batch;
+}
+
+async function acknowledge(answers) {
+  const tx = await begin("outbox", "readwrite");
+  const byId = new Map(answers.map((answer) => [answer.id, answer]));
+  const rows = await tx.store.getAll();
+  for (const row of rows) {
+    const answer = byId.get(row.id);
+    if (!answer || row.state !== "tablet") continue;
+    const held = answer.result === "held" || (answer.result === "duplicate" && answer.code);
+    row.state = held ? "held" : "server";
+    row.position = answer.position;
+    row.told = held ? { code: answer.code, message: answer.message, fields: answer.fields } : null;
+    await tx.store.put(row);
+  }
+  await tx.done;
+  outboxChanged(rows);
+}
+
+async function pushAll(state) {
+  const device = await getMeta("device");
+  for (let batch = await nextBatch(); batch.length; batch = await nextBatch()) {
+    const texts = batch.map((row) => row.text);
+    const answer = await ask("POST", "/api/push", {
+      protocol: PROTOCOL,
+      build: state.build,
+      epoch: state.epoch,
+      device: device.id,
+      incarnation: device.incarnation,
+      entries: texts,
+    });
+    if (!answer.weirbook || answer.digest !== sha256(texts.join(""))) throw new NoContact();
+    await acknowledge(answer.answers);
+  }
+}
+
+async function keepPage(page, epoch) {
+  const tx = await begin(["records", "meta"], "readwrite");
+  const records = tx.objectStore("records");
+  for (const record of page.records) {
+    if (record.body === null) await records.delete([record.type, record.id]);
+    else await records.put(record);
+  }
+  await tx.objectStore("meta").put({ key: "cursor", position: page.next, epoch });
+  await tx.done;
+  recordsPulled(page.records, page.next);
+}
+
+async function beginAnew() {
+  const tx = await begin(["records", "meta"], "readwrite");
+  await tx.objectStore("records").clear();
+  await tx.objectStore("meta").delete("cursor");
+  await tx.done;
+  recordsDropped();
+}
+
+async function pullAll(epoch) {
+  let cursor = await getMeta("cursor");
+  if (cursor && cursor.epoch !== epoch) {
+    await beginAnew();
+    cursor = null;
+  }
+  let after = cursor?.position ?? 0;
+  for (let more = true; more;) {
+    const page = await ask("GET", `/api/pull?epoch=${epoch}&after=${after}&limit=${PAGE}`);
+    if (!page.weirbook) throw new NoContact();
+    if (page.records.length || page.next !== after) await keepPage(page, epoch);
+    after = page.next;
+    more = page.more;
+  }
+}
+
+async function exchange() {
+  const state = await keep(await ask("GET", "/api/state"));
+  if (!state.person) {
+    tell({ signIn: state.started, contact: new Date().toISOString(), problem: "" });
+    return;
+  }
+  await pushAll(state);
+  await pullAll(state.epoch);
+  tell({ contact: new Date().toISOString(), problem: "", signIn: false });
+}
+
+async function attempt() {
+  try {
+    await exchange();
+    failures = 0;
+  } catch (error) {
+    failures += 1;
+    const known = error instanceof Refusal || error instanceof NoContact;
+    tell({ problem: known ? error.message : `The exchange failed (${error.name}). Nothing is lost.` });
+    if (error instanceof Refusal && error.status === 401) tell({ signIn: true });
+  }
+}
+
+function later() {
+  clearTimeout(timer);
+  const wait = Math.min(LONGEST_MS, CALM_MS * 2 ** Math.min(failures, 4)) * (0.75 + Math.random() / 2);
+  timer = setTimeout(() => { sync().catch(() => {}); }, failures ? Math.min(wait, failures < 4 ? 5000 : wait) : wait);
+}
+
+async function locked(work) {
+  if (!navigator.locks) return work();
+  return navigator.locks.request("weirbook-sync", { ifAvailable: true }, (lock) => (lock ? work() : undefined));
+}
+
+/** Exchange with the server now; calls during an exchange lead to one more after it. */
+export async function sync() {
+  if (health.running) {
+    again = true;
+    return;
+  }
+  tell({ running: true });
+  do {
+    again = false;
+    await locked(attempt);
+  } while (again && !health.problem);
+  tell({ running: false });
+  later();
+}
+
+const soon = () => { sync().catch(() => {}); };
+
+/** Exchange at the start, whenever the page comes to the front, and after each entry. */
+export async function startSync() {
+  health.contact = (await getMeta("contact"))?.at ?? null;
+  addEventListener("online", soon);
+  addEventListener("pageshow", soon);
+  document.addEventListener("visibilitychange", () => { if (!document.hidden) soon(); });
+  subscribe((why) => { if (why === "entry") soon(); });
+  soon();
+}
+
+/** Forget who is here, on this device and on the server; entries that wait stay. */
+export async function signOut() {
+  await ask("DELETE", "/api/session");
+  await putMeta("person", {});
+}
