@@ -38,6 +38,19 @@ def test_a_proportional_difference_is_found_exactly(factor, own):
         assert line.intercept == pytest.approx(0, abs=1e-6)
 
 
+@given(st.permutations(range(14)), st.lists(st.integers(-900, 900), min_size=14, max_size=14))
+def test_passing_bablok_is_symmetric(order, noise):
+    """Swapping the sides inverts the interval (Passing and Bablok 1983): slopes under -1 shift the median."""
+    pairs = [(1000.0 + 100 * i, 1000.0 + 100 * i + noise[k] + 0.001 * k) for k, i in enumerate(order)]
+    try:
+        one, other = passing_bablok(pairs), passing_bablok([(b, a) for a, b in pairs])
+    except InputError:
+        return
+    low, high = one.slope_interval
+    assume(low > 1e-6)
+    assert other.slope_interval == pytest.approx((1 / high, 1 / low))
+
+
 @given(PAIRS)
 def test_deming_is_symmetric(pairs):
     """With equal errors, swapping the sides inverts the slope: ordinary least squares would not."""

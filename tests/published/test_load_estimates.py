@@ -47,6 +47,11 @@ def test_pounds_and_kilograms_a_day(cod, mgd, printed, exact, kg) -> None:
     assert pytest.approx(8.345404452, abs=5e-10) == POUND_FACTOR_EXACT
 
 
+def test_a_bound_stays_a_bound_in_its_load() -> None:
+    """Below 10 mg/L at 0.125 million gallons a day is below 10.43 lb/d with the printed factor (arithmetic)."""
+    assert mass_lb(10, 0.125, POUND_FACTOR_PRINTED) == pytest.approx(10.43, abs=5.1e-3)
+
+
 def test_beale_on_the_toy_data() -> None:
     """Funtimes vignette: n 7 of N 10, Q 810; ratio 399.2143, Beale 399.1756."""
     found = estimate(FLOW, LOADS)
