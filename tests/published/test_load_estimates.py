@@ -48,7 +48,7 @@ def test_pounds_and_kilograms_a_day(cod, mgd, printed, exact, kg) -> None:
 
 
 def test_a_bound_stays_a_bound_in_its_load() -> None:
-    """Below 10 mg/L at 0.125 million gallons a day is below 10.43 lb/d with the printed factor (arithmetic)."""
+    """Below 10 mg/L at 0.125 MGD is below 10.43 lb/d with the printed factor (arithmetic)."""
     assert mass_lb(10, 0.125, POUND_FACTOR_PRINTED) == pytest.approx(10.43, abs=5.1e-3)
 
 
