@@ -1,0 +1,79 @@
+// This device: how it looks, what it keeps, who is here.
+
+import { html, useEffect, useState } from "../parts/html.js";
+import { getMeta, putMeta } from "../parts/db.js";
+import { Check, Choice, useSaving } from "../parts/fields.js";
+import { dayAndTime } from "../parts/format.js";
+import { Frame, Problem, exchangeNow, go } from "../parts/frame.js";
+import { health, signOut } from "../parts/sync.js";
+import { programme, useView, waiting } from "../parts/view.js";
+
+const PLAIN = { theme: "auto", gloves: false };
+
+/** Put the device's comfort settings on the root. */
+export async function applyComfort() {
+  const comfort = { ...PLAIN, ...(await getMeta("comfort")) };
+  document.documentElement.dataset.theme = comfort.theme;
+  document.documentElement.dataset.gloves = comfort.gloves ? "yes" : "no";
+  return comfort;
+}
+
+function Comfort() {
+  const [comfort, setComfort] = useState(PLAIN);
+  useEffect(() => { applyComfort().then(setComfort, () => {}); }, []);
+  const choose = (change) => {
+    const next = { ...comfort, ...change };
+    setComfort(next);
+    putMeta("comfort", next).then(applyComfort).catch(() => {});
+  };
+  return html`<section class="card stack"><h2>This tablet</h2>
+    <${Choice} label="Look" value=${comfort.theme} onChoose=${(theme) => choose({ theme })}
+      options=${[["auto", "As the device"], ["light", "Paper"], ["sun", "Sunlight"], ["dark", "Dark"]]} />
+    <${Check} label="Gloves: larger targets" checked=${comfort.gloves} onChange=${(gloves) => choose({ gloves })} />
+  </section>`;
+}
+
+function Storage() {
+  const [grade, setGrade] = useState(null);
+  const look = async () => {
+    const persisted = await navigator.storage?.persisted?.();
+    const room = await navigator.storage?.estimate?.();
+    setGrade({ persisted, room });
+  };
+  useEffect(() => { look().catch(() => {}); }, []);
+  const protect = () => { navigator.storage.persist().then(look).catch(() => {}); };
+  if (!grade) return null;
+  return html`<section class="card stack"><h2>Storage</h2>
+    <p>${grade.persisted ? "This browser keeps what is recorded here until you delete it." : "This browser may delete what is recorded here when it runs out of room. Send entries soon."}</p>
+    ${grade.room && html`<p class="soft small">${Math.round(grade.room.usage / 1e5) / 10} of ${Math.round(grade.room.quota / 1e6)} MB used.</p>`}
+    ${!grade.persisted && html`<button type="button" onClick=${protect}>Ask the browser to keep it</button>`}
+  </section>`;
+}
+
+/** The settings page. */
+export function Settings() {
+  const { count } = useView(waiting);
+  const settings = useView(programme);
+  const [person, setPerson] = useState(null);
+  useEffect(() => { getMeta("person").then(setPerson, () => {}); }, []);
+  const { save, problem, busy } = useSaving(async () => {
+    if (count > 0) throw new Error(`${count} entries are on this tablet only. Send them before you sign out, so that nothing is stranded.`);
+    await signOut();
+    go("/sign-in");
+  });
+  return html`<${Frame} title="Settings" about=${settings?.name}>
+    <div class="stack">
+      <section class="card stack"><h2>Who is here</h2>
+        <p>${person?.name ? html`<strong>${person.name}</strong>, ${person.roles.join(", ")}` : html`Nobody. <a href="/sign-in">Sign in</a>`}</p>
+        <${Problem} words=${problem} />
+        ${person?.id && html`<button type="button" onClick=${save} disabled=${busy}>Sign out</button>`}
+      </section>
+      <section class="card stack"><h2>Exchange</h2>
+        <p>Last contact: ${dayAndTime(health.contact)}. ${health.problem}</p>
+        <div class="row"><button type="button" onClick=${exchangeNow}>Exchange now</button><a class="button" href="/waiting">My entries</a></div>
+      </section>
+      <${Comfort} /><${Storage} />
+      <p><a href="/emergency">Emergency and first aid</a></p>
+    </div>
+  <//>`;
+}

@@ -1,0 +1,39 @@
+// This device's own entries: where each one is, and what is held and why.
+
+import { html } from "../parts/html.js";
+import { dayAndTime } from "../parts/format.js";
+import { Empty, Frame, exchangeNow } from "../parts/frame.js";
+import { entries, useView } from "../parts/view.js";
+
+const WORDS = new Map([["tablet", "on this tablet"], ["server", "on the server"], ["held", "needs attention"]]);
+const KINDS = new Map(Object.entries({
+  "sample.taken": "Sample taken", "custody.handed_over": "Bottles handed over", "bottle.received": "Bottle received",
+  "run.planned": "Run planned", "gate.confirmed": "Gate confirmed", "heating.started": "Heating started",
+  "heating.ended": "Heating ended", "tube.read": "Tube read", "tube.excluded": "Tube excluded",
+  "readings.finished": "Readings finished", "run.closed": "Run closed", "result.reviewed": "Result reviewed",
+  "entry.settled": "Entry settled",
+}));
+
+function Row({ row }) {
+  const body = JSON.parse(row.text).body;
+  const subject = body.bottle ?? body.bottles?.join(", ") ?? body.name ?? (body.position ? `position ${body.position}` : "");
+  const kind = { tablet: "wait", server: "good", held: "stop" }[row.state];
+  return html`<li class="item"><div class="row spread"><strong>${KINDS.get(row.kind) ?? row.kind} ${subject}</strong>
+      <span class="tag ${kind}">${WORDS.get(row.state)}</span></div>
+    <span class="soft small">${dayAndTime(row.at)}</span>
+    ${row.told && html`<p class="above">▲ ${row.told.message}</p>
+      <ul>${Object.entries(row.told.fields ?? {}).map(([path, lines]) => html`<li key=${path}>${path}: ${lines.join(" ")}</li>`)}</ul>
+      <p>It is kept on the server; a coordinator decides in Review.</p>`}
+  </li>`;
+}
+
+/** The page of one's own entries. */
+export function Waiting() {
+  const rows = useView(entries).slice(0, 200);
+  return html`<${Frame} title="My entries" about="from this tablet">
+    <p class="soft"><strong>On this tablet</strong> survives closing and crashing. <strong>On the server</strong> survives losing the tablet.</p>
+    <button type="button" onClick=${exchangeNow}>Exchange now</button>
+    ${rows.length ? html`<ul class="plain list">${rows.map((row) => html`<${Row} key=${row.n} row=${row} />`)}</ul>`
+      : html`<${Empty} title="Nothing was stated on this tablet yet">What you record in Field or on the Bench appears here.<//>`}
+  <//>`;
+}
