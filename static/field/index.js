@@ -1,16 +1,9 @@
-// The Field place: points, a point's card, taking a sample, my samples, handing over.
+// Field: its screens by path.
 
+import { Empty, Frame } from "../parts/frame.js";
 import { html } from "../parts/html.js";
-import { HandOver } from "./hand_over.js";
-import { Points } from "./points.js";
-import { Samples } from "./samples.js";
-import { TakeSample } from "./take_sample.js";
 
-/** The screen of a path within Field. */
-export function field([what, id, act]) {
-  if (what === "point" && act === "take") return html`<${TakeSample} key=${id} id=${id} />`;
-  if (what === "point") return html`<${Points} id=${id} />`;
-  if (what === "samples") return html`<${Samples} />`;
-  if (what === "hand-over") return html`<${HandOver} />`;
-  return html`<${Points} />`;
+/** @param {string[]} _rest */
+export function field(_rest) {
+  return html`<${Frame} place="field" title="Field"><${Empty} title="No points yet">Register one in Review.<//><//>`;
 }

@@ -21,9 +21,9 @@ function Hazards({ point }) {
   if (!point.hazards.length) return null;
   const known = new Map((words?.field ?? []).map((hazard) => [hazard.id, hazard]));
   return html`<div class="stack">
-    <div class="row">${point.hazards.map((id) => html`<span class="tag stop" key=${id}><span aria-hidden="true">▲</span>${known.get(id)?.title ?? id}</span>`)}
+    <div class="row">${point.hazards.map((id) => html`<span class="tag stop" key=${id}><span aria-hidden="true">▲</span>${known.get(id)?.name ?? id}</span>`)}
       <button type="button" class="quiet" aria-expanded=${open ? "true" : "false"} onClick=${() => setOpen(!open)}>Cautions</button></div>
-    ${open && html`<div class="card stop">${point.hazards.map((id) => html`<p key=${id}><strong>${known.get(id)?.title ?? id}.</strong> ${known.get(id)?.caution ?? known.get(id)?.words ?? ""}</p>`)}
+    ${open && html`<div class="card stop">${point.hazards.map((id) => html`<p key=${id}><strong>${known.get(id)?.name ?? id}.</strong> ${known.get(id)?.caution ?? ""}</p>`)}
       <p>${words?.no_entry} ${words?.deferral}</p></div>`}
   </div>`;
 }

@@ -15,6 +15,9 @@ export function useName() {
   return name.current;
 }
 
+/** A measured value as an entry holds it, the text as typed; null for an empty field. */
+export const measuredOf = (text, unit) => (text?.trim() ? { text: text.trim(), unit } : null);
+
 const said = (sign) => ({ "<": "below ", ">": "above ", "=": "" })[sign];
 
 /** How a typed number was read, or what is wrong with it. */
