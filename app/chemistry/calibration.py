@@ -39,6 +39,7 @@ Floats = NDArray[np.float64]
 FEWEST_LEVELS = 5
 #: A sum of squares under this share of the total is rounding, not scatter.
 ROUNDING = 1e-24
+TOO_FAR_APART = "The numbers of these standards lie too far apart to make a curve."
 PARAMETERS: dict[str, int] = {"linear": 2, "quadratic": 3}
 
 
@@ -152,34 +153,41 @@ class _Sums:
 
 
 def _sums(x: Floats, y: Floats, w: Floats) -> _Sums:
-    weight = float(w.sum())
-    centre = float(w @ x) / weight
+    # NumPy scalars throughout: where a sum is zero the quotient is not finite and is refused by name.
+    weight = w.sum()
+    centre = w @ x / weight
     t = x - centre
-    scale = float(np.abs(t).max())
+    scale = np.abs(t).max()
     t /= scale
     wt = w * t
-    first = float(wt @ t)
+    first = wt @ t
     square = t * t
-    alpha, beta = float(wt @ square) / first, first / weight
+    alpha, beta = wt @ square / first, first / weight
     second = square - alpha * t - beta
     wsecond = w * second
-    third = float(wsecond @ second)
-    c0 = float(w @ y) / weight
+    third = wsecond @ second
+    c0 = w @ y / weight
     rest = y - c0
-    total = float((w * rest) @ rest)
-    c1 = float(wt @ rest) / first
+    total = (w * rest) @ rest
+    c1 = wt @ rest / first
     rest = rest - c1 * t
-    line = float((w * rest) @ rest)
-    c2 = float(wsecond @ rest) / third
+    line = (w * rest) @ rest
+    c2 = wsecond @ rest / third
     rest = rest - c2 * second
-    parabola = float((w * rest) @ rest)
-    floor = ROUNDING * float((w * y) @ y)
+    parabola = (w * rest) @ rest
+    floor = ROUNDING * ((w * y) @ y)
     return _Sums(
-        Basis(centre, scale, alpha, beta, (weight, first, third)),
-        (c0, c1, c2),
-        total,
-        line if line > floor else 0.0,
-        parabola if parabola > floor else 0.0,
+        Basis(
+            float(centre),
+            float(scale),
+            float(alpha),
+            float(beta),
+            (float(weight), float(first), float(third)),
+        ),
+        (float(c0), float(c1), float(c2)),
+        float(total),
+        0.0 if line <= floor else float(line),
+        0.0 if parabola <= floor else float(parabola),
     )
 
 
@@ -262,6 +270,8 @@ def _raw(sums: _Sums, parameters: int, residual_sd: float) -> tuple[tuple[float,
         values.append(math.fsum(r * c for r, c in zip(row, factors, strict=True)))
         spread = math.fsum(r * r / s for r, s in zip(row, basis.sums[:parameters], strict=True))
         errors.append(residual_sd * math.sqrt(spread))
+    if not all(map(math.isfinite, (*values, *errors))):
+        raise InputError(TOO_FAR_APART)
     return tuple(values), tuple(errors)
 
 
@@ -272,7 +282,7 @@ def _refuse_hopeless(sums: _Sums, residual_sd: float, dof: int, parameters: int)
             raise InputError(
                 "All standards have the same absorbance: the slope is zero and nothing can be read."
             )
-        raise InputError("The numbers of these standards lie too far apart to make a curve.")
+        raise InputError(TOO_FAR_APART)
     if slope_g(residual_sd, dof, sums.factors[1], sums.basis.sums[1]) >= 1.0:
         raise InputError(
             "The slope of these standards cannot be told from zero (Fieller's g is 1 or more): "

@@ -66,7 +66,7 @@ def study_gaps(results: Sequence[StudyResult]) -> tuple[str, ...]:
     for kind, fewest in (("spike", FEWEST_SPIKES), ("blank", FEWEST_BLANKS)):
         mine = [r for r in results if r.kind == kind]
         if len(mine) < fewest:
-            words.append(f"{fewest - len(mine)} more {kind}s (at least {fewest})")
+            words.append(f"{kind}s still missing: {fewest - len(mine)} of {fewest}")
         if len({r.batch for r in mine}) < FEWEST_BATCHES:
             words.append(f"{kind}s in at least three batches")
         if len({r.on for r in mine}) < FEWEST_DATES:
@@ -208,7 +208,7 @@ def duties(computed: date, on: date, spikes_done: Sequence[date]) -> tuple[Duty,
     mine = sum(1 for day in spikes_done if day <= on and quarter_end(day) == end)
     found = [Duty("calculate the detection limit again", months_later(computed, RECOMPUTE_MONTHS))]
     if mine < SPIKES_PER_QUARTER:
-        found.append(Duty(f"{SPIKES_PER_QUARTER - mine} more spikes in this quarter", end))
+        found.append(Duty(f"spikes still missing in this quarter: {SPIKES_PER_QUARTER - mine}", end))
     return tuple(sorted(found, key=lambda duty: duty.due))
 
 

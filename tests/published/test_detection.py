@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import pytest
+
 from app.chemistry.calibration import Standard, fit
 from app.chemistry.detection import calibration_limits, detection_limit, minimum_level, t_99
 
