@@ -219,9 +219,7 @@ def heated(bench: Device, run: str) -> list[str]:
     )
     bench.now += timedelta(minutes=120)
     texts.append(
-        bench.make(
-            "heating.ended", run, {"ended_at": bench.now.isoformat(), "complete": True, "reason": ""}
-        )
+        bench.make("heating.ended", run, {"ended_at": bench.now.isoformat(), "complete": True, "reason": ""})
     )
     bench.now += timedelta(minutes=25)
     texts.append(bench.make("gate.confirmed", run, {"gate": "cooling_done"}))

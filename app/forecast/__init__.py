@@ -1,0 +1,26 @@
+"""The expected range of a sample not yet measured, and the dilution to plan for it.
+
+``predictive`` is the distribution every forecast is, ``posterior`` what a
+point's past teaches, ``sectors`` where a point without a past starts,
+``planning`` the dilutions with their chances. All pure; moments are days since
+1970-01-01 UTC.
+"""
+
+from app.forecast.planning import Plan, Planned, Range, plan
+from app.forecast.posterior import Now, Observation, Posterior, Programme, expected, posterior
+from app.forecast.predictive import Component, Predictive
+
+__all__ = [
+    "Component",
+    "Now",
+    "Observation",
+    "Plan",
+    "Planned",
+    "Posterior",
+    "Predictive",
+    "Programme",
+    "Range",
+    "expected",
+    "plan",
+    "posterior",
+]
