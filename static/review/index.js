@@ -1,12 +1,24 @@
-// The Review: its screens by path.
+// The Review place: results beside their limits, certificates, points, people, held entries.
 
-import { Empty, Frame } from "../parts/frame.js";
 import { html } from "../parts/html.js";
+import { Held } from "./held.js";
+import { People } from "./people.js";
+import { PointReview } from "./point.js";
+import { Register, RegisterPoint, SetLimit } from "./register.js";
+import { ResultReview } from "./result.js";
+import { Overview } from "./overview.js";
 
 /**
  * The screen of a path below /review.
- * @param {string[]} _rest the path's parts after the place
+ * @param {string[]} rest the path's parts after the place
  */
-export function review(_rest) {
-  return html`<${Frame} place="review" title="Review"><${Empty} title="Nothing here yet">This place has no screens in this build.<//><//>`;
+export function review([what, id, more]) {
+  if (what === "point" && more === "limit") return html`<${SetLimit} key=${id} id=${id} />`;
+  if (what === "point") return html`<${Overview} id=${id} detail=${html`<${PointReview} key=${id} id=${id} />`} />`;
+  if (what === "result") return html`<${ResultReview} key=${id} id=${id} />`;
+  if (what === "register" && id) return html`<${RegisterPoint} key=${id} id=${id} />`;
+  if (what === "register") return html`<${Register} />`;
+  if (what === "people") return html`<${People} />`;
+  if (what === "held") return html`<${Held} />`;
+  return html`<${Overview} />`;
 }
