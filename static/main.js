@@ -21,6 +21,13 @@ const PAGES = new Map([
 ]);
 const PLACES = new Map([["field", field], ["bench", bench], ["review", review]]);
 
+/** Draw on an emptied root: what index.html shows while opening is not ours to keep. */
+function draw(screen) {
+  const root = document.getElementById("app");
+  root.replaceChildren();
+  render(screen, root);
+}
+
 function screenOf(path) {
   const [first, ...rest] = path.split("/").filter(Boolean).map(decodeURIComponent);
   if (PAGES.has(first)) return html`<${PAGES.get(first)} />`;
@@ -94,13 +101,13 @@ async function begin() {
   } else if (location.pathname === "/") {
     history.replaceState(null, "", "/field");
   }
-  render(html`<${App} />`, document.getElementById("app"));
+  draw(html`<${App} />`);
   await registerWorker().catch(() => {});
   await startSync();
 }
 
 begin().catch((error) => {
   const words = error.message || "This browser does not let Weirbook work here.";
-  render(html`<div class="page"><h1>Weirbook cannot open here</h1><p role="alert">${words}</p></div>`, document.getElementById("app"));
+  draw(html`<main class="page"><h1>Weirbook cannot open here</h1><p role="alert">${words}</p></main>`);
 });
 

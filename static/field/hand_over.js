@@ -1,43 +1,57 @@
-// Handing bottles over: which, to whom, how cold.
+// Handing over: which bottles, to whom, how cold.
 
 import { html } from "../parts/html.js";
-import { Check, LongField, NumberField, TextField, useForm, useSaving } from "../parts/fields.js";
+import { LongField, NumberField, TextField, Check, echo, measuredOf, useForm, useSaving } from "../parts/fields.js";
 import { dayAndTime } from "../parts/format.js";
-import { Empty, Frame, Problem, go, say } from "../parts/frame.js";
+import { Empty, Problem, go, say } from "../parts/frame.js";
 import { newId, state } from "../parts/journal.js";
-import { read } from "../parts/measured.js";
 import { all, one, programme, useView } from "../parts/view.js";
+import { nameOf } from "./point.js";
 
-const start = () => ({ picked: [], to: "", temperature: "", note: "" });
+const BLANK = { without: [], to: "", temperature: "", unit: "Cel", note: "" };
 
-/** The form for a hand-over. */
-export function HandOver() {
-  const samples = useView(() => all("sample")).filter((sample) => sample.state === "taken").reverse();
-  const settings = useView(programme);
-  const [v, set, forget] = useForm("hand-over", start());
+/** Bottles that nobody has taken over yet. */
+const inHand = () => all("sample").filter((sample) => sample.state === "taken");
+
+function Bottle({ sample, on, onChange }) {
+  const point = one("point", sample.point);
+  const words = html`<span><strong class="code">${sample.bottle}</strong> ${point ? nameOf(point) : ""}
+    <span class="soft"> ${dayAndTime(sample.collected_at, programme()?.zone)}</span></span>`;
+  return html`<li class="item"><${Check} label=${words} checked=${on} onChange=${onChange} /></li>`;
+}
+
+function Form({ samples, values, set, forget }) {
+  const chosen = samples.filter((sample) => !values.without.includes(sample.bottle)).map((sample) => sample.bottle);
   const { save, problem, busy } = useSaving(async () => {
-    const bottles = v.picked.filter((code) => samples.some((sample) => sample.bottle === code));
-    if (!bottles.length) throw new Error("Choose at least one bottle.");
-    if (!v.to.trim()) throw new Error("Say who or what takes the bottles, e.g. laboratory refrigerator, seal 4471.");
-    if (v.temperature.trim() && read(v.temperature).problem) throw new Error(`Temperature: ${read(v.temperature).problem}`);
-    const temperature = v.temperature.trim() ? { text: v.temperature, unit: "Cel" } : null;
-    await state("custody.handed_over", newId(), { bottles, to: v.to.trim(), temperature, note: v.note });
-    await forget().catch(() => {});
-    say(`Saved on this tablet: ${bottles.length} handed over.`);
+    if (!chosen.length) throw new Error("Choose at least one bottle.");
+    if (!values.to.trim()) throw new Error("Say who takes the bottles: a name, or the laboratory's refrigerator.");
+    const told = echo(values.temperature, values.unit);
+    if (told.problem) throw new Error(told.problem);
+    const body = { bottles: chosen, to: values.to.trim(), temperature: measuredOf(values.temperature, values.unit), note: values.note.trim() };
+    await state("custody.handed_over", newId(), body);
+    await forget();
+    say("Saved on this tablet");
     go("/field/samples");
   });
-  if (!v) return html`<${Frame} place="field" title="Hand over"><//>`;
-  const pick = (code, on) => set("picked", on ? [...v.picked, code] : v.picked.filter((one_) => one_ !== code));
-  return html`<${Frame} place="field" title="Hand over" about=${settings?.name}>
-    ${samples.length === 0 ? html`<${Empty} title="No bottles in your hands">Bottles that were taken and not handed over appear here. <a href="/field">All points</a><//>`
-      : html`<form class="stack" onSubmit=${save}>
-        <section class="card">${samples.map((sample) => html`<${Check} key=${sample.id} checked=${v.picked.includes(sample.bottle)} onChange=${(on) => pick(sample.bottle, on)}
-          label=${`${sample.bottle}  ${one("point", sample.point)?.discharger_name ?? ""}, ${dayAndTime(sample.collected_at, settings?.zone)}`} />`)}
-          <button type="button" onClick=${() => set("picked", samples.map((sample) => sample.bottle))}>All of them</button></section>
-        <${TextField} label="To" value=${v.to} onInput=${(to) => set("to", to)} hint="a person, or a locked place with its seal number" />
-        <${NumberField} label="Temperature in the cooler" unit="Cel" value=${v.temperature} onInput=${(temperature) => set("temperature", temperature)} />
-        <${LongField} label="Note" value=${v.note} onInput=${(note) => set("note", note)} />
-        <${Problem} words=${problem} />
-        <button class="main" disabled=${busy}>${busy ? "Saving…" : "Save on this tablet"}</button></form>`}
-  <//>`;
+  const toggle = (code, on) => set("without", on ? values.without.filter((one_) => one_ !== code) : [...values.without, code]);
+  return html`<form class="stack" onSubmit=${save} novalidate>
+    <fieldset><legend>Bottles</legend><ul class="plain list card">${samples.map((sample) => html`<${Bottle} key=${sample.id} sample=${sample}
+      on=${chosen.includes(sample.bottle)} onChange=${(on) => toggle(sample.bottle, on)} />`)}</ul></fieldset>
+    <${TextField} label="To" value=${values.to} maxlength="200" onInput=${(text) => set("to", text)} hint="A person's name, or where the bottles are left." />
+    <${NumberField} label="Temperature of the ice box" value=${values.temperature} unit=${values.unit} units=${["Cel", "degF"]}
+      onInput=${(text) => set("temperature", text)} onUnit=${(unit) => set("unit", unit)} hint="Leave it empty if not measured." />
+    <${LongField} label="Note" value=${values.note} onInput=${(text) => set("note", text)} />
+    <${Problem} words=${problem} />
+    <div class="sticky"><button class="main" disabled=${busy}>${busy ? "Saving…" : `Hand over ${chosen.length} ${chosen.length === 1 ? "bottle" : "bottles"}`}</button></div>
+  </form>`;
+}
+
+/** The form for handing bottles over. */
+export function HandOver() {
+  const samples = useView(inHand);
+  const [values, set, forget] = useForm("hand_over", BLANK);
+  if (!values) return null;
+  return html`<div class="screen stack"><p class="back"><a href="/field/samples">My samples</a></p><h1>Hand over</h1>
+    ${samples.length === 0 ? html`<${Empty} title="No bottle is waiting">Bottles appear here once their sample was saved.<//>`
+      : html`<${Form} ...${{ samples, values, set, forget }} />`}</div>`;
 }

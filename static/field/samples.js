@@ -1,31 +1,52 @@
-// Samples by day, each with its state and where its entry is.
+// The samples of this person: where each one is, and which bottles are still in hand.
 
-import { html, useState } from "../parts/html.js";
-import { Choice } from "../parts/fields.js";
+import { html, useEffect, useState } from "../parts/html.js";
 import { dayAndTime, left } from "../parts/format.js";
-import { Empty, Frame, Where } from "../parts/frame.js";
+import { Empty, Where } from "../parts/frame.js";
+import { whoIsHere } from "../parts/session.js";
 import { all, one, programme, useView } from "../parts/view.js";
+import { nameOf } from "./point.js";
 
-const OPEN = new Set(["taken", "handed over", "received", "in digestion"]);
-
-function Row({ sample, zone }) {
-  const point = one("point", sample.point);
-  return html`<li class="item"><div class="row spread"><strong>${sample.bottle}</strong><${Where} about=${sample.id} /></div>
-    <div>${point?.discharger_name}, ${point?.name}</div>
-    <div class="under"><span>${sample.state}${sample.holder ? `, with ${sample.holder}` : ""}</span><span>${dayAndTime(sample.collected_at, zone)}</span></div>
-    ${OPEN.has(sample.state) && html`<div class="soft small">analysis to start: ${left(sample.hold_until)}</div>`}</li>`;
+/** Who is here, or null while that is looked up. */
+export function usePerson() {
+  const [person, setPerson] = useState(null);
+  useEffect(() => { whoIsHere().then(setPerson, () => {}); }, []);
+  return person;
 }
 
-/** The list of samples. */
+const DAY_MS = 86400000;
+const SHORT_DAYS = 7;
+
+function Hold({ sample }) {
+  if (!sample.hold_until || !["taken", "handed over", "received"].includes(sample.state)) return null;
+  const short = new Date(sample.hold_until).getTime() - Date.now() < SHORT_DAYS * DAY_MS;
+  return html`<span class=${short ? "above" : "soft"}>${short ? "▲ " : ""}holding time: ${left(sample.hold_until)}</span>`;
+}
+
+function Row({ sample }) {
+  const point = one("point", sample.point);
+  const zone = programme()?.zone;
+  return html`<li class="item">
+    <div class="row spread"><strong class="code">${sample.bottle}</strong><${Where} about=${sample.id} /></div>
+    <div>${point ? html`<a class="inline" href="/field/point/${sample.point}">${nameOf(point)}</a>` : "a point that is not on this tablet"}</div>
+    <div class="under"><span>${dayAndTime(sample.collected_at, zone)}, ${sample.state}${sample.holder ? ` (${sample.holder})` : ""}</span><${Hold} sample=${sample} /></div>
+    ${sample.plan && html`<div class="under"><span>to be diluted 1:${sample.plan.dilution_factor}${sample.plan.chosen_by === "person" ? `, chosen by ${sample.by_name || "a person"}` : ""}</span></div>`}
+  </li>`;
+}
+
+/** All samples of the person who is here, newest first. */
+export const samplesOf = (person) => all("sample").filter((sample) => !person?.id || sample.by === person.id).reverse();
+
+/** The list of one's own samples. */
 export function Samples() {
-  const [which, setWhich] = useState("open");
-  const samples = useView(() => all("sample")).reverse();
-  const settings = useView(programme);
-  const found = samples.filter((sample) => which === "all" || OPEN.has(sample.state)).slice(0, 200);
-  return html`<${Frame} place="field" title="Samples" about=${settings?.name}>
-    <div class="stack"><${Choice} label="Show" value=${which} options=${[["open", "Not finished"], ["all", "All"]]} onChoose=${setWhich} />
-    ${found.length ? html`<ul class="plain list">${found.map((sample) => html`<${Row} key=${sample.id} sample=${sample} zone=${settings?.zone} />`)}</ul>`
-      : html`<${Empty} title="No samples">Choose a <a href="/field">discharge point</a> and take one.<//>`}
-    <div class="row"><a class="button" href="/field/hand-over">Hand over bottles</a><a class="button" href="/field">All points</a></div></div>
-  <//>`;
+  const person = usePerson();
+  const samples = useView(() => samplesOf(person));
+  const inHand = samples.filter((sample) => sample.state === "taken");
+  return html`<div class="screen stack"><p class="back"><a href="/field">All points</a></p>
+    <h1>My samples</h1>
+    ${inHand.length > 0 && html`<div class="card row spread"><span><strong>${inHand.length}</strong> ${inHand.length === 1 ? "bottle is" : "bottles are"} in your hands.</span>
+      <a class="button main" href="/field/hand-over">Hand over</a></div>`}
+    ${samples.length === 0 ? html`<${Empty} title="You have taken no sample yet">Choose a point, then “Take the sample”. <a href="/field">All points</a><//>`
+      : html`<ul class="plain list">${samples.slice(0, 100).map((sample) => html`<${Row} key=${sample.id} sample=${sample} />`)}</ul>`}
+  </div>`;
 }

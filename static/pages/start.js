@@ -2,7 +2,7 @@
 
 import { html, useState } from "../parts/html.js";
 import { TextField, useSaving } from "../parts/fields.js";
-import { Problem, go } from "../parts/frame.js";
+import { Mark, Problem, go } from "../parts/frame.js";
 import { ask, keep } from "../parts/session.js";
 import { sync } from "../parts/sync.js";
 
@@ -55,7 +55,7 @@ export function Start() {
   const { save, problem, busy } = useSaving(async () => enter(await ask("POST", "/api/example", {})));
   if (own) return html`<main class="page"><${Own} back=${() => setOwn(false)} /></main>`;
   return html`<main class="page stack">
-    <h1>Weirbook</h1>
+    <${Mark} /><h1>Weirbook</h1>
     <p>One bottle, from the discharge point to the signed certificate: logged without a network, diluted right the first time,
       digested, read, calculated with an honest uncertainty, held against the limit and certified.</p>
     <button class="main" type="button" onClick=${() => setOwn(true)}>Start my own programme</button>

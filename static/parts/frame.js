@@ -15,7 +15,7 @@ export function go(path) {
 }
 
 /** A V-notch weir. */
-const Mark = () => html`<svg class="mark" viewBox="0 0 36 26" width="36" height="26" aria-hidden="true" focusable="false">
+export const Mark = () => html`<svg class="mark" viewBox="0 0 36 26" width="36" height="26" aria-hidden="true" focusable="false">
   <path d="M2 2h10l6 13 6-13h10v22H2z" fill="none" stroke="currentColor" stroke-width="2.6" stroke-linejoin="round" />
   <path d="M12.5 6h11" stroke="var(--water)" stroke-width="2.6" /></svg>`;
 
@@ -94,11 +94,16 @@ export function Frame({ place, title, about, wide = false, children }) {
   </div>`;
 }
 
-/** List and detail: side by side on a wide screen, one at a time on a phone. `front` says which one. */
-export function Sides({ front, list, detail, kind = "" }) {
+/**
+ * List and detail: side by side on a wide screen, one at a time on a phone. `front` says which one is the main content.
+ * @param {{front: "list"|"detail", list: object, detail: object, kind?: string, listName?: string}} props
+ */
+export function Sides({ front, list, detail, kind = "", listName = "List" }) {
+  const main = (vnode, name) => html`<main class="side front ${name}" id="main">${vnode}</main>`;
+  const beside = (vnode, name) => html`<aside class="side ${name}" aria-label=${listName}>${vnode}</aside>`;
   return html`<div class="sides ${kind}">
-    <div class="side ${front === "list" ? "front" : ""}">${list}</div>
-    <main class="side ${front === "detail" ? "front" : ""}" id="main">${detail}</main>
+    ${front === "list" ? main(list, "of-list") : beside(list, "of-list")}
+    ${front === "detail" ? main(detail, "of-detail") : beside(detail, "of-detail")}
   </div>`;
 }
 

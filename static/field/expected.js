@@ -1,0 +1,87 @@
+// What to expect at a point and the dilution that follows from it; a person may choose another one and says why.
+
+import { html, useState } from "../parts/html.js";
+import { Choice, TextField } from "../parts/fields.js";
+import { percent, plain, rough } from "../parts/format.js";
+import { Strip } from "../parts/strip.js";
+import { Tube, colourName } from "../parts/tube.js";
+import { programme } from "../parts/view.js";
+import { useForecast } from "./forecast.js";
+import { stepWords, stepsOf } from "./glassware.js";
+import { limitOf } from "./point.js";
+
+/** The plan that counts: what the person chose, or else what the forecast chose. */
+export function planOf(forecast, values) {
+  if (values.factor === null) return forecast?.choice ?? null;
+  const known = forecast?.plans.find((plan) => plan.factor === values.factor && (!values.recipe || plan.recipe === values.recipe));
+  return known ?? { recipe: values.recipe, factor: values.factor, steps: stepsOf(values.factor) ?? [], share: null };
+}
+
+/** The chosen plan between its neighbours: three bars tell why this one. */
+function around(forecast, plan) {
+  const same = forecast.plans.filter((one) => one.recipe === plan.recipe).sort((a, b) => a.factor - b.factor);
+  const at = Math.max(0, same.findIndex((one) => one.factor === plan.factor));
+  const first = Math.min(Math.max(0, at - 1), Math.max(0, same.length - 3));
+  return same.slice(first, first + 3).map((one) => ({ ...one, chosen: one.factor === plan.factor }));
+}
+
+function Number({ forecast, plan }) {
+  const share = plan?.capacity ? forecast.median / plan.factor / plan.capacity : null;
+  return html`<div class="row spread nowrap"><div>
+      <p class="soft tight">Expected COD ${forecast.shifted ? "with these readings" : "today"}</p>
+      <p class="big tight">${rough(forecast.median)} <span class="unit">mg/L</span></p>
+      <p class="soft tight">nine in ten between ${rough(forecast.low)} and ${rough(forecast.high)}</p></div>
+    ${share !== null && html`<figure class="tube-now"><${Tube} share=${share} /><figcaption>${percent(Math.min(1, share))} used, ${colourName(share)}</figcaption></figure>`}
+  </div>`;
+}
+
+function Dilution({ plan, forecast, chosen }) {
+  const steps = plan.steps.length ? `${stepWords(plan.steps)}. ` : "";
+  const chance = plan.share === null ? "" : `${percent(plan.share)} in range. `;
+  return html`<p class="dilute"><strong>${plan.factor === 1 ? "Do not dilute." : `Dilute 1:${plain(plan.factor)}.`}</strong> ${" "}
+    ${chosen ? html`Your choice. ${chance}` : `${forecast.why} `}<span class="soft">${steps}</span></p>`;
+}
+
+function Another({ forecast, values, set }) {
+  const [open, setOpen] = useState(false);
+  const picked = values.factor !== null;
+  if (!open && !picked) {
+    return html`<button type="button" onClick=${() => setOpen(true)}>${forecast ? "Choose another dilution" : "Choose a dilution"}</button>`;
+  }
+  const factors = forecast?.factors ?? programme()?.settings.dilutions ?? [1];
+  const options = factors.map((factor) => {
+    const share = forecast?.plans.find((plan) => plan.factor === factor)?.share;
+    return [factor, share === undefined || share === null ? `1:${plain(factor)}` : `1:${plain(factor)}, ${percent(share)}`];
+  });
+  const back = () => {
+    set("factor", null);
+    set("reason", "");
+    setOpen(false);
+  };
+  return html`<div class="stack">
+    <${Choice} label=${forecast ? "Dilution, and its share in range" : "Dilution"} value=${values.factor} options=${options} onChoose=${(factor) => set("factor", factor)} />
+    ${picked && html`<${TextField} label="Why this one" value=${values.reason} onInput=${(text) => set("reason", text)} hint="It stays beside the sample: for example what the water looks like." />`}
+    <button type="button" class="quiet" onClick=${back}>${forecast ? "Back to the proposed one" : "Choose none"}</button>
+  </div>`;
+}
+
+/** The card with the expectation, the strip and the dilution. */
+export function Expected({ point, values, set }) {
+  const forecast = useForecast(point, values);
+  if (forecast === undefined) return html`<section class="card"><p class="soft">Looking up what to expect…</p></section>`;
+  const plan = planOf(forecast, values);
+  if (!forecast) {
+    return html`<section class="card stack"><h2>No expectation yet</h2>
+      <p class="soft">The server has not sent one for this point. Take the sample all the same; the dilution can be settled at the bench.</p>
+      ${plan && html`<${Dilution} plan=${plan} chosen=${true} />`}
+      <${Another} forecast=${null} values=${values} set=${set} /></section>`;
+  }
+  return html`<section class="card stack" aria-label="Expectation">
+    <${Number} forecast=${forecast} plan=${plan} />
+    <${Strip} predictive=${forecast.predictive} bars=${plan ? around(forecast, plan) : []} limit=${limitOf(point)?.value ?? null} />
+    ${plan && html`<${Dilution} plan=${plan} forecast=${forecast} chosen=${values.factor !== null} />`}
+    ${!plan && html`<p class="above">▲ No dilution at hand fits. ${forecast.why}</p>`}
+    ${forecast.notes.map((words) => html`<p class="soft" key=${words}>${words}</p>`)}
+    <${Another} forecast=${forecast} values=${values} set=${set} />
+  </section>`;
+}

@@ -1,0 +1,46 @@
+// What the Field's screens ask of a point: its name, its limit today, its dangers, its readings.
+
+import { day } from "../parts/format.js";
+import { programme } from "../parts/view.js";
+
+/** The readings a meter can give at a point: [key, label, units, the body's name]. */
+export const READINGS = [
+  ["conductivity", "Conductivity", ["uS/cm", "mS/cm"], "conductivity_us_cm"],
+  ["turbidity", "Turbidity", ["NTU"], "turbidity_ntu"],
+  ["ph", "pH", ["pH"], "ph"],
+  ["temperature", "Temperature of the water", ["Cel", "degF"], "temperature_c"],
+];
+
+export const ACTIVITIES = [["production", "Production"], ["cleaning", "Cleaning"], ["idle", "Idle"]];
+
+/** An empty form for a sample; the card and the form share its draft. */
+export const BLANK = {
+  bottle: "", time: "", conductivity: "", conductivity_unit: "uS/cm", turbidity: "", turbidity_unit: "NTU", ph: "",
+  ph_unit: "pH", temperature: "", temperature_unit: "Cel", activity: null, appearance: "", acid: false, acid_ph: "",
+  cooled: false, note: "", factor: null, recipe: null, reason: "",
+};
+
+/** The key of a point's draft. */
+export const draftKey = (point) => `sample:${point}`;
+
+/** A point's whole name, the firm first. */
+export const nameOf = (point) => `${point.discharger_name}, ${point.name}`;
+
+/** The daily maximum in force today, or null. */
+export function limitOf(point) {
+  const today = day(new Date(), programme()?.zone);
+  const inForce = point.limits.filter((limit) => limit.basis === "daily_maximum" && limit.from <= today);
+  return inForce.at(-1) ?? null;
+}
+
+/** Whether what was typed into the search is in a point's names. */
+export function matches(point, text) {
+  const words = text.toLowerCase().split(/\s+/u).filter(Boolean);
+  const all = `${point.discharger_name} ${point.name} ${point.sector ?? ""} ${point.access}`.toLowerCase();
+  return words.every((word) => all.includes(word));
+}
+
+/** A hazard in the server's words, or at least its name. */
+export function hazardOf(words, id) {
+  return words?.field?.find((one) => one.id === id) ?? { id, name: id.replaceAll("_", " "), caution: "" };
+}

@@ -1,0 +1,144 @@
+// Taking a sample: the bottle's code, the moment, what was read, how it is kept.
+
+import { html } from "../parts/html.js";
+import { readCode } from "../parts/bottle_code.js";
+import { Check, Choice, LongField, NumberField, TextField, echo, measuredOf, useForm, useSaving } from "../parts/fields.js";
+import { dayAndTime, localInput, plain } from "../parts/format.js";
+import { Empty, Problem, go, say } from "../parts/frame.js";
+import { newId, state, withOffset } from "../parts/journal.js";
+import { one, programme, useView } from "../parts/view.js";
+import { freshCode } from "./codes.js";
+import { planOf } from "./expected.js";
+import { useForecast } from "./forecast.js";
+import { ACTIVITIES, BLANK, draftKey, nameOf, READINGS } from "./point.js";
+
+const EARLY_MS = 5 * 60000;
+
+/** What is wrong with a form, by field; empty when it can be saved. */
+export function problemsOf(values, now = Date.now()) {
+  const wrong = {};
+  const { code, problem } = readCode(values.bottle);
+  if (!values.bottle.trim()) wrong.bottle = "Scan or type the code on the bottle.";
+  else if (problem) wrong.bottle = `${problem[0].toUpperCase()}${problem.slice(1)}.`;
+  else if (one("bottle", code)?.sample) wrong.bottle = `Bottle ${code} already holds another sample: look at the label again.`;
+  if (values.time && Number.isNaN(new Date(values.time).getTime())) wrong.time = "Not a day and time.";
+  else if (values.time && new Date(values.time).getTime() > now + EARLY_MS) wrong.time = "This moment is still to come.";
+  for (const [field, , , ] of READINGS) {
+    const told = echo(values[field], "");
+    if (told.problem) wrong[field] = told.problem;
+  }
+  if (values.acid && echo(values.acid_ph, "pH").problem) wrong.acid_ph = echo(values.acid_ph, "pH").problem;
+  if (values.factor !== null && !values.reason.trim()) wrong.reason = "Say why this dilution: it differs from the proposed one.";
+  return wrong;
+}
+
+function planBody(plan, values, forecast) {
+  if (!plan) return null;
+  return {
+    recipe: plan.recipe ?? null,
+    dilution_factor: plan.factor,
+    steps: plan.steps,
+    p_in_range: plan.share ?? null,
+    median: forecast?.median ?? null,
+    low: forecast?.low ?? null,
+    high: forecast?.high ?? null,
+    reason: (values.factor === null ? forecast.why : values.reason.trim()).slice(0, 500),
+    chosen_by: values.factor === null ? "forecast" : "person",
+  };
+}
+
+/** The body of the entry, measured values as typed. */
+export function bodyOf(point, values, plan, forecast) {
+  const field = {};
+  for (const [key, , , name] of READINGS) {
+    const measured = measuredOf(values[key], values[`${key}_unit`]);
+    if (measured) field[name] = measured;
+  }
+  return {
+    point: point.id,
+    bottle: readCode(values.bottle).code,
+    sample_kind: "grab",
+    collected_at: withOffset(values.time ? new Date(values.time) : new Date()),
+    field,
+    activity: values.activity,
+    appearance: values.appearance.trim(),
+    preservation: { acid: values.acid, ph: values.acid ? measuredOf(values.acid_ph, "pH") : null, cooled: values.cooled },
+    plan: planBody(plan, values, forecast),
+    note: values.note.trim(),
+  };
+}
+
+function Moment({ values, set, wrong }) {
+  const zone = programme()?.zone;
+  const here = Intl.DateTimeFormat().resolvedOptions().timeZone;
+  const moment = values.time ? new Date(values.time) : new Date();
+  const elsewhere = zone && zone !== here && !Number.isNaN(moment.getTime());
+  const hint = elsewhere ? `Your device is in ${here}; in the programme's zone it is ${dayAndTime(moment, zone)}.` : values.time ? "" : "Now, when you save.";
+  return html`<div class="row moment"><${TextField} label="Taken at" type="datetime-local" value=${values.time} hint=${hint} wrong=${wrong}
+      onInput=${(text) => set("time", text)} />
+    <button type="button" onClick=${() => set("time", values.time ? "" : localInput())}>${values.time ? "Use now" : "Set the time"}</button></div>`;
+}
+
+function Kept({ values, set, wrong }) {
+  return html`<section class="card stack"><h2>How it is kept</h2>
+    <${Check} label="On ice or in a refrigerator" checked=${values.cooled} onChange=${(on) => set("cooled", on)} />
+    <${Check} label="Acidified with sulfuric acid" checked=${values.acid} onChange=${(on) => set("acid", on)} />
+    ${values.acid && html`<div class="stack"><p class="card wait"><strong>▲ Acid.</strong> Goggles and gloves; acid slowly into the sample,
+      bottle held away from you; water at hand. The safety data sheet and your local rules decide.</p>
+      <${NumberField} label="pH after acid" value=${values.acid_ph} unit="pH" wrong=${wrong} onInput=${(text) => set("acid_ph", text)} hint="For example < 2 from a strip. Leave it empty if not measured." /></div>`}
+    <p class="soft small">For COD: at most 6 °C, and sulfuric acid to below pH 2, hold 28 days (40 CFR 136.3, Table II).</p>
+  </section>`;
+}
+
+function Bottle({ values, set, wrong }) {
+  const { code } = readCode(values.bottle);
+  return html`<section class="card stack"><${TextField} label="Bottle" class="code" value=${values.bottle} wrong=${wrong} maxlength="12"
+      autocomplete="off" autocapitalize="characters" spellcheck="false" enterkeyhint="next"
+      hint=${code ? `Read as ${code}. The check character agrees.` : "The six characters on its label; spaces do not matter."} onInput=${(text) => set("bottle", text)} />
+    ${!values.bottle && html`<button type="button" class="quiet" onClick=${() => set("bottle", freshCode())}>No printed label: give me a code to write on it</button>`}
+  </section>`;
+}
+
+function Form({ point, values, set, forget }) {
+  const forecast = useForecast(point, values);
+  const plan = planOf(forecast, values);
+  const { save, problem, busy } = useSaving(async () => {
+    const found = problemsOf(values);
+    set("asked", true);
+    if (Object.keys(found).length) throw new Error("Not saved yet: see what is marked below.");
+    await state("sample.taken", newId(), bodyOf(point, values, plan, forecast ?? null));
+    await forget();
+    say("Saved on this tablet");
+    go("/field/samples");
+  });
+  const wrong = values.asked ? problemsOf(values) : {};
+  return html`<form class="stack" onSubmit=${save} novalidate>
+    <${Bottle} values=${values} set=${set} wrong=${wrong.bottle} />
+    <section class="card stack"><h2>When and what</h2>
+      <${Moment} values=${values} set=${set} wrong=${wrong.time} />
+      <${Choice} label="What goes on at the firm" value=${values.activity} options=${ACTIVITIES} onChoose=${(key) => set("activity", values.activity === key ? null : key)} />
+      <div class="two">${READINGS.map(([field, label, units]) => html`<${NumberField} key=${field} label=${label} value=${values[field]} unit=${values[`${field}_unit`]}
+        units=${units.length > 1 ? units : undefined} onInput=${(text) => set(field, text)} onUnit=${(unit) => set(`${field}_unit`, unit)} />`)}</div>
+      <${TextField} label="Colour, smell, foam, solids" value=${values.appearance} maxlength="200" onInput=${(text) => set("appearance", text)} />
+    </section>
+    <${Kept} values=${values} set=${set} wrong=${wrong.acid_ph} />
+    <section class="card"><h2>Dilution at the bench</h2>${plan
+      ? html`<p><strong>${plan.factor === 1 ? "Undiluted" : `1:${plain(plan.factor)}`}</strong>, ${values.factor === null ? "as proposed" : "your choice"}. <a href="/field/point/${point.id}">See why or change it</a></p>`
+      : html`<p class="soft">Open: it is settled at the bench. <a href="/field/point/${point.id}">Choose one</a></p>`}
+      ${values.factor !== null && html`<${TextField} label="Why this one" value=${values.reason} wrong=${wrong.reason} onInput=${(text) => set("reason", text)} />`}</section>
+    <${LongField} label="Note" value=${values.note} onInput=${(text) => set("note", text)} />
+    <${Problem} words=${problem} />
+    <div class="sticky"><button class="main" disabled=${busy}>${busy ? "Saving…" : "Save the sample"}</button></div>
+  </form>`;
+}
+
+/** The form for a sample of one point. */
+export function Take({ id }) {
+  const point = useView(() => one("point", id));
+  const [values, set, forget] = useForm(draftKey(id), BLANK);
+  if (!point) return html`<div class="screen"><h1>Take a sample</h1><${Empty} title="This point is not on this tablet"><a href="/field">All points</a><//></div>`;
+  if (!values) return null;
+  return html`<div class="screen stack"><p class="back"><a href="/field/point/${id}">Back to the point</a></p>
+    <header><h1>Take a sample</h1><p class="soft">${nameOf(point)}</p></header>
+    <${Form} ...${{ point, values, set, forget }} /></div>`;
+}
