@@ -2,8 +2,11 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
+from decimal import Decimal
 from typing import Any
 
+from app.chemistry import rounding
 from app.chemistry.uncertainty import coverage_factor
 from app.documents import data as paper
 from app.errors import InputError
@@ -86,7 +89,7 @@ def _sample(id_: str, sample: Body) -> paper.Sample:
 
 
 def _plain(number: float) -> str:
-    return f"{number:g}"
+    return rounding.plain(Decimal(repr(float(number))).normalize())
 
 
 def _method(run: Body, recipe: Body) -> paper.Method:
@@ -108,15 +111,20 @@ def _method(run: Body, recipe: Body) -> paper.Method:
 
 
 def _result(result: Body, used: int) -> paper.Result:
-    known = result["status"] == "ok" and result["shown_u"] is not None
-    return paper.Result(
+    given = paper.Result(
         status=result["status"],
         reported=result["shown"],
-        expanded_u=result["shown_u"] if known else None,
-        coverage_factor=f"{coverage_factor(result['dof']):.2f}" if known else None,
-        dof=None if not known or result["dof"] is None else str(int(result["dof"])),
         reporting_level=_plain(result["reporting_level"]),
         tubes_used=used,
+    )
+    if result["status"] != "ok" or result["shown_u"] is None:
+        return given
+    dof: float | None = result["dof"]
+    return replace(
+        given,
+        expanded_u=result["shown_u"],
+        coverage_factor=f"{coverage_factor(dof):.2f}",
+        dof=None if dof is None else str(int(dof)),
     )
 
 
@@ -164,8 +172,22 @@ def _what(tube: Body) -> str:
     return str(tube["bottle"] or tube["role"])
 
 
+def _set_aside(run: Body) -> dict[int, str]:
+    """Return why each tube that the rule of the replicates set aside was set aside, by position."""
+    found = {}
+    names = sample_names(run)
+    for one in run["answer"]["samples"]:
+        for left in one["excluded"]:
+            if left["by"] == "rule":
+                found[names[one["sample"]][left["index"]]["position"]] = (
+                    f"set aside by rule: {left['reason']}"
+                )
+    return found
+
+
 def _tubes(run: Body, code: str) -> tuple[paper.Tube, ...]:
     told = [tube for tube in run["tubes"] if tube["role"] != "sample" or tube["bottle"] == code]
+    by_rule = _set_aside(run)
     return tuple(
         paper.Tube(
             position=tube["position"],
@@ -173,7 +195,7 @@ def _tubes(run: Body, code: str) -> tuple[paper.Tube, ...]:
             absorbance=tube["absorbance"]["text"] if tube["absorbance"] else "",
             in_tube="" if tube["in_tube"] is None else f"{tube['in_tube']:.1f}",
             state=tube["colour"] or "",
-            excluded=tube["excluded"]["cause"] if tube["excluded"] else "",
+            excluded=tube["excluded"]["cause"] if tube["excluded"] else by_rule.get(tube["position"], ""),
             excluded_by=tube["excluded"]["by"] if tube["excluded"] else "",
         )
         for tube in told
@@ -184,6 +206,14 @@ def _answer_of(run: Body, result: Body) -> Body:
     names = [name for name, tubes in sample_names(run).items() if tubes[0]["bottle"] == result["bottle"]]
     answers: list[Body] = [one for one in run["answer"]["samples"] if one["sample"] in names]
     return next(one for one in answers if one["cod"] == result["cod"])
+
+
+def _dof(writing: Writing, run: Body) -> dict[str, float | None]:
+    """Return the degrees of freedom of the components that have finite ones."""
+    calibration = writing.get("calibration", run["calibration"]) or {}
+    policy = run["input"]["policy"]
+    line = (calibration.get("fitted") or {}).get("dof")
+    return {"line": line, "repeatability": policy["repeatability"]["dof"], "bias": policy["bias_dof"]}
 
 
 def _dilution(result: Body) -> paper.Dilution:
@@ -215,7 +245,7 @@ def gather(
     facts: dict[str, Any] = {
         "calibration": calibration_of(writing, run, answer),
         "strip": strip_of(result, recipe, sample),
-        "components": components_of(result),
+        "components": components_of(result, _dof(writing, run)),
         "checks": _checks(run),
         "tubes": _tubes(run, result["bottle"]),
     }

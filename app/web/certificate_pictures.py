@@ -98,8 +98,8 @@ def strip_of(result: Body, recipe: Body, sample: Body) -> paper.Strip:
     )
 
 
-def components_of(result: Body) -> tuple[paper.Component, ...]:
-    """Return the uncertainty budget: each component's size and its share of the variance."""
+def components_of(result: Body, dof: dict[str, float | None]) -> tuple[paper.Component, ...]:
+    """Return the uncertainty budget: each component's size, share of the variance and degrees of freedom."""
     total = sum(value**2 for value in result["components"].values())
     return tuple(
         paper.Component(
@@ -107,6 +107,7 @@ def components_of(result: Body) -> tuple[paper.Component, ...]:
             u=rounding.plain(rounding.reported_u(value)) if value else "0",
             share=value**2 / total if total else 0.0,
             share_percent=f"{100 * value**2 / total:.1f}" if total else "0",
+            dof="" if dof.get(name) is None else f"{dof[name]:g}",
             explained=_WORDS[name][1],
         )
         for name, value in result["components"].items()
