@@ -99,7 +99,7 @@ def _method(run: Body, recipe: Body) -> paper.Method:
         recipe=recipe["name"],
         source=recipe["source"],
         wavelength_nm=_plain(recipe["wavelength_nm"]),
-        minutes=int(heating.get("minutes", recipe["minutes"])),
+        minutes=round(float(heating.get("minutes") or recipe["minutes"])),
         temperature_c=_plain(recipe["temperature_c"]),
         working_low=_plain(recipe["working_low"]),
         working_high=_plain(recipe["working_high"]),
