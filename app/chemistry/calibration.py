@@ -37,6 +37,8 @@ from app.errors import Fields, InputError
 Floats = NDArray[np.float64]
 
 FEWEST_LEVELS = 5
+#: The smallest concentration that is not zero.
+SMALLEST = 1e-6
 #: A sum of squares under this share of the total is rounding, not scatter.
 ROUNDING = 1e-24
 TOO_FAR_APART = "The numbers of these standards lie too far apart to make a curve."
@@ -76,6 +78,8 @@ def standard_problems(standards: Sequence[Standard], prefix: str = "") -> Fields
     wrong = Problems(prefix)
     for i, standard in enumerate(standards):
         wrong.number(f"standards.{i}.cod", standard.cod, least=0)
+        if 0 < standard.cod < SMALLEST:
+            wrong.add(f"standards.{i}.cod", f"is neither zero nor at least {SMALLEST:g}")
         wrong.readings(f"standards.{i}.absorbance", standard.absorbance)
     levels = len({standard.cod for standard in standards})
     if levels < FEWEST_LEVELS:
@@ -225,6 +229,8 @@ def fit_points(cod: Any, absorbance: Any, model: Model = "linear", weight: Any =
         residual_sd = math.sqrt(sse / dof) if math.isfinite(sse) else math.nan
         _refuse_hopeless(sums, residual_sd, dof, parameters)
         coefficients, errors = _raw(sums, parameters, residual_sd)
+        polynomial = _polynomial(sums, parameters)
+        found = _back_calculate_all(sums.basis, polynomial, y)
         curve = Curve(
             model=model,
             weights="equal" if weight is None else "given",
@@ -236,17 +242,16 @@ def fit_points(cod: Any, absorbance: Any, model: Model = "linear", weight: Any =
             r_squared=1.0 - sse / sums.total,
             lack_of_fit=_lack_of_fit(x, y, w, sse, parameters),
             mandel=_mandel(sums, len(x)),
-            relative_standard_error_percent=None,
+            relative_standard_error_percent=relative_standard_error(x, found, parameters),
             standards=(),
             low=float(x.min()),
             high=float(x.max()),
             lowest_nonzero=float(x[x > 0].min()) if (x > 0).any() else 0.0,
-            basis=replace(sums.basis, sums=sums.basis.sums[:parameters]),
-            polynomial=_polynomial(sums, parameters),
+            basis=sums.basis,
+            polynomial=polynomial,
         )
-        _refuse_turning(curve)
-        found = _back_calculate_all(curve, y)
-    return replace(curve, relative_standard_error_percent=relative_standard_error(x, found, parameters))
+    _refuse_turning(curve)
+    return curve
 
 
 def _polynomial(sums: _Sums, parameters: int) -> tuple[float, float, float]:
@@ -320,15 +325,15 @@ def _mandel(sums: _Sums, n: int) -> FTest | None:
     return FTest(f, float(fdtrc(1, n - 3, f)))
 
 
-def _back_calculate_all(curve: Curve, y: Floats) -> Floats:
+def _back_calculate_all(basis: Basis, polynomial: tuple[float, float, float], y: Floats) -> Floats:
     """Turn many absorbances back at once; NaN beyond the turning point."""
-    a0, a1, a2 = curve.polynomial
+    a0, a1, a2 = polynomial
     rise = y - a0
     if a2 == 0.0:
         t = rise / a1
     else:
         t = 2.0 * rise / (a1 + math.copysign(1.0, a1) * np.sqrt(a1 * a1 + 4.0 * a2 * rise))
-    return curve.basis.centre + curve.basis.scale * t
+    return basis.centre + basis.scale * t
 
 
 def relative_standard_error(true: Any, found: Any, parameters: int) -> float | None:

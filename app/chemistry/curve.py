@@ -57,15 +57,15 @@ class Basis:
     alpha, beta : float
         Of the second polynomial, t^2 - alpha t - beta.
     sums : tuple of float
-        Weighted sums of squares of the polynomials; two for a line, three for
-        a parabola. The first is the sum of weights.
+        Weighted sums of squares of the three polynomials, of which a line
+        uses two. The first is the sum of weights.
     """
 
     centre: float
     scale: float
     alpha: float
     beta: float
-    sums: tuple[float, ...]
+    sums: tuple[float, float, float]
 
 
 @dataclass(frozen=True)
@@ -266,7 +266,7 @@ class Curve:
         basis = self.basis
         t = (cod - basis.centre) / basis.scale
         total = 1.0 / basis.sums[0] + t * t / basis.sums[1]
-        if len(basis.sums) == 3:
+        if len(self.coefficients) == 3:
             second = t * t - basis.alpha * t - basis.beta
             total += second * second / basis.sums[2]
         return self.residual_sd * self.residual_sd * total

@@ -149,7 +149,8 @@ def _residual(curve: Curve, cod: float, absorbance: float) -> Residual:
     basis, weight = curve.basis, curve.weight(cod)
     t = (cod - basis.centre) / basis.scale
     polynomials = (1.0, t, t * t - basis.alpha * t - basis.beta)
-    leverage = weight * sum(p * p / s for p, s in zip(polynomials, basis.sums, strict=False))
+    terms = [p * p / s for p, s in zip(polynomials, basis.sums, strict=True)]
+    leverage = weight * sum(terms[: len(curve.coefficients)])
     rest = absorbance - curve.absorbance(cod)
     spread = curve.residual_sd * math.sqrt(max(1.0 - leverage, 0.0) / weight)
     return Residual(

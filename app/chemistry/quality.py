@@ -21,6 +21,8 @@ from dataclasses import dataclass
 from app.chemistry.problems import Problems
 
 NEAR_REPORTING_LEVELS = 5.0
+#: A mean this small beside the difference is rounding.
+ROUNDING = 1e-12
 SMALLEST_SPIKE_SHARE = 0.25
 ANALYSES_PER_BRACKET = 10
 
@@ -165,7 +167,7 @@ def duplicate_check(
     if a is None or b is None:
         return DuplicateCheck(samples, None, None)
     difference, mean = abs(a - b), (a + b) / 2.0
-    rpd = 100.0 * difference / mean if mean > 0 else None
+    rpd = 100.0 * difference / mean if mean > ROUNDING * difference else None
     near = min(a, b) < NEAR_REPORTING_LEVELS * reporting_level and difference <= reporting_level
     return DuplicateCheck(samples, rpd, near or (rpd is not None and rpd <= rpd_percent))
 

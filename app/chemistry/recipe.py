@@ -82,8 +82,8 @@ class Recipe:
         """
         wrong = Problems()
         for name in ("sample_ml", "digestion_solution_ml", "acid_reagent_ml"):
-            wrong.number(name, getattr(self, name), above=0, most=1000)
-        wrong.number("dichromate_g_per_l", self.dichromate_g_per_l, above=0, most=1000)
+            wrong.number(name, getattr(self, name), least=0.001, most=1000)
+        wrong.number("dichromate_g_per_l", self.dichromate_g_per_l, least=0.001, most=1000)
         wrong.number("mercury_sulfate_g_per_l", self.mercury_sulfate_g_per_l, least=0, most=1000)
         wrong.number("silver_sulfate_g_per_l", self.silver_sulfate_g_per_l, least=0, most=1000)
         wrong.number("wavelength_nm", self.wavelength_nm, least=190, most=1100)

@@ -11,7 +11,7 @@ from collections.abc import Sequence
 from dataclasses import dataclass
 from typing import Literal
 
-from app.chemistry.calibration import Standard, standard_problems
+from app.chemistry.calibration import SMALLEST, Standard, standard_problems
 from app.chemistry.curve import Model
 from app.chemistry.problems import Problems
 from app.chemistry.recipe import Recipe
@@ -207,12 +207,12 @@ def run_problems(run: Run) -> Fields:
     for i, tubes in enumerate(run.tubes):
         _tube_problems(wrong, f"tubes.{i}", tubes)
     for i, verification in enumerate(run.verifications):
-        wrong.number(f"verifications.{i}.expected", verification.expected, above=0)
+        wrong.number(f"verifications.{i}.expected", verification.expected, least=SMALLEST)
         wrong.readings(f"verifications.{i}.absorbance", verification.absorbance)
     name_problems(wrong, [tubes.sample for tubes in run.tubes], run.duplicates, run.spikes)
     for i, spike in enumerate(run.spikes):
         for name in ("sample_ml", "spike_ml", "spike_mg_l"):
-            wrong.number(f"spikes.{i}.{name}", getattr(spike, name), above=0)
+            wrong.number(f"spikes.{i}.{name}", getattr(spike, name), least=SMALLEST)
     _policy_problems(wrong, run.policy)
     return wrong.fields
 
@@ -225,7 +225,7 @@ def _tube_problems(wrong: Problems, path: str, tubes: SampleTubes) -> None:
         wrong.number(f"{path}.remaining_oxidant", tubes.remaining_oxidant, least=0, most=MOST_REMAINING)
     seen: set[int] = set()
     for j, exclusion in enumerate(tubes.excluded):
-        if not 0 <= exclusion.index < len(tubes.absorbance):
+        if tubes.absorbance and not 0 <= exclusion.index < len(tubes.absorbance):
             wrong.add(f"{path}.excluded.{j}.index", f"there is no tube {exclusion.index} in this sample")
         elif exclusion.index in seen:
             wrong.add(f"{path}.excluded.{j}.index", "this tube is excluded twice")
@@ -285,10 +285,10 @@ def _policy_problems(wrong: Problems, policy: Policy) -> None:
     wrong.number("policy.repeatability.a", repeatability.a, least=0)
     wrong.number("policy.repeatability.k", repeatability.k, least=0, most=1)
     if repeatability.dof is not None:
-        wrong.number("policy.repeatability.dof", repeatability.dof, above=0)
+        wrong.number("policy.repeatability.dof", repeatability.dof, least=1)
     wrong.number("policy.bias_relative_u", policy.bias_relative_u, least=0, most=1)
     if policy.bias_dof is not None:
-        wrong.number("policy.bias_dof", policy.bias_dof, above=0)
+        wrong.number("policy.bias_dof", policy.bias_dof, least=1)
     wrong.number("policy.verification_percent", policy.verification_percent, above=0)
     wrong.number("policy.duplicate_rpd_percent", policy.duplicate_rpd_percent, above=0)
     for end in policy.spike_percent:

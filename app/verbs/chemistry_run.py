@@ -53,7 +53,9 @@ def load_run(value: Any) -> Run:
 
 
 def _hidden(path: str, broken: Fields) -> bool:
-    """Tell whether a path lies at, in or around something broken, or names samples that could not be read."""
+    """Tell whether a path lies at, in or around something broken, or speaks of what could not be read."""
+    if ".excluded" in path and f"{path.partition('.excluded')[0]}.absorbance" in broken:
+        return True
     if path.startswith(("duplicates.", "spikes.")) and any(
         name == "tubes" or (name.startswith("tubes.") and name.count(".") == 1) or name.endswith(".sample")
         for name in broken

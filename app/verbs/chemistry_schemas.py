@@ -29,6 +29,11 @@ def as_number(value: Any) -> float:
     return number
 
 
+def is_text(value: Any) -> bool:
+    """Tell whether a value is text that can be written down again (JSON lets half a character through)."""
+    return isinstance(value, str) and value.encode("utf-8", "replace").decode("utf-8") == value
+
+
 class Number(fields.Field[float]):
     """One finite number."""
 
@@ -81,9 +86,9 @@ class Text(fields.Field[str]):
     default_error_messages = MISSING_WORDS
 
     def _deserialize(self, value: Any, attr: Any, data: Any, **kwargs: Any) -> str:
-        if not isinstance(value, str):
+        if not is_text(value):
             raise ValidationError("must be a text")
-        return value
+        return str(value)
 
 
 class NamePairs(fields.Field[tuple[tuple[str, str], ...]]):
@@ -97,7 +102,7 @@ class NamePairs(fields.Field[tuple[tuple[str, str], ...]]):
         wrong = {
             i: ["must be a pair of sample names"]
             for i, pair in enumerate(value)
-            if not (isinstance(pair, list) and len(pair) == 2 and all(isinstance(n, str) for n in pair))
+            if not (isinstance(pair, list) and len(pair) == 2 and all(map(is_text, pair)))
         }
         if wrong:
             raise ValidationError(wrong)
