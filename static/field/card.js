@@ -81,8 +81,7 @@ export function Card({ id }) {
     <p class="back"><a href="/field">All points</a></p>
     <${Head} point=${point} />
     <${Hazards} point=${point} />
-    <${Expected} point=${point} values=${values} set=${set} />
-    <${Readings} values=${values} set=${set} />
+    <div class="cols"><${Expected} point=${point} values=${values} set=${set} /><${Readings} values=${values} set=${set} /></div>
     ${point.sample_kind === "composite" && html`<p class="card wait"><strong>This point asks for a composite.</strong> Only grab samples are recorded here for now; a sampler's bottle is kept by its own form.</p>`}
     <section class="card stack"><h2>Limits and past</h2><${Limits} point=${point} /><${Past} point=${point} /></section>
     <div class="sticky"><button type="button" class="main" onClick=${() => go(`/field/point/${id}/take`)}>Take the sample</button>

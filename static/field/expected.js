@@ -25,9 +25,9 @@ function around(forecast, plan) {
   return same.slice(first, first + 3).map((one) => ({ ...one, chosen: one.factor === plan.factor }));
 }
 
-function Number({ forecast, plan }) {
+function Figure({ forecast, plan }) {
   const share = plan?.capacity ? forecast.median / plan.factor / plan.capacity : null;
-  return html`<div class="row spread nowrap"><div>
+  return html`<div class="beside"><div>
       <p class="soft tight">Expected COD ${forecast.shifted ? "with these readings" : "today"}</p>
       <p class="big tight">${rough(forecast.median)} <span class="unit">mg/L</span></p>
       <p class="soft tight">nine in ten between ${rough(forecast.low)} and ${rough(forecast.high)}</p></div>
@@ -51,14 +51,15 @@ function Another({ forecast, values, set }) {
   const factors = forecast?.factors ?? programme()?.settings.dilutions ?? [1];
   const options = factors.map((factor) => {
     const share = forecast?.plans.find((plan) => plan.factor === factor)?.share;
-    return [factor, share === undefined || share === null ? `1:${plain(factor)}` : `1:${plain(factor)}, ${percent(share)}`];
+    const name = factor === 1 ? "none" : `1:${plain(factor)}`;
+    return [factor, share === undefined || share === null ? name : html`<span>${name}</span> <span class="soft">${percent(share)}</span>`];
   });
   const back = () => {
     set("factor", null);
     set("reason", "");
     setOpen(false);
   };
-  return html`<div class="stack">
+  return html`<div class="stack factors">
     <${Choice} label=${forecast ? "Dilution, and its share in range" : "Dilution"} value=${values.factor} options=${options} onChoose=${(factor) => set("factor", factor)} />
     ${picked && html`<${TextField} label="Why this one" value=${values.reason} onInput=${(text) => set("reason", text)} hint="It stays beside the sample: for example what the water looks like." />`}
     <button type="button" class="quiet" onClick=${back}>${forecast ? "Back to the proposed one" : "Choose none"}</button>
@@ -77,7 +78,7 @@ export function Expected({ point, values, set }) {
       <${Another} forecast=${null} values=${values} set=${set} /></section>`;
   }
   return html`<section class="card stack" aria-label="Expectation">
-    <${Number} forecast=${forecast} plan=${plan} />
+    <${Figure} forecast=${forecast} plan=${plan} />
     <${Strip} predictive=${forecast.predictive} bars=${plan ? around(forecast, plan) : []} limit=${limitOf(point)?.value ?? null} />
     ${plan && html`<${Dilution} plan=${plan} forecast=${forecast} chosen=${values.factor !== null} />`}
     ${!plan && html`<p class="above">▲ No dilution at hand fits. ${forecast.why}</p>`}

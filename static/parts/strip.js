@@ -5,7 +5,7 @@ import { html } from "./html.js";
 
 const W = 344;
 const LEFT = 46;
-const RIGHT = 326;
+const RIGHT = 288;
 const BASE = 104;
 const TOP = 22;
 
@@ -39,11 +39,10 @@ function Bar({ bar, index, x }) {
   const y = BASE + 30 + index * 24;
   const [a, b] = [x(bar.low), x(bar.high)];
   const weight = bar.chosen ? 700 : 400;
-  const right = b + 6 + 44 > W ? W : b + 6;
   return html`<g font-size="12.5">
     <text x=${a - 6} y=${y + 11} text-anchor="end" font-weight=${weight}>1:${bar.factor}</text>
     <rect x=${a} y=${y} width=${b - a} height="14" rx="4" fill=${bar.chosen ? "var(--ink)" : "var(--card)"} stroke="var(--ink)" stroke-width="1.4" />
-    <text x=${right} y=${y + 11} text-anchor=${right === W ? "end" : "start"} font-weight=${weight} paint-order="stroke" stroke=${right === W ? "var(--card)" : "none"} stroke-width="5">${percent(bar.share)}</text>
+    ${bar.share !== null && html`<text x=${b + 6} y=${y + 11} font-weight=${weight}>${percent(bar.share)}</text>`}
   </g>`;
 }
 
@@ -69,13 +68,13 @@ export function Strip({ predictive, bars, limit }) {
   return html`<svg class="strip" viewBox="0 0 ${W} ${height}" role="img" aria-label=${describe(predictive, bars, limit)}>
     ${shape.length > 0 && html`<polygon points="${axis.x(10 ** axis.from)},${BASE} ${shape.join(" ")} ${axis.x(10 ** axis.to)},${BASE}" fill="var(--water-on)" />
       <polyline points=${shape.join(" ")} fill="none" stroke="var(--water)" stroke-width="2" />`}
-    <line x1=${LEFT - 10} x2=${RIGHT + 10} y1=${BASE} y2=${BASE} stroke="var(--ink)" stroke-width="1.6" />
+    <line x1=${LEFT - 10} x2=${W - 4} y1=${BASE} y2=${BASE} stroke="var(--ink)" stroke-width="1.6" />
     ${ticks(axis).map((value) => html`<g key=${value} font-size="11.5">
       <line x1=${axis.x(value)} x2=${axis.x(value)} y1=${BASE} y2=${BASE + 5} stroke="var(--ink)" />
       <text x=${axis.x(value)} y=${BASE + 18} text-anchor="middle">${plain(value)}</text></g>`)}
-    <text x=${RIGHT + 10} y=${BASE - 6} text-anchor="end" font-size="11.5">mg/L</text>
+    <text x=${W - 4} y=${BASE - 6} text-anchor="end" font-size="11.5">mg/L</text>
     ${limit > 0 && html`<g><line x1=${mark} x2=${mark} y1=${TOP - 4} y2=${BASE} stroke="var(--stop)" stroke-width="2" stroke-dasharray="5 3" />
-      <text x=${mark > W - 90 ? mark - 5 : mark + 5} y=${TOP + 4} text-anchor=${mark > W - 90 ? "end" : "start"} font-size="12.5" font-weight="700" fill="var(--stop)" paint-order="stroke" stroke="var(--card)" stroke-width="4">limit ${plain(limit)}</text></g>`}
+      <text x=${mark > W - 90 ? mark - 5 : mark + 5} y=${TOP + 4} text-anchor=${mark > W - 90 ? "end" : "start"} font-size="12.5" class="limit" font-weight="700" paint-order="stroke" stroke="var(--card)" stroke-width="4">limit ${plain(limit)}</text></g>`}
     ${bars.map((bar, index) => html`<${Bar} key=${bar.factor} bar=${bar} index=${index} x=${axis.x} />`)}
   </svg>`;
 }
