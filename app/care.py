@@ -1,4 +1,7 @@
-"""The care of a store on the command line: serve it, rebuild its records, verify its chain."""
+"""The care of a store on the command line: serve it, rebuild its records, verify its chain.
+
+What a verb needs is imported when it runs, so that the sums start without it.
+"""
 
 from __future__ import annotations
 
@@ -7,11 +10,12 @@ import logging
 import os
 import sys
 from pathlib import Path
+from typing import TYPE_CHECKING
 
 from app.errors import WeirbookError
-from app.journal import chain
-from app.journal.store import Store
-from app.records.rebuild import rebuild
+
+if TYPE_CHECKING:
+    from app.journal.store import Store
 
 PORT = 8700
 
@@ -40,6 +44,7 @@ def serve(arguments: argparse.Namespace) -> int:
     """Serve until the process is ended."""
     from waitress.server import create_server
 
+    from app.journal import chain
     from app.scenarios import load
     from app.web.factory import create_app
 
@@ -71,6 +76,8 @@ def _fail(error: Exception, about: str) -> int:
 
 
 def _open(folder: Path) -> Store:
+    from app.journal.store import Store
+
     if not (folder / "weirbook.db").exists():
         raise WeirbookError(f"There is no store in {folder}.")
     return Store(folder)
@@ -78,6 +85,8 @@ def _open(folder: Path) -> Store:
 
 def rebuild_records(arguments: argparse.Namespace) -> int:
     """Derive every record again and say whether they came out the same."""
+    from app.records.rebuild import rebuild
+
     try:
         store = _open(arguments.store)
         done = rebuild(store)
@@ -91,6 +100,8 @@ def rebuild_records(arguments: argparse.Namespace) -> int:
 
 def verify_chain(arguments: argparse.Namespace) -> int:
     """Walk the chain; 1 where an entry is bad."""
+    from app.journal import chain
+
     try:
         store = _open(arguments.store)
     except WeirbookError as error:

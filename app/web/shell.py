@@ -18,12 +18,14 @@ blueprint = Blueprint("shell", __name__)
 
 _KINDS = {".js", ".css", ".html", ".json", ".svg", ".png", ".webmanifest"}
 _OUTSIDE = {"sw.js", "index.html"}
+_PICTURES = "pictures"
 
 
 def shell_files(folder: Path = STATIC) -> list[str]:
     """Return the addresses of the client's files, in a fixed order."""
-    found = (p.relative_to(folder).as_posix() for p in sorted(folder.rglob("*")) if p.suffix in _KINDS)
-    return [f"/static/{name}" for name in found if name not in _OUTSIDE]
+    found = (p.relative_to(folder) for p in sorted(folder.rglob("*")) if p.suffix in _KINDS)
+    kept = (p.as_posix() for p in found if p.parts[0] != _PICTURES)
+    return [f"/static/{name}" for name in kept if name not in _OUTSIDE]
 
 
 def build_of(folder: Path = STATIC) -> str:
