@@ -73,10 +73,14 @@ function Moment({ values, set, wrong }) {
   const here = Intl.DateTimeFormat().resolvedOptions().timeZone;
   const moment = values.time ? new Date(values.time) : new Date();
   const elsewhere = zone && zone !== here && !Number.isNaN(moment.getTime());
-  const hint = elsewhere ? `Your device is in ${here}; in the programme's zone it is ${dayAndTime(moment, zone)}.` : values.time ? "" : "Now, when you save.";
+  const hint = elsewhere ? `Your device is in ${here}; in the programme's zone it is ${dayAndTime(moment, zone)}.` : "";
+  if (!values.time && !wrong) {
+    return html`<div class="row spread"><span><strong>Taken now</strong><br /><span class="soft">the moment you save. ${hint}</span></span>
+      <button type="button" onClick=${() => set("time", localInput())}>Another time</button></div>`;
+  }
   return html`<div class="row moment"><${TextField} label="Taken at" type="datetime-local" value=${values.time} hint=${hint} wrong=${wrong}
       onInput=${(text) => set("time", text)} />
-    <button type="button" onClick=${() => set("time", values.time ? "" : localInput())}>${values.time ? "Use now" : "Set the time"}</button></div>`;
+    <button type="button" onClick=${() => set("time", "")}>Use now</button></div>`;
 }
 
 function Kept({ values, set, wrong }) {
@@ -92,10 +96,17 @@ function Kept({ values, set, wrong }) {
 
 function Bottle({ values, set, wrong }) {
   const { code } = readCode(values.bottle);
+  const draw = () => {
+    const drawn = freshCode();
+    set("bottle", drawn);
+    set("drawn", drawn);
+  };
+  const told = code === null ? "The six characters on its label; spaces do not matter."
+    : code === values.drawn ? `Write ${code} on the bottle now, large, with a waterproof pen.` : `Read as ${code}. The check character agrees.`;
   return html`<section class="card stack"><${TextField} label="Bottle" class="code" value=${values.bottle} wrong=${wrong} maxlength="12"
       autocomplete="off" autocapitalize="characters" spellcheck="false" enterkeyhint="next"
-      hint=${code ? `Read as ${code}. The check character agrees.` : "The six characters on its label; spaces do not matter."} onInput=${(text) => set("bottle", text)} />
-    ${!values.bottle && html`<button type="button" class="quiet" onClick=${() => set("bottle", freshCode())}>No printed label: give me a code to write on it</button>`}
+      hint=${told} onInput=${(text) => set("bottle", text)} />
+    ${!values.bottle && html`<button type="button" class="quiet" onClick=${draw}>No printed label: give me a code to write on it</button>`}
   </section>`;
 }
 
@@ -105,7 +116,7 @@ function Form({ point, values, set, forget }) {
   const { save, problem, busy } = useSaving(async () => {
     const found = problemsOf(values);
     set("asked", true);
-    if (Object.keys(found).length) throw new Error("Not saved yet: see what is marked below.");
+    if (Object.keys(found).length) throw new Error("Not saved yet: see what is marked.");
     await state("sample.taken", newId(), bodyOf(point, values, plan, forecast ?? null));
     await forget();
     say("Saved on this tablet");

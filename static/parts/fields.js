@@ -126,6 +126,15 @@ export function useForm(key, initial) {
   return [values, set, () => dropDraft(key)];
 }
 
+/** Bring what is wrong into view, once it is drawn: the first marked field, else the words. */
+function showProblem() {
+  requestAnimationFrame(() => requestAnimationFrame(() => {
+    const found = document.querySelector('main [aria-invalid="true"]') ?? document.querySelector('main [role="alert"]');
+    found?.scrollIntoView({ block: "center" });
+    if (found?.matches("input, select, textarea")) found.focus({ preventScroll: true });
+  }));
+}
+
 /** Run a saving once, however often it is asked for; tells what is wrong in words. */
 export function useSaving(work) {
   const [problem, setProblem] = useState("");
@@ -141,6 +150,7 @@ export function useSaving(work) {
       await work();
     } catch (error) {
       setProblem(error.message || "Not saved. What you typed is still here; save again.");
+      showProblem();
     }
     running.current = false;
     setBusy(false);
