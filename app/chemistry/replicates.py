@@ -237,6 +237,10 @@ def screen(
 ) -> Screening:
     """Screen the tubes of one sample and give their value.
 
+    Agreement is judged in mg/L, where the repeatability is known; Dixon's
+    ratio is taken on the absorbances, which are what scatters normally and are
+    finite also where the curve gives no COD.
+
     Parameters
     ----------
     absorbance : sequence of float

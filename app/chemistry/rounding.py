@@ -35,7 +35,8 @@ def significant(value: float, digits: int, rounding: str = ROUND_HALF_EVEN) -> D
     Parameters
     ----------
     value : float
-        A finite number; its shortest decimal text is what is rounded.
+        A finite number; its shortest decimal text is what is rounded. Minus
+        zero is zero.
     digits : int
         At least one.
     rounding : str
@@ -50,7 +51,7 @@ def significant(value: float, digits: int, rounding: str = ROUND_HALF_EVEN) -> D
     >>> str(significant(2.675, 3)), str(significant(124.5, 3))
     ('2.68', '124')
     """
-    return _context(digits, rounding).create_decimal(repr(float(value)))
+    return _context(digits, rounding).create_decimal(repr(float(value) + 0.0))
 
 
 def plain(value: Decimal) -> str:

@@ -9,7 +9,7 @@ import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 
-from app.chemistry.calibration import Standard, fit
+from app.chemistry.calibration import Standard, fit, fit_points
 from app.chemistry.curve import Curve
 from app.errors import InputError
 from tests.chemistry.bench_run import CURVED, STANDARDS
@@ -181,3 +181,15 @@ def test_numbers_too_far_apart_are_refused_not_overflowed() -> None:
 
 def assert_finite(curve: Curve) -> None:
     assert all(map(math.isfinite, (*curve.coefficients, *curve.standard_errors, curve.residual_sd)))
+
+
+def test_coefficients_that_cannot_be_written_are_refused() -> None:
+    """A parabola over a span of 1e-180 has a second coefficient beyond any number."""
+    x = [i * 1e-180 for i in range(6)]
+    with pytest.raises(InputError, match="too far apart"):
+        fit_points(x, [0.0, 0.1, 0.19, 0.27, 0.34, 0.4], "quadratic")
+
+
+def test_weights_beyond_any_number_are_refused() -> None:
+    with pytest.raises(InputError, match="too far apart"):
+        fit_points(range(6), [0.0, 0.1, 0.2, 0.3, 0.4, 0.5], weight=[1e308] * 6)

@@ -8,7 +8,7 @@ import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 
-from app.chemistry.calibration import fit
+from app.chemistry.calibration import Standard, fit
 from app.chemistry.detection import calibration_limits, detection_limit, minimum_level
 from app.chemistry.detection_study import (
     StudyResult,
@@ -129,3 +129,11 @@ def test_limits_of_a_calibration_need_an_equal_weight_line() -> None:
     found = calibration_limits(fit(STANDARDS), readings=3)
     assert found.decision < found.detection
     assert found.detection == 2 * found.decision
+
+
+def test_a_scattered_calibration_quantifies_nothing() -> None:
+    values = (0.05, 0.12, 0.1, 0.28, 0.2, 0.36)
+    curve = fit([Standard(100.0 * i, (v,)) for i, v in enumerate(values)])
+    with pytest.raises(InputError) as refused:
+        calibration_limits(curve, factor=10.0)
+    assert "scatters" in refused.value.fields["curve"][0]
