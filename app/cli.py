@@ -30,7 +30,7 @@ def _decode(text: str) -> Any:
 
 
 def _encode(value: Any) -> str:
-    return json.dumps(value, ensure_ascii=False, allow_nan=False, separators=(",", ":"))
+    return json.dumps(value, allow_nan=False, separators=(",", ":"))
 
 
 def answer(verb: verbs.Verb, text: str) -> tuple[dict[str, Any], bool]:
