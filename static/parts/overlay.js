@@ -1,15 +1,27 @@
 // This device's own entries laid over the server's records, so that what was stated offline is seen at once.
 // Only what a screen shows is made here; once an entry is in the records, the server's word stands.
 
-import { read } from "./measured.js";
+import { read, valueOf } from "./measured.js";
+import { units } from "./units.js";
 
 const number = (text) => read(text).value ?? null;
 
 /** A writable view of the records: a type's map is copied when it is first changed. */
 class Layer {
-  constructor(base) {
+  constructor(base, table) {
     this.maps = new Map(base);
     this.copied = new Set();
+    this.units = table;
+  }
+
+  /** A measured value as a number in a unit, or null. */
+  value(measured, unit) {
+    return valueOf(measured ?? null, unit, this.units);
+  }
+
+  /** The ids of a parent's records of a type. */
+  under(type, parent) {
+    return [...(this.maps.get(type)?.values() ?? [])].filter((record) => record.parent === parent).map((record) => record.id);
   }
 
   get(type, id) {
@@ -74,16 +86,24 @@ const HOLD_DAYS = 28;
 
 /** What each kind does: (layer, entry, body). */
 const KINDS = new Map(Object.entries({
-  "discharger.registered": (layer, { about }, body) => layer.put("discharger", about, body),
+  "discharger.registered": (layer, { about }, body) => {
+    layer.put("discharger", about, body);
+    const names = { discharger_name: body.name, sector: body.sector };
+    layer.under("point", about).forEach((id) => layer.update("point", id, () => names));
+  },
   "point.registered": (layer, { about }, body) => {
     const discharger = layer.get("discharger", body.discharger);
     const limits = layer.get("point", about)?.limits ?? [];
     const names = { discharger_name: discharger?.name ?? "", sector: discharger?.sector ?? null };
     layer.put("point", about, { ...body, ...names, limits }, { parent: body.discharger });
   },
-  "limit.set": (layer, { about, by }, body) => layer.update("point", about, (point) => ({
-    limits: [...point.limits, { ...body, value: number(body.value.text), unit: "mg/L", set_by: layer.name(by) }],
-  })),
+  "limit.set": (layer, { about, by }, body) => layer.update("point", about, (point) => {
+    const { basis, from, source } = body;
+    const kept = point.limits.filter((limit) => limit.basis !== basis || limit.from !== from);
+    const made = { basis, value: layer.value(body.value, "mg/L"), unit: "mg/L", from, source, set_by: layer.name(by) };
+    const order = (limit) => `${limit.basis} ${limit.from}`;
+    return { limits: [...kept, made].sort((one, other) => (order(one) < order(other) ? -1 : 1)) };
+  }),
   "recipe.adopted": (layer, { about }, body) => {
     const numbers = Object.fromEntries(RECIPE_NUMBERS.map((name) => [name, number(body[name])]));
     layer.put("recipe", about, { ...body, ...numbers, derived: null });
@@ -120,7 +140,7 @@ const KINDS = new Map(Object.entries({
     }
   },
   "gate.confirmed": (layer, { about, at, by }, body) => layer.update("run", about, (run) => ({
-    gates: { ...run.gates, [body.gate]: { by: layer.name(by), at, value: body.value ? number(body.value.text) : null } },
+    gates: { ...run.gates, [body.gate]: { by: layer.name(by), at, value: layer.value(body.value, "Cel") } },
   })),
   "heating.started": (layer, { about }, body) => layer.update("run", about, () => ({
     state: "heating", heating: { ...body, ended_at: null, complete: null, reason: "" },
@@ -155,10 +175,11 @@ const KINDS = new Map(Object.entries({
  * Lay entries over records.
  * @param {Map<string, Map<string, object>>} base the server's records by type and id; left as they are
  * @param {{text: string}[]} rows this device's entries, oldest first
+ * @param {object} table the units
  */
-export function overlay(base, rows) {
+export function overlay(base, rows, table = units()) {
   if (!rows.length) return base;
-  const layer = new Layer(base);
+  const layer = new Layer(base, table);
   for (const row of rows) {
     const entry = JSON.parse(row.text);
     KINDS.get(entry.kind)?.(layer, entry, entry.body);

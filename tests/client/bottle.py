@@ -1,0 +1,121 @@
+"""One bottle's way as a tablet states it: set-up, sample, hand-over, receipt, run to the last reading."""
+
+from __future__ import annotations
+
+import json
+from collections.abc import Iterator
+from itertools import count
+from typing import Any
+
+from app.journal.entry import digest
+from app.safety.gates import GATES
+
+CODE = "2YGD99"
+STANDARDS = [("0", "0.000"), ("100", "0.040"), ("300", "0.121"), ("500", "0.201"), ("700", "0.279"), ("900", "0.361")]
+RECIPE = {
+    "name": "High range",
+    "source": "test",
+    "sample_ml": "2,5",
+    "digestion_solution_ml": "1.5",
+    "acid_reagent_ml": "3.5",
+    "dichromate_g_per_l": "10.216",
+    "mercury_sulfate_g_per_l": "33.3",
+    "silver_sulfate_g_per_l": "10.12",
+    "wavelength_nm": "600",
+    "working_low": "50",
+    "working_high": "900",
+    "temperature_c": "150",
+    "minutes": "120",
+    "order": ["digestion solution", "acid reagent", "sample"],
+}
+DILUTION = {"factor": 5.0, "steps": [{"pipette_ml": 20.0, "flask_ml": 100.0}], "relative_u": 0.002, "reason": ""}
+TUBES = [
+    {"position": 3, "role": "sample", "bottle": CODE, "dilution": DILUTION},
+    {"position": 1, "role": "blank"},
+    {"position": 2, "role": "verification", "expected": "500"},
+]
+
+
+def _setting_up() -> Iterator[tuple[str, str, dict[str, Any]]]:
+    yield "discharger.registered", "d1", {"name": "Hollin Vale Creamery", "sector": "dairy", "address": ""}
+    point = {"name": "Outlet B", "access": "", "hazards": ["traffic"], "sample_kind": "grab", "flow_device": None}
+    yield "point.registered", "p1", {"discharger": "d1", **point}
+    limit = {"basis": "daily_maximum", "from": "2026-01-01", "source": "Permit 12"}
+    yield "limit.set", "p1", {**limit, "value": {"text": "1.4", "unit": "g/L"}}
+    yield "limit.set", "p1", {**limit, "value": {"text": "1500", "unit": "mg/L"}}
+    yield "recipe.adopted", "r1", RECIPE
+    yield "lot.made", "l1", {"recipe": "r1", "name": "A", "made_on": "2026-01-02", "expires_on": "2027-01-02"}
+    yield "instrument.added", "i1", {"name": "Photometer", "what": "photometer"}
+    yield "instrument.added", "i2", {"name": "Block", "what": "block", "positions": 25}
+    yield "container.opened", "c1", {"name": "12", "capacity_ml": "5000"}
+    made = {"recipe": "r1", "lot": "l1", "instrument": "i1", "wavelength_nm": "600", "model": "linear"}
+    standards = [{"cod": cod, "absorbance": [read]} for cod, read in STANDARDS]
+    yield "calibration.made", "k1", {**made, "valid_until": "2027-01-01", "standards": standards}
+
+
+def _sampling() -> Iterator[tuple[str, str, dict[str, Any]]]:
+    sample = {
+        "point": "p1",
+        "bottle": CODE,
+        "sample_kind": "grab",
+        "collected_at": "2026-11-02T10:15:00-06:00",
+        "field": {"conductivity_us_cm": {"text": "1,9", "unit": "mS/cm"}},
+        "activity": "production",
+        "appearance": "milky",
+        "preservation": {"acid": True, "ph": {"text": "< 2", "unit": "pH"}, "cooled": True},
+        "plan": None,
+        "note": "",
+    }
+    yield "sample.taken", "s1", sample
+    yield "custody.handed_over", "h1", {"bottles": [CODE], "to": "Courier", "temperature": None, "note": ""}
+    receipt = {"bottle": CODE, "temperature": {"text": "4", "unit": "Cel"}, "ph": None, "seal": "intact", "note": ""}
+    condition = {"container": "sound", "label_agrees": True, "decision": "accepted", "reasons": []}
+    yield "bottle.received", CODE, receipt | condition
+
+
+def _running() -> Iterator[tuple[str, str, dict[str, Any]]]:
+    plan = {"name": "Run 1", "recipe": "r1", "lot": "l1", "instrument": "i1", "block": "i2", "container": "c1"}
+    yield "run.planned", "u1", {**plan, "calibration": "k1", "tubes": TUBES}
+    for gate in GATES:
+        yield "gate.confirmed", "u1", {"gate": gate.id, "value": {"text": "150", "unit": "Cel"}}
+    started = {"started_at": "2026-11-03T09:00:00-06:00", "minutes": 120}
+    yield "heating.started", "u1", {**started, "temperature": {"text": "150", "unit": "Cel"}}
+    yield "heating.ended", "u1", {"ended_at": "2026-11-03T11:00:00-06:00", "complete": True, "reason": ""}
+    read = {"absorbance": {"text": "0,002", "unit": "AU"}, "colour": "orange"}
+    yield "tube.read", "u1", {"position": 1, **read}
+    yield "tube.read", "u1", {"position": 1, **read, "reason": "smear on the tube"}
+    yield "tube.excluded", "u1", {"position": 2, "cause": "cap leaked", "note": ""}
+
+
+def statements() -> list[tuple[str, str, dict[str, Any]]]:
+    """Return (kind, about, body) of everything, in order."""
+    return [*_setting_up(), *_sampling(), *_running()]
+
+
+def texts(person: str) -> list[str]:
+    """Return the entries' texts as one device makes them, chained and numbered."""
+    made: list[str] = []
+    previous = None
+    numbers = count(1)
+    for kind, about, body in statements():
+        n = next(numbers)
+        entry = {
+            "id": f"0193a000-0000-7000-8000-{n:012d}",
+            "device": "0193a000-0000-7000-8000-0000000000d1",
+            "incarnation": "0193a000-0000-7000-8000-0000000000e1",
+            "n": n,
+            "prev": previous,
+            "kind": kind,
+            "version": 1,
+            "about": about,
+            "at": f"2026-11-03T12:00:{n:02d}-06:00",
+            "zone": "America/Chicago",
+            "skew_ms": 0,
+            "by": person,
+            "base": 0,
+            "body": body,
+            "blobs": [],
+        }
+        made.append(json.dumps(entry, ensure_ascii=False))
+        previous = digest(made[-1].encode())
+    return made
