@@ -3,7 +3,7 @@
 import { begin, getMeta, putMeta } from "./db.js";
 import { ask, keep, NoContact, Refusal } from "./session.js";
 import { sha256 } from "./sha256.js";
-import { outboxChanged, recordsDropped, recordsPulled, subscribe } from "./view.js";
+import { outboxChanged, programme, recordsDropped, recordsPulled, subscribe } from "./view.js";
 
 const PROTOCOL = 1;
 const BATCH = 100;
@@ -16,6 +16,7 @@ const LONGEST_MS = 300_000;
 export const health = { contact: null, problem: "", signIn: false, running: false };
 const watchers = new Set();
 let again = false;
+let compared = false;
 let failures = 0;
 let timer = 0;
 
@@ -43,37 +44,69 @@ async function nextBatch() {
   return batch;
 }
 
-async function acknowledge(answers) {
+/** Change rows of the outbox in one transaction; `change` returns the new row, or null to leave it. */
+async function changeOutbox(change) {
   const tx = await begin("outbox", "readwrite");
-  const byId = new Map(answers.map((answer) => [answer.id, answer]));
   const rows = await tx.store.getAll();
-  for (const row of rows) {
-    const answer = byId.get(row.id);
-    if (!answer || row.state !== "tablet") continue;
-    const held = answer.result === "held" || (answer.result === "duplicate" && answer.code);
-    row.state = held ? "held" : "server";
-    row.position = answer.position;
-    row.told = held ? { code: answer.code, message: answer.message, fields: answer.fields } : null;
-    await tx.store.put(row);
+  for (let i = 0; i < rows.length; i += 1) {
+    const next = change(rows[i]);
+    if (!next) continue;
+    rows[i] = next;
+    await tx.store.put(next);
   }
   await tx.done;
   outboxChanged(rows);
 }
 
+async function acknowledge(answers) {
+  const byId = new Map(answers.map((answer) => [answer.id, answer]));
+  await changeOutbox((row) => {
+    const answer = byId.get(row.id);
+    if (!answer || row.state !== "tablet") return null;
+    const held = answer.result === "held" || (answer.result === "duplicate" && answer.code);
+    const told = held ? { code: answer.code, message: answer.message, fields: answer.fields } : null;
+    return { ...row, state: held ? "held" : "server", position: answer.position, told };
+  });
+}
+
+async function push(state, device, texts) {
+  const answer = await ask("POST", "/api/push", {
+    protocol: PROTOCOL,
+    build: state.build,
+    epoch: state.epoch,
+    device: device.id,
+    incarnation: device.incarnation,
+    entries: texts,
+  });
+  if (!answer.weirbook || answer.digest !== sha256(texts.join(""))) throw new NoContact();
+  return answer;
+}
+
 async function pushAll(state) {
   const device = await getMeta("device");
   for (let batch = await nextBatch(); batch.length; batch = await nextBatch()) {
-    const texts = batch.map((row) => row.text);
-    const answer = await ask("POST", "/api/push", {
-      protocol: PROTOCOL,
-      build: state.build,
-      epoch: state.epoch,
-      device: device.id,
-      incarnation: device.incarnation,
-      entries: texts,
-    });
-    if (!answer.weirbook || answer.digest !== sha256(texts.join(""))) throw new NoContact();
-    await acknowledge(answer.answers);
+    const { answers } = await push(state, device, batch.map((row) => row.text));
+    await acknowledge(answers);
+  }
+}
+
+/** A server restored from a backup lacks what it once took: those entries go out again. */
+async function sendAgainWhatIsMissing(state) {
+  const { expect_n: next } = await push(state, await getMeta("device"), []);
+  await changeOutbox((row) => (
+    row.n >= next && (row.state === "server" || row.state === "held") ? { ...row, state: "tablet", position: null, told: null } : null
+  ));
+}
+
+const OTHER = "It was made for another programme than the one this server runs now. It is kept on this tablet only.";
+
+/** The server is in another state than the one this device knew: read all again, then see what it lacks. */
+async function beginWith(state) {
+  const before = programme()?.id;
+  await pullAll(state.epoch);
+  const now = programme()?.id;
+  if (before && now && before !== now) {
+    await changeOutbox((row) => ({ ...row, state: "other", told: { code: "other_programme", message: OTHER, fields: {} } }));
   }
 }
 
@@ -102,6 +135,7 @@ async function pullAll(epoch) {
   if (cursor && cursor.epoch !== epoch) {
     await beginAnew();
     cursor = null;
+    compared = false;
   }
   let after = cursor?.position ?? 0;
   for (let more = true; more;) {
@@ -119,6 +153,10 @@ async function exchange() {
     tell({ signIn: state.started, contact: new Date().toISOString(), problem: "" });
     return;
   }
+  const cursor = await getMeta("cursor");
+  if (cursor && cursor.epoch !== state.epoch) await beginWith(state);
+  if (!compared) await sendAgainWhatIsMissing(state);
+  compared = true;
   await pushAll(state);
   await pullAll(state.epoch);
   tell({ contact: new Date().toISOString(), problem: "", signIn: false });

@@ -11,7 +11,14 @@ from app.journal.entry import digest
 from app.safety.gates import GATES
 
 CODE = "2YGD99"
-STANDARDS = [("0", "0.000"), ("100", "0.040"), ("300", "0.121"), ("500", "0.201"), ("700", "0.279"), ("900", "0.361")]
+STANDARDS = [
+    ("0", "0.000"),
+    ("100", "0.040"),
+    ("300", "0.121"),
+    ("500", "0.201"),
+    ("700", "0.279"),
+    ("900", "0.361"),
+]
 RECIPE = {
     "name": "High range",
     "source": "test",
@@ -28,7 +35,12 @@ RECIPE = {
     "minutes": "120",
     "order": ["digestion solution", "acid reagent", "sample"],
 }
-DILUTION = {"factor": 5.0, "steps": [{"pipette_ml": 20.0, "flask_ml": 100.0}], "relative_u": 0.002, "reason": ""}
+DILUTION = {
+    "factor": 5.0,
+    "steps": [{"pipette_ml": 20.0, "flask_ml": 100.0}],
+    "relative_u": 0.002,
+    "reason": "",
+}
 TUBES = [
     {"position": 3, "role": "sample", "bottle": CODE, "dilution": DILUTION},
     {"position": 1, "role": "blank"},
@@ -38,7 +50,13 @@ TUBES = [
 
 def _setting_up() -> Iterator[tuple[str, str, dict[str, Any]]]:
     yield "discharger.registered", "d1", {"name": "Hollin Vale Creamery", "sector": "dairy", "address": ""}
-    point = {"name": "Outlet B", "access": "", "hazards": ["traffic"], "sample_kind": "grab", "flow_device": None}
+    point = {
+        "name": "Outlet B",
+        "access": "",
+        "hazards": ["traffic"],
+        "sample_kind": "grab",
+        "flow_device": None,
+    }
     yield "point.registered", "p1", {"discharger": "d1", **point}
     limit = {"basis": "daily_maximum", "from": "2026-01-01", "source": "Permit 12"}
     yield "limit.set", "p1", {**limit, "value": {"text": "1.4", "unit": "g/L"}}
@@ -68,13 +86,26 @@ def _sampling() -> Iterator[tuple[str, str, dict[str, Any]]]:
     }
     yield "sample.taken", "s1", sample
     yield "custody.handed_over", "h1", {"bottles": [CODE], "to": "Courier", "temperature": None, "note": ""}
-    receipt = {"bottle": CODE, "temperature": {"text": "4", "unit": "Cel"}, "ph": None, "seal": "intact", "note": ""}
+    receipt = {
+        "bottle": CODE,
+        "temperature": {"text": "4", "unit": "Cel"},
+        "ph": None,
+        "seal": "intact",
+        "note": "",
+    }
     condition = {"container": "sound", "label_agrees": True, "decision": "accepted", "reasons": []}
     yield "bottle.received", CODE, receipt | condition
 
 
 def _running() -> Iterator[tuple[str, str, dict[str, Any]]]:
-    plan = {"name": "Run 1", "recipe": "r1", "lot": "l1", "instrument": "i1", "block": "i2", "container": "c1"}
+    plan = {
+        "name": "Run 1",
+        "recipe": "r1",
+        "lot": "l1",
+        "instrument": "i1",
+        "block": "i2",
+        "container": "c1",
+    }
     yield "run.planned", "u1", {**plan, "calibration": "k1", "tubes": TUBES}
     for gate in GATES:
         yield "gate.confirmed", "u1", {"gate": gate.id, "value": {"text": "150", "unit": "Cel"}}

@@ -16,7 +16,10 @@ from tests.client import bottle
 SCRIPT = Path(__file__).with_name("overlay.mjs")
 UNITS = json.loads((Path(__file__).parents[2] / "static" / "units.json").read_text(encoding="utf-8"))
 HEADERS = {"X-Weirbook": "1"}
-DEVICE = {"device": "0193a000-0000-7000-8000-0000000000d1", "incarnation": "0193a000-0000-7000-8000-0000000000e1"}
+DEVICE = {
+    "device": "0193a000-0000-7000-8000-0000000000d1",
+    "incarnation": "0193a000-0000-7000-8000-0000000000e1",
+}
 
 # Known on the server alone: its own sums, and the holding time by the rule of the programme's zone.
 ONLY_THE_SERVER = {
@@ -45,7 +48,9 @@ class Place:
         self.client = create_app(folder, fast_passwords=True).test_client()
         programme = {"name": "Valley", "laboratory": "Valley laboratory", "zone": "America/Chicago"}
         person = {"name": "Mara", "sign_in": "mara", "password": "correct horse battery"}
-        answer = self.client.post("/api/start", json={"programme": programme, "person": person}, headers=HEADERS)
+        answer = self.client.post(
+            "/api/start", json={"programme": programme, "person": person}, headers=HEADERS
+        )
         self.state: dict[str, Any] = answer.get_json()
         assert answer.status_code == 200, self.state
 
@@ -84,10 +89,14 @@ def test_the_tablet_shows_what_the_server_will_say(tmp_path: Path) -> None:
     before = place.records()
     texts = bottle.texts(place.state["person"]["id"])
     given = json.dumps({"records": before, "texts": texts, "units": UNITS})
-    run = subprocess.run([node, "--no-warnings", str(SCRIPT)], input=given, capture_output=True, text=True, check=True)
+    run = subprocess.run(
+        [node, "--no-warnings", str(SCRIPT)], input=given, capture_output=True, text=True, check=True
+    )
     shown = json.loads(run.stdout)
     answers = place.push(texts)
-    assert {one["result"] for one in answers} == {"stored"}, [one for one in answers if one["result"] != "stored"]
+    assert {one["result"] for one in answers} == {"stored"}, [
+        one for one in answers if one["result"] != "stored"
+    ]
     assert shown["untouched"], "the overlay changed the server's records"
     here, there = compared(shown["records"]), compared(place.records())
     assert sorted(here) == sorted(there)
