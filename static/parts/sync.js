@@ -93,9 +93,13 @@ async function pushAll(state) {
 /** A server restored from a backup lacks what it once took: those entries go out again. */
 async function sendAgainWhatIsMissing(state) {
   const { expect_n: next } = await push(state, await getMeta("device"), []);
-  await changeOutbox((row) => (
-    row.n >= next && (row.state === "server" || row.state === "held") ? { ...row, state: "tablet", position: null, told: null } : null
-  ));
+  let lost = false;
+  await changeOutbox((row) => {
+    if (row.n < next || (row.state !== "server" && row.state !== "held")) return null;
+    lost = true;
+    return { ...row, state: "tablet", position: null, told: null };
+  });
+  if (lost) await beginAnew();
 }
 
 const OTHER = "It was made for another programme than the one this server runs now. It is kept on this tablet only.";

@@ -13,7 +13,8 @@ _STATE_ALL = """async (made) => {
   const { newId, stateAll } = await import("/static/parts/journal.js");
   const ids = {};
   const about = (name) => (ids[name] ??= name.startsWith("=") ? name.slice(1) : newId());
-  const fill = (value) => JSON.parse(JSON.stringify(value).replace(/"\\$([a-z0-9]+)"/gu, (_, name) => `"${about(name)}"`));
+  const named = /"\\$([a-z0-9]+)"/gu;
+  const fill = (body) => JSON.parse(JSON.stringify(body).replace(named, (_, name) => `"${about(name)}"`));
   await stateAll(made.map(([kind, subject, body]) => ({ kind, about: about(subject), body: fill(body) })));
   return ids;
 }"""
@@ -50,33 +51,13 @@ def state_all(page: Page, made: list[tuple[str, str, dict[str, Any]]]) -> dict[s
 
 def register_point(page: Page) -> str:
     """Register a discharger with one point and its limit; return the point's id."""
-    point = {"name": "Outlet B", "access": "Behind the cold store", "hazards": ["traffic", "gases"]}
-    ids = state_all(
-        page,
-        [
-            (
-                "discharger.registered",
-                "d",
-                {"name": "Hollin Vale Creamery", "sector": "dairy", "address": ""},
-            ),
-            (
-                "point.registered",
-                "p",
-                {"discharger": "$d", **point, "sample_kind": "grab", "flow_device": None},
-            ),
-            (
-                "limit.set",
-                "p",
-                {
-                    "basis": "daily_maximum",
-                    "value": {"text": "1500", "unit": "mg/L"},
-                    "from": "2026-01-01",
-                    "source": "Permit 12",
-                },
-            ),
-        ],
-    )
-    return ids["p"]
+    firm = {"name": "Hollin Vale Creamery", "sector": "dairy", "address": ""}
+    point = {"discharger": "$d", "name": "Outlet B", "access": "Behind the cold store"}
+    point |= {"hazards": ["traffic", "gases"], "sample_kind": "grab", "flow_device": None}
+    limit = {"basis": "daily_maximum", "value": {"text": "1500", "unit": "mg/L"}}
+    limit |= {"from": "2026-01-01", "source": "Permit 12"}
+    made = [("discharger.registered", "d", firm), ("point.registered", "p", point), ("limit.set", "p", limit)]
+    return state_all(page, made)["p"]
 
 
 def outbox(page: Page) -> list[dict[str, Any]]:

@@ -8,7 +8,7 @@ import shutil
 from collections.abc import Callable
 from typing import Any
 
-from playwright.sync_api import BrowserContext, Page, Route, expect
+from playwright.sync_api import BrowserContext, Page, Response, Route, expect
 
 from tests.browser import tablet
 from tests.browser.server import Server
@@ -101,12 +101,16 @@ def test_recording_goes_on_when_the_session_has_ended(
     context.clear_cookies()
     page.goto("/field")
     tablet.take_sample(page, point)
-    expect(
-        page.get_by_text("to send and receive. Recording goes on without it. 1 on this tablet only.")
-    ).to_be_visible()
+    words = "to send and receive. Recording goes on without it. 1 on this tablet only."
+    expect(page.get_by_text(words)).to_be_visible()
     tablet.sign_in(page, server.url)
     tablet.settled(page)
     assert {row["state"] for row in tablet.outbox(page)} == {"server"}
+
+
+def _entries(response: Response) -> int:
+    """Return how many entries a push carried."""
+    return len((response.request.post_data_json or {}).get("entries", []))
 
 
 def test_a_server_restored_from_an_old_copy_gets_what_it_lost(
@@ -131,7 +135,8 @@ def test_a_server_restored_from_an_old_copy_gets_what_it_lost(
     other = context_factory(base_url=server.url).new_page()
     tablet.sign_in(other, server.url)
     expect(other.get_by_text("No discharge points yet")).to_be_visible()
-    page.goto("/field")
+    with page.expect_response(lambda found: "/api/push" in found.url and _entries(found) == 3):
+        page.goto("/field")
     tablet.settled(page)
     other.goto(f"/field/point/{point}")
     expect(other.get_by_role("heading", name="Hollin Vale Creamery")).to_be_visible(timeout=15000)

@@ -11,14 +11,9 @@ from app.journal.entry import digest
 from app.safety.gates import GATES
 
 CODE = "2YGD99"
-STANDARDS = [
-    ("0", "0.000"),
-    ("100", "0.040"),
-    ("300", "0.121"),
-    ("500", "0.201"),
-    ("700", "0.279"),
-    ("900", "0.361"),
-]
+DEVICE = "0193a000-0000-7000-8000-0000000000d1"
+INCARNATION = "0193a000-0000-7000-8000-0000000000e1"
+STANDARDS = {"0": "0.000", "100": "0.040", "300": "0.121", "500": "0.201", "700": "0.279", "900": "0.361"}
 RECIPE = {
     "name": "High range",
     "source": "test",
@@ -35,12 +30,8 @@ RECIPE = {
     "minutes": "120",
     "order": ["digestion solution", "acid reagent", "sample"],
 }
-DILUTION = {
-    "factor": 5.0,
-    "steps": [{"pipette_ml": 20.0, "flask_ml": 100.0}],
-    "relative_u": 0.002,
-    "reason": "",
-}
+STEPS = [{"pipette_ml": 20.0, "flask_ml": 100.0}]
+DILUTION = {"factor": 5.0, "steps": STEPS, "relative_u": 0.002, "reason": ""}
 TUBES = [
     {"position": 3, "role": "sample", "bottle": CODE, "dilution": DILUTION},
     {"position": 1, "role": "blank"},
@@ -67,7 +58,7 @@ def _setting_up() -> Iterator[tuple[str, str, dict[str, Any]]]:
     yield "instrument.added", "i2", {"name": "Block", "what": "block", "positions": 25}
     yield "container.opened", "c1", {"name": "12", "capacity_ml": "5000"}
     made = {"recipe": "r1", "lot": "l1", "instrument": "i1", "wavelength_nm": "600", "model": "linear"}
-    standards = [{"cod": cod, "absorbance": [read]} for cod, read in STANDARDS]
+    standards = [{"cod": cod, "absorbance": [read]} for cod, read in STANDARDS.items()]
     yield "calibration.made", "k1", {**made, "valid_until": "2027-01-01", "standards": standards}
 
 
@@ -132,8 +123,8 @@ def texts(person: str) -> list[str]:
         n = next(numbers)
         entry = {
             "id": f"0193a000-0000-7000-8000-{n:012d}",
-            "device": "0193a000-0000-7000-8000-0000000000d1",
-            "incarnation": "0193a000-0000-7000-8000-0000000000e1",
+            "device": DEVICE,
+            "incarnation": INCARNATION,
             "n": n,
             "prev": previous,
             "kind": kind,

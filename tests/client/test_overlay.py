@@ -16,10 +16,7 @@ from tests.client import bottle
 SCRIPT = Path(__file__).with_name("overlay.mjs")
 UNITS = json.loads((Path(__file__).parents[2] / "static" / "units.json").read_text(encoding="utf-8"))
 HEADERS = {"X-Weirbook": "1"}
-DEVICE = {
-    "device": "0193a000-0000-7000-8000-0000000000d1",
-    "incarnation": "0193a000-0000-7000-8000-0000000000e1",
-}
+DEVICE = {"device": bottle.DEVICE, "incarnation": bottle.INCARNATION}
 
 # Known on the server alone: its own sums, and the holding time by the rule of the programme's zone.
 ONLY_THE_SERVER = {
