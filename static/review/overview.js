@@ -32,7 +32,7 @@ function List({ id }) {
   const latest = new Map(results.map((result) => [result.point, result]));
   const found = points.filter((point) => `${point.discharger_name} ${point.name}`.toLowerCase().includes(words.toLowerCase()));
   return html`<div class="screen stack">
-    <h2>What needs a decision</h2>
+    ${id ? html`<h2>What needs a decision</h2>` : html`<h1>What needs a decision</h1>`}
     ${held.length > 0 && html`<p class="card stop"><a href="/review/held">▲ ${held.length} held ${held.length === 1 ? "entry" : "entries"} to settle</a></p>`}
     ${open.length ? html`<nav class="list" aria-label="Results to decide on">${open.map((result) => html`<${ResultRow} key=${result.id} result=${result} zone=${zone} />`)}</nav>`
       : html`<${Empty} title="No result waits">Results appear here when a run is calculated.<//>`}
@@ -49,6 +49,6 @@ export function Overview({ id, detail }) {
   const settings = useView(programme);
   return html`<${Frame} place="review" title=${id ? "Point" : "What needs a decision"} about=${settings?.name} wide>
     <${Sides} front=${id ? "detail" : "list"} list=${html`<${List} id=${id} />`}
-      detail=${detail ?? html`<div class="screen"><h1>Review</h1><${Empty} title="Choose a result or a point">Its number, its limit and its history appear here.<//></div>`} />
+      detail=${detail ?? html`<div class="screen"><${Empty} title="Choose a result or a point">Its number, its limit and its history appear here.<//></div>`} />
   <//>`;
 }
