@@ -1,6 +1,6 @@
 // The client begins here: the device's records are read, the screen is drawn from them, then the exchange starts.
 
-import { html, render, useEffect, useState } from "./parts/html.js";
+import { html, render, useEffect, useRef, useState } from "./parts/html.js";
 import { getMeta } from "./parts/db.js";
 import { askState } from "./parts/session.js";
 import { startSync } from "./parts/sync.js";
@@ -48,6 +48,11 @@ function App() {
       removeEventListener("weirbook-moved", moved);
     };
   }, []);
+  const first = useRef(true);
+  useEffect(() => {
+    if (!first.current) document.getElementById("main")?.focus({ preventScroll: true });
+    first.current = false;
+  }, [path]);
   return screenOf(path);
 }
 
@@ -57,6 +62,7 @@ function followLinks() {
     const modified = event.metaKey || event.ctrlKey || event.shiftKey || event.button !== 0;
     if (!link || modified || link.target || link.hasAttribute("download")) return;
     const url = new URL(link.href);
+    if (url.hash && url.pathname === location.pathname) return;
     if (url.origin !== location.origin || /^\/(api|verify|static)\//u.test(url.pathname)) return;
     event.preventDefault();
     go(url.pathname);
@@ -103,6 +109,7 @@ async function begin() {
   }
   draw(html`<${App} />`);
   await registerWorker().catch(() => {});
+  await navigator.storage?.persist?.().catch(() => false);
   await startSync();
 }
 

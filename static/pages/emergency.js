@@ -7,7 +7,7 @@ import { useWords } from "../parts/words.js";
 export function Emergency() {
   const words = useWords();
   useEffect(() => { document.title = "Emergency · Weirbook"; }, []);
-  return html`<main class="page stack" id="main">
+  return html`<main class="page stack" id="main" tabindex="-1">
     <h1>Emergency and first aid</h1>
     ${words ? words.emergency.map((part) => html`<section class="card stop" key=${part.id}><h2>${part.title}</h2>
       <ul>${part.lines.map((line) => html`<li key=${line}>${line}</li>`)}</ul></section>`)

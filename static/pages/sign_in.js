@@ -10,6 +10,7 @@ import { sync } from "../parts/sync.js";
 export function SignIn() {
   const [v, setV] = useState({ sign_in: "", password: "" });
   const [server, setServer] = useState(undefined);
+  useEffect(() => { document.title = "Sign in · Weirbook"; }, []);
   useEffect(() => { askState().then(setServer, () => setServer(null)); }, []);
   const enter = async (state) => {
     await keep(state);
@@ -18,7 +19,7 @@ export function SignIn() {
   };
   const { save, problem, busy } = useSaving(async () => enter(await ask("POST", "/api/session", v)));
   const visit = useSaving(async () => enter(await ask("POST", "/api/example", {})));
-  return html`<main class="page stack">
+  return html`<main class="page stack" id="main" tabindex="-1">
     <h1>Sign in</h1>
     ${server === null && html`<p class="card wait">The server cannot be reached from here. Sign in when it can; what was recorded on this tablet is kept.</p>`}
     ${server && !server.started && html`<p class="card">No programme runs on this server yet. <a href="/start">Start one</a>.</p>`}

@@ -1,6 +1,6 @@
 // The first page: one's own programme, or the invented one.
 
-import { html, useState } from "../parts/html.js";
+import { html, useEffect, useState } from "../parts/html.js";
 import { TextField, useSaving } from "../parts/fields.js";
 import { Mark, Problem, go } from "../parts/frame.js";
 import { ask, keep } from "../parts/session.js";
@@ -52,9 +52,10 @@ function Own({ back }) {
 /** The first page. */
 export function Start() {
   const [own, setOwn] = useState(false);
+  useEffect(() => { document.title = own ? "Start a programme · Weirbook" : "Weirbook"; }, [own]);
   const { save, problem, busy } = useSaving(async () => enter(await ask("POST", "/api/example", {})));
-  if (own) return html`<main class="page"><${Own} back=${() => setOwn(false)} /></main>`;
-  return html`<main class="page stack">
+  if (own) return html`<main class="page" id="main" tabindex="-1"><${Own} back=${() => setOwn(false)} /></main>`;
+  return html`<main class="page stack" id="main" tabindex="-1">
     <${Mark} /><h1>Weirbook</h1>
     <p>One bottle, from the discharge point to the signed certificate: logged without a network, diluted right the first time,
       digested, read, calculated with an honest uncertainty, held against the limit and certified.</p>

@@ -35,20 +35,22 @@ function useHealth() {
   return health;
 }
 
+const HOUR_MS = 3_600_000;
+
 /** What waits on this tablet and when the server was last heard. */
 export function Banner() {
   const { count, oldest, held } = useView(waiting);
-  const { contact, problem, signIn } = useHealth();
+  const { contact, problem, refused, signIn } = useHealth();
   const said = contact ? `Last contact ${clock(contact)}.` : "No contact with the server yet.";
   if (signIn) {
     return html`<div class="banner stop" role="status"><a href="/sign-in">Sign in</a> to send and receive. Recording goes on
       without it.${count > 0 && ` ${count} on this tablet only.`}</div>`;
   }
   if (!count && !held && !problem) return html`<div role="status" class="unseen">Everything is on the server.</div>`;
-  return html`<div class="banner ${held ? "stop" : ""}" role="status">
-    ${count > 0 && html`<strong>${count} ${count === 1 ? "entry" : "entries"} on this tablet only</strong>${oldest && `, the oldest from ${ago(oldest)}`}. `}
+  return html`<div class="banner ${held || refused ? "stop" : ""}" role="status">
+    ${count > 0 && html`<strong>${count} ${count === 1 ? "entry" : "entries"} on this tablet only</strong>${oldest && Date.now() - new Date(oldest) > HOUR_MS && `, the oldest from ${ago(oldest)}`}. `}
     ${held > 0 && html`<strong><a href="/waiting">${held} ${held === 1 ? "entry needs" : "entries need"} attention.</a></strong> `}
-    ${problem && count === 0 && html`<span>Working from what is on this tablet. </span>`}${said} </div>`;
+    ${refused && html`<strong>${refused}</strong> `}${problem && !refused && count === 0 && html`<span>Working from what is on this tablet. </span>`}${said} </div>`;
 }
 
 const LATE_MS = 6000;
@@ -85,10 +87,11 @@ export function Frame({ place, title, about, wide = false, children }) {
   const words = PLACES.find(([key]) => key === place)?.[1] ?? "Weirbook";
   useEffect(() => { document.title = `${title} · ${words} · Weirbook`; }, [title, words]);
   return html`<div class="frame">
+    <a class="skip" href="#main">To the content</a>
     <header class="bar"><${Mark} /><span class="place">${words}</span><span class="about">${about ?? ""}</span>
       <a class="gear" href="/settings" aria-label="Settings">☰</a></header>
     <${Banner} /><${Update} />
-    ${wide ? children : html`<main class="screen" id="main"><h1>${title}</h1>${children}</main>`}
+    ${wide ? children : html`<main class="screen" id="main" tabindex="-1"><h1>${title}</h1>${children}</main>`}
     <nav class="places" aria-label="Places">${PLACES.map(([key, name]) => html`<a key=${key} href="/${key}" aria-current=${key === place ? "page" : undefined}>${name}</a>`)}</nav>
     <${Toast} />
   </div>`;
@@ -99,7 +102,7 @@ export function Frame({ place, title, about, wide = false, children }) {
  * @param {{front: "list"|"detail", list: object, detail: object, kind?: string, listName?: string}} props
  */
 export function Sides({ front, list, detail, kind = "", listName = "List" }) {
-  const main = (vnode, name) => html`<main class="side front ${name}" id="main">${vnode}</main>`;
+  const main = (vnode, name) => html`<main class="side front ${name}" id="main" tabindex="-1">${vnode}</main>`;
   const beside = (vnode, name) => html`<aside class="side ${name}" aria-label=${listName}>${vnode}</aside>`;
   return html`<div class="sides ${kind}">
     ${front === "list" ? main(list, "of-list") : beside(list, "of-list")}

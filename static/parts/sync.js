@@ -13,7 +13,7 @@ const CALM_MS = 20_000;
 const LONGEST_MS = 300_000;
 
 /** How the last exchange went: shown as words, never guessed from navigator.onLine. */
-export const health = { contact: null, problem: "", signIn: false, running: false };
+export const health = { contact: null, problem: "", refused: "", signIn: false, running: false };
 const watchers = new Set();
 let again = false;
 let compared = false;
@@ -163,7 +163,7 @@ async function exchange() {
   compared = true;
   await pushAll(state);
   await pullAll(state.epoch);
-  tell({ contact: new Date().toISOString(), problem: "", signIn: false });
+  tell({ contact: new Date().toISOString(), problem: "", refused: "", signIn: false });
 }
 
 async function attempt() {
@@ -173,7 +173,8 @@ async function attempt() {
   } catch (error) {
     failures += 1;
     const known = error instanceof Refusal || error instanceof NoContact;
-    tell({ problem: known ? error.message : `The exchange failed (${error.name}). Nothing is lost.` });
+    const refused = error instanceof Refusal && error.status !== 401 ? error.message : "";
+    tell({ problem: known ? error.message : `The exchange failed (${error.name}). Nothing is lost.`, refused });
     if (error instanceof Refusal && error.status === 401) tell({ signIn: true });
   }
 }
