@@ -8,7 +8,7 @@ import { shown } from "../parts/units.js";
 import { all, one, programme, useView } from "../parts/view.js";
 import { useWords } from "../parts/words.js";
 import { Expected } from "./expected.js";
-import { ACTIVITIES, BLANK, draftKey, hazardOf, limitOf, READINGS } from "./point.js";
+import { ACTIVITIES, BLANK, cardOf, draftKey, hazardOf, limitOf, READINGS } from "./point.js";
 
 function Hazards({ point }) {
   const words = useWords();
@@ -84,7 +84,7 @@ export function Card({ id }) {
     <div class="cols"><${Expected} point=${point} values=${values} set=${set} /><${Readings} values=${values} set=${set} /></div>
     ${point.sample_kind === "composite" && html`<p class="card wait"><strong>This point asks for a composite.</strong> Only grab samples are recorded here for now; a sampler's bottle is kept by its own form.</p>`}
     <section class="card stack"><h2>Limits and past</h2><${Limits} point=${point} /><${Past} point=${point} /></section>
-    <div class="sticky"><button type="button" class="main" onClick=${() => go(`/field/point/${id}/take`)}>Take the sample</button>
+    <div class="sticky"><button type="button" class="main" onClick=${() => go(`${cardOf(id)}/take`)}>Take the sample</button>
       ${last && html`<p class="soft small after">Last sample ${ago(last.recorded_at ?? last.collected_at)}, ${dayAndTime(last.collected_at, programme()?.zone)}</p>`}</div>
   </div>`;
 }

@@ -10,16 +10,22 @@ import { useForecast } from "./forecast.js";
 import { stepWords, stepsOf } from "./glassware.js";
 import { limitOf } from "./point.js";
 
+/** The plans of the proposed recipe, or of the first one when none is proposed. */
+function plansOf(forecast) {
+  const recipe = forecast?.choice?.recipe ?? forecast?.plans[0]?.recipe;
+  return (forecast?.plans ?? []).filter((plan) => plan.recipe === recipe);
+}
+
 /** The plan that counts: what the person chose, or else what the forecast chose. */
 export function planOf(forecast, values) {
   if (values.factor === null) return forecast?.choice ?? null;
-  const known = forecast?.plans.find((plan) => plan.factor === values.factor && (!values.recipe || plan.recipe === values.recipe));
-  return known ?? { recipe: values.recipe, factor: values.factor, steps: stepsOf(values.factor) ?? [], share: null };
+  const known = plansOf(forecast).find((plan) => plan.factor === values.factor);
+  return known ?? { recipe: null, factor: values.factor, steps: stepsOf(values.factor) ?? [], share: null };
 }
 
 /** The chosen plan between its neighbours: three bars tell why this one. */
 function around(forecast, plan) {
-  const same = forecast.plans.filter((one) => one.recipe === plan.recipe).sort((a, b) => a.factor - b.factor);
+  const same = plansOf(forecast).sort((a, b) => a.factor - b.factor);
   const at = Math.max(0, same.findIndex((one) => one.factor === plan.factor));
   const first = Math.min(Math.max(0, at - 1), Math.max(0, same.length - 3));
   return same.slice(first, first + 3).map((one) => ({ ...one, chosen: one.factor === plan.factor }));
@@ -37,9 +43,10 @@ function Figure({ forecast, plan }) {
 
 function Dilution({ plan, forecast, chosen }) {
   const steps = plan.steps.length ? `${stepWords(plan.steps)}. ` : "";
+  const range = forecast?.severalRanges && plan.name ? ` Recipe: ${plan.name}.` : "";
   const chance = plan.share === null ? "" : `${percent(plan.share)} in range. `;
   return html`<p class="dilute"><strong>${plan.factor === 1 ? "Do not dilute." : `Dilute 1:${plain(plan.factor)}.`}</strong> ${" "}
-    ${chosen ? html`Your choice. ${chance}` : `${forecast.why} `}<span class="soft">${steps}</span></p>`;
+    ${chosen ? html`Your choice. ${chance}` : `${forecast.why} `}<span class="soft">${steps}${range}</span></p>`;
 }
 
 function Another({ forecast, values, set }) {
@@ -50,7 +57,7 @@ function Another({ forecast, values, set }) {
   }
   const factors = forecast?.factors ?? programme()?.settings.dilutions ?? [1];
   const options = factors.map((factor) => {
-    const share = forecast?.plans.find((plan) => plan.factor === factor)?.share;
+    const share = plansOf(forecast).find((plan) => plan.factor === factor)?.share;
     const name = factor === 1 ? "none" : `1:${plain(factor)}`;
     return [factor, share === undefined || share === null ? name : html`<span>${name}</span> <span class="soft">${percent(share)}</span>`];
   });

@@ -83,14 +83,14 @@ export function ask(twin, { outlook, recipes, settings, limit, values, now }) {
     predictive, median: predictive.quantile(0.5), low: predictive.quantile(0.05), high: predictive.quantile(0.95),
     plans: planned.plans.map((plan) => planFrom(plan, recipes)), factors: dilutions,
     choice: planned.choice && planFrom(planned.choice, recipes), why: recipes.length ? planned.why : "",
-    notes: notesOf(predictive, outlook, recipes), shifted: Object.keys(field).length > 0 || values.activity !== null,
+    severalRanges: recipes.length > 1, notes: notesOf(predictive, outlook, recipes), shifted: Object.keys(field).length > 0 || values.activity !== null,
   };
 }
 
 /**
  * What to expect at a point with what was read there.
  * @returns {undefined | null | {predictive: object, median: number, low: number, high: number, plans: object[],
- *   choice: object|null, factors: number[], why: string, notes: string[], shifted: boolean}}
+ *   choice: object|null, factors: number[], why: string, notes: string[], severalRanges: boolean, shifted: boolean}}
  */
 export function useForecast(point, values) {
   const twin = useTwin();

@@ -6,7 +6,7 @@ import { programme } from "../parts/view.js";
 /** The readings a meter can give at a point: [key, label, units, the body's name]. */
 export const READINGS = [
   ["conductivity", "Conductivity", ["uS/cm", "mS/cm"], "conductivity_us_cm"],
-  ["turbidity", "Turbidity", ["NTU"], "turbidity_ntu"],
+  ["turbidity", "Turbidity", ["NTU", "FNU"], "turbidity_ntu"],
   ["ph", "pH", ["pH"], "ph"],
   ["temperature", "Temperature of the water", ["Cel", "degF"], "temperature_c"],
 ];
@@ -17,11 +17,14 @@ export const ACTIVITIES = [["production", "Production"], ["cleaning", "Cleaning"
 export const BLANK = {
   bottle: "", time: "", conductivity: "", conductivity_unit: "uS/cm", turbidity: "", turbidity_unit: "NTU", ph: "",
   ph_unit: "pH", temperature: "", temperature_unit: "Cel", activity: null, appearance: "", acid: false, acid_ph: "",
-  cooled: false, note: "", factor: null, recipe: null, reason: "",
+  cooled: false, note: "", factor: null, reason: "",
 };
 
 /** The key of a point's draft. */
 export const draftKey = (point) => `sample:${point}`;
+
+/** The address of a point's card. */
+export const cardOf = (id) => `/field/point/${encodeURIComponent(id)}`;
 
 /** A point's whole name, the firm first. */
 export const nameOf = (point) => `${point.discharger_name}, ${point.name}`;

@@ -5,7 +5,7 @@ import { useName } from "../parts/fields.js";
 import { ago, reported } from "../parts/format.js";
 import { Empty } from "../parts/frame.js";
 import { all, one, programme, useView } from "../parts/view.js";
-import { matches } from "./point.js";
+import { cardOf, matches } from "./point.js";
 
 function Last({ point }) {
   const outlook = one("outlook", point.id);
@@ -15,7 +15,7 @@ function Last({ point }) {
 }
 
 function Row({ point, here }) {
-  return html`<li><a href="/field/point/${point.id}" aria-current=${here ? "true" : undefined}>
+  return html`<li><a href=${cardOf(point.id)} aria-current=${here ? "true" : undefined}>
     <strong>${point.discharger_name}</strong>
     <span class="under"><span>${point.name}</span><${Last} point=${point} /></span>
   </a></li>`;

@@ -5,7 +5,7 @@ import { dayAndTime, left } from "../parts/format.js";
 import { Empty, Where } from "../parts/frame.js";
 import { whoIsHere } from "../parts/session.js";
 import { all, one, programme, useView } from "../parts/view.js";
-import { nameOf } from "./point.js";
+import { cardOf, nameOf } from "./point.js";
 
 /** Who is here, or null while that is looked up. */
 export function usePerson() {
@@ -28,7 +28,7 @@ function Row({ sample }) {
   const zone = programme()?.zone;
   return html`<li class="item">
     <div class="row spread"><strong class="code">${sample.bottle}</strong><${Where} about=${sample.id} /></div>
-    <div>${point ? html`<a class="inline" href="/field/point/${sample.point}">${nameOf(point)}</a>` : "a point that is not on this tablet"}</div>
+    <div>${point ? html`<a class="inline" href=${cardOf(sample.point)}>${nameOf(point)}</a>` : "a point that is not on this tablet"}</div>
     <div class="under"><span>${dayAndTime(sample.collected_at, zone)}, ${sample.state}${sample.holder ? ` (${sample.holder})` : ""}</span><${Hold} sample=${sample} /></div>
     ${sample.plan && html`<div class="under"><span>to be diluted 1:${sample.plan.dilution_factor}${sample.plan.chosen_by === "person" ? `, chosen by ${sample.by_name || "a person"}` : ""}</span></div>`}
   </li>`;

@@ -10,7 +10,7 @@ import { one, programme, useView } from "../parts/view.js";
 import { freshCode } from "./codes.js";
 import { planOf } from "./expected.js";
 import { useForecast } from "./forecast.js";
-import { ACTIVITIES, BLANK, draftKey, nameOf, READINGS } from "./point.js";
+import { ACTIVITIES, BLANK, cardOf, draftKey, nameOf, READINGS } from "./point.js";
 
 const EARLY_MS = 5 * 60000;
 
@@ -90,7 +90,7 @@ function Kept({ values, set, wrong }) {
     ${values.acid && html`<div class="stack"><p class="card wait"><strong>▲ Acid.</strong> Goggles and gloves; acid slowly into the sample,
       bottle held away from you; water at hand. The safety data sheet and your local rules decide.</p>
       <${NumberField} label="pH after acid" value=${values.acid_ph} unit="pH" wrong=${wrong} onInput=${(text) => set("acid_ph", text)} hint="For example < 2 from a strip. Leave it empty if not measured." /></div>`}
-    <p class="soft small">For COD: at most 6 °C, and sulfuric acid to below pH 2, hold 28 days (40 CFR 136.3, Table II).</p>
+    <p class="soft small">For COD: at most 6 °C and sulfuric acid to below pH 2 within 15 minutes of taking it; then 28 days (40 CFR 136.3, Table II).</p>
   </section>`;
 }
 
@@ -117,9 +117,10 @@ function Form({ point, values, set, forget }) {
     const found = problemsOf(values);
     set("asked", true);
     if (Object.keys(found).length) throw new Error("Not saved yet: see what is marked.");
+    const { code } = readCode(values.bottle);
     await state("sample.taken", newId(), bodyOf(point, values, plan, forecast ?? null));
     await forget();
-    say("Saved on this tablet");
+    say(`Saved on this tablet: ${code}`);
     go("/field/samples");
   });
   const wrong = values.asked ? problemsOf(values) : {};
@@ -134,8 +135,8 @@ function Form({ point, values, set, forget }) {
     </section>
     <${Kept} values=${values} set=${set} wrong=${wrong.acid_ph} />
     <section class="card"><h2>Dilution at the bench</h2>${plan
-      ? html`<p><strong>${plan.factor === 1 ? "Undiluted" : `1:${plain(plan.factor)}`}</strong>, ${values.factor === null ? "as proposed" : "your choice"}. <a href="/field/point/${point.id}">See why or change it</a></p>`
-      : html`<p class="soft">Open: it is settled at the bench. <a href="/field/point/${point.id}">Choose one</a></p>`}
+      ? html`<p><strong>${plan.factor === 1 ? "Undiluted" : `1:${plain(plan.factor)}`}</strong>, ${values.factor === null ? "as proposed" : "your choice"}. <a href=${cardOf(point.id)}>See why or change it</a></p>`
+      : html`<p class="soft">Open: it is settled at the bench. <a href=${cardOf(point.id)}>Choose one</a></p>`}
       ${values.factor !== null && html`<${TextField} label="Why this one" value=${values.reason} wrong=${wrong.reason} onInput=${(text) => set("reason", text)} />`}</section>
     <${LongField} label="Note" value=${values.note} onInput=${(text) => set("note", text)} />
     <${Problem} words=${problem} />
@@ -149,7 +150,7 @@ export function Take({ id }) {
   const [values, set, forget] = useForm(draftKey(id), BLANK);
   if (!point) return html`<div class="screen"><h1>Take a sample</h1><${Empty} title="This point is not on this tablet"><a href="/field">All points</a><//></div>`;
   if (!values) return null;
-  return html`<div class="screen stack"><p class="back"><a href="/field/point/${id}">Back to the point</a></p>
+  return html`<div class="screen stack"><p class="back"><a href=${cardOf(id)}>Back to the point</a></p>
     <header><h1>Take a sample</h1><p class="soft">${nameOf(point)}</p></header>
     <${Form} ...${{ point, values, set, forget }} /></div>`;
 }
