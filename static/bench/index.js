@@ -1,12 +1,23 @@
-// The Bench: its screens by path.
+// The Bench place: what waits, receipt, the run from the rack to its end, the stores.
 
-import { Empty, Frame } from "../parts/frame.js";
 import { html } from "../parts/html.js";
+import { Home } from "./home.js";
+import { Plan } from "./plan.js";
+import { Receive } from "./receive.js";
+import { Run } from "./run.js";
+import { AddCalibration } from "./calibration.js";
+import { AddThing, Stores } from "./stores.js";
 
 /**
  * The screen of a path below /bench.
- * @param {string[]} _rest the path's parts after the place
+ * @param {string[]} rest the path's parts after the place
  */
-export function bench(_rest) {
-  return html`<${Frame} place="bench" title="Bench"><${Empty} title="Nothing here yet">This place has no screens in this build.<//><//>`;
+export function bench([what, id]) {
+  if (what === "receive") return html`<${Receive} given=${id} />`;
+  if (what === "plan") return html`<${Plan} />`;
+  if (what === "run") return html`<${Run} key=${id} id=${id} />`;
+  if (what === "stores" && id === "calibration") return html`<${AddCalibration} />`;
+  if (what === "stores" && id) return html`<${AddThing} key=${id} what=${id} />`;
+  if (what === "stores") return html`<${Stores} />`;
+  return html`<${Home} />`;
 }

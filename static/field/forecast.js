@@ -1,6 +1,7 @@
 // The forecast's twin on this device, asked in the Field's words. Until it is loaded: undefined; without an outlook: null.
 
 import { useEffect, useState } from "../parts/html.js";
+import { percent } from "../parts/format.js";
 import { read, valueOf } from "../parts/measured.js";
 import { units } from "../parts/units.js";
 import { all, one, programme, useView } from "../parts/view.js";
@@ -71,6 +72,13 @@ function notesOf(predictive, outlook, recipes) {
   return notes;
 }
 
+/** Why the choice, with shares that never say 0 or 100 when they are neither. */
+function whyOf({ choice, why }) {
+  if (!choice) return why;
+  const { p_in_range: inside, p_over: over, p_below: below } = choice;
+  return `${percent(inside)} of samples like this fall in range; ${percent(over)} would go over, ${percent(below)} under.`;
+}
+
 /** Ask the twin; the answer in the Field's words. */
 export function ask(twin, { outlook, recipes, settings, limit, values, now }) {
   const field = fieldOf(values);
@@ -82,7 +90,7 @@ export function ask(twin, { outlook, recipes, settings, limit, values, now }) {
   return {
     predictive, median: predictive.quantile(0.5), low: predictive.quantile(0.05), high: predictive.quantile(0.95),
     plans: planned.plans.map((plan) => planFrom(plan, recipes)), factors: dilutions,
-    choice: planned.choice && planFrom(planned.choice, recipes), why: recipes.length ? planned.why : "",
+    choice: planned.choice && planFrom(planned.choice, recipes), why: recipes.length ? whyOf(planned) : "",
     severalRanges: recipes.length > 1, notes: notesOf(predictive, outlook, recipes), shifted: Object.keys(field).length > 0 || values.activity !== null,
   };
 }

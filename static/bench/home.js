@@ -1,0 +1,60 @@
+// What waits at the bench: runs first, then bottles by the time they have left.
+
+import { html } from "../parts/html.js";
+import { clock, left } from "../parts/format.js";
+import { Empty, Frame, Where } from "../parts/frame.js";
+import { all, one, programme, useView } from "../parts/view.js";
+import { heatedAt, span, useNow } from "./timer.js";
+
+const OPEN = new Set(["planned", "heating", "cooling", "reading", "calculated"]);
+
+/** What a run waits for, in words. */
+export function runWords(run, now, zone) {
+  if (run.state === "heating") {
+    const rest = heatedAt(run) - now;
+    return rest > 0 ? `heating, ${span(rest)} left, until ${clock(heatedAt(run), zone)}` : "heating is over: take the tubes out";
+  }
+  return { planned: "planned, gates are open", cooling: "cooling", reading: "readings", calculated: "results: decide and close", closed: "closed", failed: "failed" }[run.state];
+}
+
+function RunRow({ run, zone }) {
+  const now = useNow();
+  return html`<a href="/bench/run/${encodeURIComponent(run.id)}"><strong>${run.name}</strong>
+    <span class="under"><span>${runWords(run, now, zone)}</span>${run.local ? html`<${Where} about=${run.id} />` : ""}</span></a>`;
+}
+
+/** Bottles that the laboratory has and that are in no run yet. */
+export function waitingBottles() {
+  return all("bottle")
+    .filter((bottle) => ["handed over", "received", "taken"].includes(bottle.state))
+    .map((bottle) => ({ ...bottle, sampled: bottle.sample ? one("sample", bottle.sample) : null, place: bottle.point ? one("point", bottle.point) : null }))
+    .sort((a, b) => ((a.sampled?.hold_until ?? "") < (b.sampled?.hold_until ?? "") ? -1 : 1));
+}
+
+function BottleRow({ bottle }) {
+  const to = bottle.state === "received" ? "/bench/plan" : `/bench/receive/${bottle.code}`;
+  return html`<a href=${to}><strong>${bottle.code}</strong>
+    <span class="under"><span>${bottle.place ? `${bottle.place.discharger_name}, ${bottle.place.name}` : "its sample has not arrived yet"}</span><span>${bottle.state}</span></span>
+    ${bottle.sampled && html`<span class="under"><span>${bottle.sampled.plan ? `to be diluted 1:${bottle.sampled.plan.dilution_factor}` : "dilution open"}</span><span>analysis to start: ${left(bottle.sampled.hold_until)}</span></span>`}</a>`;
+}
+
+/** The first screen of the Bench. */
+export function Home() {
+  const settings = useView(programme);
+  const runs = useView(() => all("run")).reverse();
+  const bottles = useView(waitingBottles);
+  const open = runs.filter((run) => OPEN.has(run.state));
+  const done = runs.filter((run) => !OPEN.has(run.state)).slice(0, 6);
+  return html`<${Frame} place="bench" title="What waits" about=${settings?.laboratory}>
+    <div class="stack">
+      <div class="row"><a class="button" href="/bench/receive">Receive a bottle</a><a class="button" href="/bench/plan">Plan a run</a><a class="button" href="/bench/stores">Stores</a></div>
+      <h2>Runs</h2>
+      ${open.length ? html`<nav class="list" aria-label="Open runs">${open.map((run) => html`<${RunRow} key=${run.id} run=${run} zone=${settings?.zone} />`)}</nav>`
+        : html`<${Empty} title="No run is open">Plan one when bottles were received.<//>`}
+      <h2>Bottles</h2>
+      ${bottles.length ? html`<nav class="list" aria-label="Bottles that wait">${bottles.map((bottle) => html`<${BottleRow} key=${bottle.code} bottle=${bottle} />`)}</nav>`
+        : html`<${Empty} title="No bottle waits">Bottles appear when they were taken or handed over; any bottle with a code can be received.<//>`}
+      ${done.length > 0 && html`<h2>Finished</h2><nav class="list" aria-label="Finished runs">${done.map((run) => html`<${RunRow} key=${run.id} run=${run} zone=${settings?.zone} />`)}</nav>`}
+      <p><a href="/emergency">Emergency and first aid</a></p>
+    </div><//>`;
+}

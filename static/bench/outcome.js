@@ -1,0 +1,93 @@
+// What the run gave: each sample in a big number, checks in words, what to decide, the waste, the end.
+
+import { html } from "../parts/html.js";
+import { Choice, TextField, useForm, useSaving } from "../parts/fields.js";
+import { plain, reported } from "../parts/format.js";
+import { Problem, say } from "../parts/frame.js";
+import { state } from "../parts/journal.js";
+import { all, one } from "../parts/view.js";
+import { stepWords, stepsOf } from "../field/glassware.js";
+
+const TOLD = new Map([
+  ["ok", (s) => (s.excluded.length ? `${s.used.length} tubes agree, ${s.excluded.length} left out.` : `${s.used.length} ${s.used.length === 1 ? "tube" : "tubes agree"}.`)],
+  ["over", () => "The oxidant is spent or nearly so: no number can be given. Keep the caps on."],
+  ["below", () => "Below the working range at this dilution."],
+  ["disagree", () => "The tubes disagree: the value is provisional. Repeat this sample."],
+]);
+
+function Advice({ advice }) {
+  if (!advice) return null;
+  const steps = advice.dilution_factor ? stepsOf(advice.dilution_factor) : null;
+  const words = advice.dilution_factor ? `Repeat at 1:${plain(advice.dilution_factor)}.` : "Repeat it.";
+  return html`<p><strong>${words}</strong> ${advice.why} ${steps?.length ? `${stepWords(steps)}.` : ""}</p>`;
+}
+
+function Sample({ sample, run }) {
+  const result = all("result").find((row) => row.run === run.id && row.cod === sample.cod && sample.sample.startsWith(row.bottle));
+  const point = result?.point ? one("point", result.point) : null;
+  const above = result?.verdicts?.find((verdict) => verdict.verdict === "above");
+  const stop = sample.status === "over" || sample.status === "disagree";
+  return html`<section class="card ${stop ? "stop" : ""}">
+    <p class="soft tight">${sample.sample}${point ? `, ${point.discharger_name}, ${point.name}` : ""}</p>
+    ${stop ? html`<h2>▲ ${sample.sample} ${sample.status === "over" ? "is over range" : "disagrees"}</h2>`
+      : html`<p class="tight"><span class="big">${reported(result?.shown ?? String(sample.reported?.cod ?? ""))}</span> ${result?.shown_u ? html`<span class="plus">± ${reported(result.shown_u)}</span>` : ""} <span class="unit">mg/L</span></p>`}
+    <p>${TOLD.get(sample.status)(sample)} ${above ? html`<span class="above">▲ ${above.why}</span>` : result?.verdicts?.[0]?.why ?? ""}</p>
+    <${Advice} advice=${sample.advice} /></section>`;
+}
+
+function Checks({ checks }) {
+  const rows = [
+    ...checks.verifications.map((check, i) => [`Verification ${plain(check.expected)}`, plain(check.found), `${plain(check.recovery_percent)} %`, check.ok, i]),
+    ...checks.duplicates.map((check) => [`Duplicate ${check.samples.join(", ")}`, "", `${plain(check.rpd_percent, 1)} %`, check.ok, check.samples.join()]),
+    ...checks.spikes.map((check) => [`Spike ${check.spiked}`, "", `${plain(check.recovery_percent)} %`, check.ok, check.spiked]),
+  ];
+  return html`<section class="card"><h2>Checks</h2><table><thead><tr><th>Check</th><th class="right">Found</th><th></th></tr></thead><tbody>
+    ${rows.map(([name, found, words, ok, key]) => html`<tr key=${name + key}><td>${name}</td><td class="right">${found}</td><td class=${ok === false ? "above" : ""}>${words}, ${ok === null ? "not judged" : ok ? "holds" : "▲ does not hold"}</td></tr>`)}
+    ${checks.blank && html`<tr><td>Blank</td><td class="right">${checks.blank.mean.toFixed(4)} AU</td><td>subtracted</td></tr>`}</tbody></table></section>`;
+}
+
+const DECISIONS = ["repeat", "accept with a note", "not used"];
+const keyOf = (question) => `${question.what}|${question.subject}`;
+
+function Question({ question, v, set }) {
+  const key = keyOf(question);
+  const given = v[key] ?? { decision: "repeat", reason: "" };
+  return html`<section class="card wait stack"><h3>To decide: ${question.what}, ${question.subject}</h3>
+    <${Choice} label="Decision" value=${given.decision} options=${DECISIONS} onChoose=${(decision) => set(key, { ...given, decision })} />
+    <${TextField} label="Reason" value=${given.reason} onInput=${(reason) => set(key, { ...given, reason })} /></section>`;
+}
+
+/** Closing a run: every question has a decision with a name. */
+export function Close({ run }) {
+  const [v, set, forget] = useForm(`close:${run.id}`, {});
+  const { save, problem, busy } = useSaving(async () => {
+    const decisions = run.questions.map((question) => ({ ...question, decision: "repeat", reason: "", ...v[keyOf(question)] }));
+    const open = decisions.filter((decision) => !decision.reason.trim());
+    if (open.length) throw new Error(`Give the reason for: ${open.map((one_) => `${one_.what} ${one_.subject}`).join(", ")}.`);
+    await state("run.closed", run.id, { decisions });
+    await forget().catch(() => {});
+    say("Saved on this tablet: the run is closed.");
+  });
+  if (!v) return null;
+  return html`<form class="stack" onSubmit=${save} novalidate>
+    ${run.questions.map((question) => html`<${Question} key=${keyOf(question)} question=${question} v=${v} set=${set} />`)}
+    <${Problem} words=${problem} /><button class="main" disabled=${busy}>Close the run</button></form>`;
+}
+
+function Waste({ run }) {
+  const { waste } = run;
+  const container = one("container", run.container);
+  if (!waste) return null;
+  return html`<p class="soft">Waste of this run: ${plain(waste.mercury_mg / 1000, 2)} g mercury, ${plain(waste.chromium_mg / 1000, 2)} g chromium, ${plain(waste.silver_mg / 1000, 2)} g silver, ${plain(waste.volume_ml)} mL.
+    ${run.closed ? "It went" : "It goes"} to ${container?.name}, ${container ? Math.round((100 * container.filled_ml) / container.capacity_ml) : "?"} % full.</p>`;
+}
+
+/** The results of a run. */
+export function Outcome({ run }) {
+  const samples = [...run.answer.samples].sort((a, b) => Number(b.status !== "ok") - Number(a.status !== "ok"));
+  return html`<div class="stack">
+    ${samples.map((sample) => html`<${Sample} key=${sample.sample} sample=${sample} run=${run} />`)}
+    <${Checks} checks=${run.answer.checks} /><${Waste} run=${run} />
+    ${run.closed && html`<section class="card"><h2>Closed</h2><p>by ${run.closed.by}</p>${run.closed.decisions.map((d) => html`<p key=${d.what + d.subject}>${d.what}, ${d.subject}: <strong>${d.decision}</strong>. ${d.reason}</p>`)}</section>`}
+  </div>`;
+}

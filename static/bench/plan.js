@@ -1,0 +1,127 @@
+// Planning a run: which bottles, how diluted, and a rack that fills itself.
+
+import { html } from "../parts/html.js";
+import { Check, Select, TextField, useForm, useSaving } from "../parts/fields.js";
+import { day, plain } from "../parts/format.js";
+import { Empty, Frame, Problem, go, say } from "../parts/frame.js";
+import { newId, state } from "../parts/journal.js";
+import { all, one, programme, useView } from "../parts/view.js";
+import { useWords } from "../parts/words.js";
+import { stepsOf, stepWords } from "../field/glassware.js";
+import { relativeU } from "./glassware.js";
+import { waitingBottles } from "./home.js";
+
+const BLANKS = 3;
+const POSITIONS = 25;
+
+/** The curves that a run may be read with: of the recipe, and not past their date. */
+export function curvesFor(recipe, today) {
+  return all("calibration").filter((curve) => curve.recipe === recipe && curve.valid_until >= today && !curve.fitted?.error);
+}
+
+/** The level of the verification: the middle of the working range, as a round standard. */
+export const checkLevel = (recipe) => (recipe.working_high >= 500 ? "500" : String(Math.round(recipe.working_high / 2)));
+
+/** The tubes of a run, placed by themselves: blanks, verification, each sample's replicates. */
+export function tubesOf(recipe, bottles, factors, replicates) {
+  const tubes = Array.from({ length: BLANKS }, () => ({ role: "blank" }));
+  tubes.push({ role: "verification", expected: checkLevel(recipe) });
+  for (const bottle of bottles) {
+    const factor = factors[bottle.code];
+    const planned = bottle.sampled?.plan;
+    const own = planned?.dilution_factor === factor && planned.steps.length ? planned.steps : stepsOf(factor);
+    const steps = (own ?? []).map(({ pipette_ml, flask_ml }) => ({ pipette_ml, flask_ml }));
+    const reason = planned?.dilution_factor === factor ? planned.reason : "chosen at the bench";
+    const dilution = { factor, steps, relative_u: relativeU(steps) ?? 0.01, reason };
+    for (let i = 0; i < replicates; i += 1) tubes.push({ role: "sample", bottle: bottle.code, dilution });
+  }
+  return tubes.map((tube, i) => ({ position: i + 1, ...tube }));
+}
+
+function Bottle({ bottle, v, set, factors }) {
+  const picked = v.picked.includes(bottle.code);
+  const factor = v.factors[bottle.code] ?? bottle.sampled?.plan?.dilution_factor ?? 1;
+  const name = bottle.place ? `${bottle.place.discharger_name}, ${bottle.place.name}` : "sample not here yet";
+  const options = [...new Set([...factors, factor])].sort((a, b) => a - b).map((f) => [String(f), f === 1 ? "undiluted" : `1:${plain(f)}`]);
+  const steps = stepsOf(factor);
+  return html`<div class="item stack">
+    <${Check} label=${html`<strong>${bottle.code}</strong> ${name} (${bottle.state})`} checked=${picked}
+      onChange=${(on) => set("picked", on ? [...v.picked, bottle.code] : v.picked.filter((code) => code !== bottle.code))} />
+    ${picked && html`<${Select} label="Dilution of ${bottle.code}" value=${String(factor)} options=${options} onChoose=${(text) => set("factors", { ...v.factors, [bottle.code]: Number(text) })}
+      hint=${`${steps?.length ? `${stepWords(steps)}. ` : ""}${bottle.sampled?.plan ? `At the manhole: 1:${bottle.sampled.plan.dilution_factor}, ${bottle.sampled.plan.reason}` : "Nothing was planned at the manhole."}`} />`}
+  </div>`;
+}
+
+function options(rows, name = "name") {
+  return [["", "choose"], ...rows.map((row) => [row.id, row[name]])];
+}
+
+const BLANK = { name: "", recipe: "", lot: "", instrument: "", block: "", calibration: "", container: "", picked: [], factors: {} };
+
+/** The only one of its kind is chosen by itself. */
+const chosen = (given, rows) => given || (rows.length === 1 ? rows[0].id : "");
+
+function useStores(v) {
+  const zone = programme()?.zone;
+  const today = day(new Date(), zone);
+  const recipes = useView(() => all("recipe")).sort((a, b) => b.working_high - a.working_high);
+  const recipe = recipes.find((row) => row.id === v.recipe) ?? recipes[0];
+  const lots = useView(() => all("lot")).filter((lot) => lot.recipe === recipe?.id && lot.expires_on >= today);
+  const curves = useView(() => (recipe ? curvesFor(recipe.id, today) : []));
+  const curve = curves.find((row) => row.id === chosen(v.calibration, curves));
+  const blocks = useView(() => all("instrument")).filter((row) => row.what === "block");
+  const containers = useView(() => all("container")).filter((row) => row.filled_ml < row.capacity_ml);
+  return { recipes, recipe, lots, curves, curve, blocks, containers, block: chosen(v.block, blocks), container: chosen(v.container, containers) };
+}
+
+/** The form for a run. */
+export function Plan() {
+  const [v, set, forget] = useForm("plan", BLANK);
+  if (!v) return html`<${Frame} place="bench" title="Plan a run"><//>`;
+  return html`<${PlanForm} v=${v} set=${set} forget=${forget} />`;
+}
+
+function PlanForm({ v, set, forget }) {
+  const words = useWords();
+  const settings = useView(programme)?.settings;
+  const bottles = useView(waitingBottles);
+  const stores = useStores(v);
+  const { recipe, curve } = stores;
+  const picked = bottles.filter((bottle) => v.picked.includes(bottle.code));
+  const factors = Object.fromEntries(picked.map((bottle) => [bottle.code, v.factors[bottle.code] ?? bottle.sampled?.plan?.dilution_factor ?? 1]));
+  const tubes = recipe ? tubesOf(recipe, picked, factors, settings?.replicates ?? 3) : [];
+  const room = (stores.block && one("instrument", stores.block)?.positions) || POSITIONS;
+  const { save, problem, busy } = useSaving(async () => {
+    if (!picked.length) throw new Error("Choose at least one bottle.");
+    if (tubes.length > room) throw new Error(`${tubes.length} tubes do not fit: the block has ${room} positions.`);
+    if (!curve) throw new Error("A curve of this recipe is needed: make one under Stores.");
+    if (!stores.block || !stores.container) throw new Error("Choose the block and the waste container.");
+    const id = newId();
+    await state("run.planned", id, {
+      name: v.name.trim() || `Run of ${day(new Date(), programme()?.zone)}`, recipe: recipe.id, lot: curve.lot, instrument: curve.instrument,
+      block: stores.block, calibration: curve.id, container: stores.container, tubes,
+    });
+    await forget().catch(() => {});
+    say("Saved on this tablet.");
+    go(`/bench/run/${id}`);
+  });
+  return html`<${Frame} place="bench" title="Plan a run">
+    <form class="stack" onSubmit=${save}>
+      ${!recipe ? html`<${Empty} title="No recipe yet">Adopt one under <a href="/bench/stores">Stores</a>.<//>` : html`
+      <section class="card stack"><h2>Bottles</h2>
+        ${bottles.length ? bottles.map((bottle) => html`<${Bottle} key=${bottle.code} bottle=${bottle} v=${v} set=${set} factors=${settings?.dilutions ?? [1]} />`)
+          : html`<${Empty} title="No bottle waits"><a href="/bench/receive">Receive one</a> first.<//>`}</section>
+      <section class="card stack"><h2>With</h2>
+        <${TextField} label="Name of the run" value=${v.name} onInput=${(name) => set("name", name)} placeholder=${`Run of ${day(new Date(), programme()?.zone)}`} />
+        <${Select} label="Recipe" value=${recipe.id} options=${stores.recipes.map((row) => [row.id, row.name])} onChoose=${(id) => set("recipe", id)} />
+        <${Select} label="Calibration" value=${curve?.id ?? ""} options=${[["", "choose"], ...stores.curves.map((row) => [row.id, `${one("lot", row.lot)?.name}, ${one("instrument", row.instrument)?.name}, until ${row.valid_until}`])]} onChoose=${(id) => set("calibration", id)} hint="it fixes the reagent lot and the photometer" />
+        <${Select} label="Block" value=${stores.block} options=${options(stores.blocks)} onChoose=${(id) => set("block", id)} />
+        <${Select} label="Waste container" value=${stores.container} options=${options(stores.containers)} onChoose=${(id) => set("container", id)} /></section>
+      <section class="card stack"><h2>The rack</h2>
+        <p>${tubes.length} of ${room} positions: ${BLANKS} blanks, one verification of ${checkLevel(recipe)} mg/L, ${picked.length} ${picked.length === 1 ? "sample" : "samples"} in ${settings?.replicates ?? 3} tubes each.</p>
+        <p class="soft">${plain(tubes.length * recipe.digestion_solution_ml, 1)} mL digestion solution and ${plain(tubes.length * recipe.acid_reagent_ml, 1)} mL acid reagent; order: ${recipe.order.join(", then ")}.</p></section>
+      ${words && html`<section class="card wait"><h2>Reminders</h2><ul>${words.reminders.filter((row) => row.stage === "before tubes").map((row) => html`<li key=${row.id}>${row.words}</li>`)}</ul><a href="/emergency">Emergency and first aid</a></section>`}
+      <${Problem} words=${problem} />
+      <div class="sticky"><button class="main" disabled=${busy}>${busy ? "Saving…" : "Save the plan"}</button></div>`}
+    </form><//>`;
+}

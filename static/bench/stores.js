@@ -1,0 +1,142 @@
+// The stores: recipes with what follows from them, lots, instruments, containers, curves.
+
+import { html } from "../parts/html.js";
+import { Choice, Select, TextField, useForm, useSaving } from "../parts/fields.js";
+import { day, plain } from "../parts/format.js";
+import { Empty, Frame, Problem, Where, go, say } from "../parts/frame.js";
+import { newId, state } from "../parts/journal.js";
+import { read } from "../parts/measured.js";
+import { all, one, programme, useView } from "../parts/view.js";
+import { FORMS, RECIPE_FIELDS } from "./recipes.js";
+
+function Recipe({ recipe }) {
+  const d = recipe.derived;
+  return html`<section class="card stack"><div class="row spread"><h3>${recipe.name}</h3>${recipe.local && html`<${Where} about=${recipe.id} />`}</div>
+    <p class="soft">${recipe.source}. ${plain(recipe.working_low)} to ${plain(recipe.working_high)} mg/L in the tube at ${plain(recipe.wavelength_nm)} nm.</p>
+    ${d ? html`<dl class="facts"><dt>Oxidant capacity</dt><dd>${plain(d.oxidant_capacity, 1)} mg/L</dd><dt>Chloride limit</dt><dd>${plain(d.chloride_limit)} mg/L in the tube's sample</dd>
+      <dt>In each tube</dt><dd>${plain(d.per_tube_mg.mercury, 1)} mg mercury, ${plain(d.per_tube_mg.chromium, 2)} mg chromium, ${plain(d.per_tube_mg.silver, 1)} mg silver</dd><dt>Order</dt><dd>${recipe.order.join(", then ")}</dd></dl>
+      ${d.warnings.map((words) => html`<p class="above" key=${words}>▲ ${words}</p>`)}` : html`<p class="soft">What follows from it is computed when the server is reached.</p>`}</section>`;
+}
+
+function Curve({ curve }) {
+  const f = curve.fitted;
+  const bad = f?.error;
+  return html`<section class="card ${bad ? "stop" : ""}"><div class="row spread"><h3>${one("recipe", curve.recipe)?.name ?? "Curve"}</h3>${curve.local && html`<${Where} about=${curve.id} />`}</div>
+    <p>${one("lot", curve.lot)?.name}, ${one("instrument", curve.instrument)?.name}, valid until ${curve.valid_until}.</p>
+    ${bad ? html`<p class="above">▲ ${f.error}</p>` : f ? html`<dl class="facts"><dt>Slope</dt><dd>${(f.coefficients[1] * 1000).toPrecision(4)} mAU per mg/L</dd><dt>Residual scatter</dt><dd>${(f.residual_sd * 1000).toFixed(2)} mAU</dd>
+      <dt>Relative standard error</dt><dd>${f.relative_standard_error_percent === null ? "–" : `${f.relative_standard_error_percent.toFixed(2)} %`}</dd><dt>Standards</dt><dd>${f.n} readings</dd></dl>` : html`<p class="soft">Fitted when the server is reached.</p>`}</section>`;
+}
+
+function Rows({ title, rows, words, what }) {
+  return html`<h2>${title}</h2>${rows.length ? html`<ul class="plain list">${rows.map((row) => html`<li class="item" key=${row.id}><strong>${row.name}</strong><div class="soft">${words(row)}</div></li>`)}</ul>` : html`<${Empty} title="None yet">Add the first one.<//>`}
+    <a class="button" href="/bench/stores/${what}">Add</a>`;
+}
+
+const filled = (row) => `${plain(row.filled_ml)} of ${plain(row.capacity_ml)} mL (${Math.round((100 * row.filled_ml) / row.capacity_ml)} %): ${plain(row.mercury_mg / 1000, 2)} g mercury, ${plain(row.chromium_mg / 1000, 2)} g chromium, ${plain(row.silver_mg / 1000, 2)} g silver`;
+
+/** The stores. */
+export function Stores() {
+  const recipes = useView(() => all("recipe"));
+  const curves = useView(() => all("calibration")).reverse();
+  return html`<${Frame} place="bench" title="Stores"><div class="stack">
+    <h2>Recipes</h2>${recipes.length ? recipes.map((recipe) => html`<${Recipe} key=${recipe.id} recipe=${recipe} />`) : html`<${Empty} title="No recipe yet">Everything a tube can do follows from it.<//>`}
+    <a class="button" href="/bench/stores/recipe">Adopt a recipe</a>
+    <${Rows} title="Reagent lots" what="lot" rows=${useView(() => all("lot"))} words=${(row) => `${one("recipe", row.recipe)?.name}, made ${row.made_on}, expires ${row.expires_on}`} />
+    <${Rows} title="Instruments" what="instrument" rows=${useView(() => all("instrument"))} words=${(row) => `${row.what}${row.positions ? `, ${row.positions} positions` : ""}`} />
+    <h2>Curves</h2>${curves.map((curve) => html`<${Curve} key=${curve.id} curve=${curve} />`)}<a class="button" href="/bench/stores/calibration">Enter a calibration</a>
+    <${Rows} title="Waste containers" what="container" rows=${useView(() => all("container"))} words=${filled} />
+    <p><a href="/bench">Back to what waits</a></p></div><//>`;
+}
+
+function need(v, fields) {
+  const missing = fields.filter(([name]) => !String(v[name] ?? "").trim()).map(([, label]) => label.toLowerCase());
+  if (missing.length) throw new Error(`Still missing: ${missing.join(", ")}.`);
+}
+
+function useAdding(key, blank, make) {
+  const [v, set, forget] = useForm(`add:${key}`, blank);
+  const saving = useSaving(async () => {
+    const [kind, body] = make(v);
+    await state(kind, newId(), body);
+    await forget().catch(() => {});
+    say("Saved on this tablet.");
+    go("/bench/stores");
+  });
+  return { v, set, saving };
+}
+
+function Shell({ title, saving, children }) {
+  return html`<${Frame} place="bench" title=${title}><form class="stack" onSubmit=${saving.save} novalidate>${children}
+    <${Problem} words=${saving.problem} /><button class="main" disabled=${saving.busy}>${saving.busy ? "Saving…" : "Save on this tablet"}</button><p><a href="/bench/stores">Stores</a></p></form><//>`;
+}
+
+function AddLot() {
+  const recipes = useView(() => all("recipe"));
+  const today = day(new Date(), programme()?.zone);
+  const { v, set, saving } = useAdding("lot", { recipe: "", name: "", made_on: today, expires_on: "" }, (given) => {
+    need(given, [["name", "Name"], ["made_on", "Made on"], ["expires_on", "Expires on"]]);
+    return ["lot.made", { ...given, recipe: given.recipe || recipes[0]?.id }];
+  });
+  if (!v) return null;
+  return html`<${Shell} title="A reagent lot" saving=${saving}>
+    <${Select} label="Recipe" value=${v.recipe || recipes[0]?.id} options=${recipes.map((row) => [row.id, row.name])} onChoose=${(id) => set("recipe", id)} />
+    <${TextField} label="Name on the bottle" value=${v.name} onInput=${(text) => set("name", text)} />
+    <${TextField} label="Made on" type="date" value=${v.made_on} onInput=${(text) => set("made_on", text)} />
+    <${TextField} label="Expires on" type="date" value=${v.expires_on} onInput=${(text) => set("expires_on", text)} /><//>`;
+}
+
+function AddInstrument() {
+  const { v, set, saving } = useAdding("instrument", { name: "", what: "photometer", positions: "25" }, (given) => {
+    need(given, [["name", "Name"]]);
+    const body = { name: given.name.trim(), what: given.what };
+    return ["instrument.added", given.what === "block" ? { ...body, positions: Math.round(read(given.positions).value) } : body];
+  });
+  if (!v) return null;
+  return html`<${Shell} title="An instrument" saving=${saving}>
+    <${Choice} label="Kind" value=${v.what} options=${["photometer", "block", "pipette", "meter"]} onChoose=${(what) => set("what", what)} />
+    <${TextField} label="Name" value=${v.name} onInput=${(text) => set("name", text)} />
+    ${v.what === "block" && html`<${TextField} label="Positions" inputmode="numeric" value=${v.positions} onInput=${(text) => set("positions", text)} />`}<//>`;
+}
+
+function AddContainer() {
+  const { v, set, saving } = useAdding("container", { name: "", capacity_ml: "5000" }, (given) => {
+    need(given, [["name", "Name"], ["capacity_ml", "Capacity"]]);
+    if (read(given.capacity_ml).problem) throw new Error(read(given.capacity_ml).problem);
+    return ["container.opened", given];
+  });
+  if (!v) return null;
+  return html`<${Shell} title="A waste container" saving=${saving}>
+    <p class="card wait">Acid COD digest only: acid-resistant, closed, labelled with its contents and hazards. Keep bases, cyanide, sulfide, metals and organics away. State and local rules decide on labels, amounts and days.</p>
+    <${TextField} label="Name" value=${v.name} onInput=${(text) => set("name", text)} />
+    <${TextField} label="Capacity, mL" inputmode="decimal" value=${v.capacity_ml} onInput=${(text) => set("capacity_ml", text)} /><//>`;
+}
+
+function AddRecipe() {
+  const { v, set, saving } = useAdding("recipe", { name: "", source: "", order: "sample, digestion solution, acid reagent", ...FORMS[0].numbers, form: FORMS[0].name }, (given) => {
+    need(given, [["name", "Name"], ["source", "Source"], ...RECIPE_FIELDS]);
+    const wrong = RECIPE_FIELDS.filter(([name]) => read(given[name]).problem).map(([, label]) => label);
+    if (wrong.length) throw new Error(`Not a number: ${wrong.join(", ")}.`);
+    const numbers = Object.fromEntries(RECIPE_FIELDS.map(([name]) => [name, given[name]]));
+    const order = given.order.split(",").map((text) => text.trim()).filter(Boolean);
+    return ["recipe.adopted", { name: given.name.trim(), source: given.source.trim(), order, ...numbers }];
+  });
+  if (!v) return null;
+  const take = (name) => {
+    const form = FORMS.find((one_) => one_.name === name);
+    set("form", name);
+    Object.entries({ ...form.numbers, name: form.name, source: form.source }).forEach(([key, text]) => set(key, text));
+  };
+  return html`<${Shell} title="Adopt a recipe" saving=${saving}>
+    <${Choice} label="Begin from a published form" value=${v.form} options=${FORMS.map((form) => form.name)} onChoose=${take} />
+    <${TextField} label="Name" value=${v.name} onInput=${(text) => set("name", text)} />
+    <${TextField} label="Source" value=${v.source} onInput=${(text) => set("source", text)} />
+    ${RECIPE_FIELDS.map(([name, label]) => html`<${TextField} key=${name} label=${label} inputmode="decimal" value=${v[name]} onInput=${(text) => set(name, text)} />`)}
+    <${TextField} label="Order of addition, separated by commas" value=${v.order} onInput=${(text) => set("order", text)} hint="texts differ; it is shown at the gate from here" /><//>`;
+}
+
+const ADD = { lot: AddLot, instrument: AddInstrument, container: AddContainer, recipe: AddRecipe };
+
+/** The form for something new. */
+export function AddThing({ what }) {
+  return ADD[what] ? html`<${ADD[what]} />` : html`<${Stores} />`;
+}
