@@ -64,5 +64,5 @@ export function Run({ id }) {
     <${Confirmed} run=${run} words=${words} />
     <p><a href="/bench">What waits</a> · <a href="/emergency">Emergency and first aid</a></p></div>`;
   const next = html`<div class="screen stack"><${Next} run=${run} words=${words} position=${position} onPick=${setPicked} /></div>`;
-  return html`<${Frame} place="bench" title=${run.name} about=${recipe?.name} wide><div class="sides bench"><main class="side front" id="main">${rack}</main><aside class="side front" aria-label="Next">${next}</aside></div><//>`;
+  return html`<${Frame} place="bench" title=${run.name} about=${recipe?.name} wide><div class="sides bench"><aside class="side front" aria-label="Next">${next}</aside><main class="side front" id="main">${rack}</main></div><//>`;
 }

@@ -4,7 +4,7 @@ import { day, plain } from "../parts/format.js";
 import { html } from "../parts/html.js";
 import { verdictOf } from "./words.js";
 
-const W = 720;
+const W = 830;
 const H = 300;
 const [LEFT, RIGHT, TOP, BOTTOM] = [64, 700, 22, 258];
 
@@ -75,13 +75,15 @@ export function History({ results, limits, zone }) {
   const top = niceTop(most);
   const x = (time) => LEFT + ((time - from) / (to - from)) * (RIGHT - LEFT);
   const y = (cod) => BOTTOM - (cod / top) * (BOTTOM - TOP);
-  return html`<svg class="strip" viewBox="0 0 ${W} ${H}" role="img" aria-label=${describe(known, zone)}>
+  return html`<svg class="chart" viewBox="0 0 ${W} ${H}" role="img" aria-label=${describe(known, zone)}>
     ${[0, 0.25, 0.5, 0.75, 1].map((share) => html`<g key=${share} font-size="13"><line x1=${LEFT} x2=${RIGHT} y1=${y(top * share)} y2=${y(top * share)} stroke=${share ? "var(--rule)" : "var(--ink)"} stroke-width="1" />
       <text x=${LEFT - 8} y=${y(top * share) + 4} text-anchor="end">${plain(top * share)}</text></g>`)}
     <text x=${LEFT - 8} y="12" font-size="13" text-anchor="end">mg/L</text>
     ${months(from, to).map((at) => html`<text key=${at.getTime()} x=${x(at.getTime())} y=${BOTTOM + 22} text-anchor="middle" font-size="13">${day(at, "UTC").slice(0, 7)}</text>`)}
     ${segments.map((segment) => html`<g key=${segment.basis + segment.from}><line x1=${x(segment.start)} x2=${x(segment.end)} y1=${y(segment.value)} y2=${y(segment.value)} stroke="var(--stop)" stroke-width="2" stroke-dasharray=${segment.basis === "daily_maximum" ? "8 4" : "2 4"} />
-      ${segment.last && html`<text x=${RIGHT} y=${y(segment.value) - 6} text-anchor="end" font-size="13" font-weight="700" fill="var(--stop)" paint-order="stroke" stroke="var(--card)" stroke-width="4">${NAMES.get(segment.basis) ?? segment.basis} ${plain(segment.value)}</text>`}</g>`)}
+</g>`)}
     ${known.map((result) => html`<${Point} key=${result.id} result=${result} x=${x} y=${y} />`)}
+    ${segments.filter((segment) => segment.last).map((segment) => html`<text key=${segment.basis} x=${RIGHT + 8} y=${y(segment.value) + 4} font-size="12.5" font-weight="700" class="above-text">
+      <tspan>${NAMES.get(segment.basis) ?? segment.basis}</tspan><tspan x=${RIGHT + 8} dy="15">${plain(segment.value)}</tspan></text>`)}
   </svg>`;
 }
