@@ -96,7 +96,7 @@ async function firstScreen() {
 }
 
 async function begin() {
-  await applyComfort();
+  applyComfort();
   await Promise.all([loadUnits(), load()]);
   followLinks();
   const open = location.pathname === "/emergency" || location.pathname === "/start";

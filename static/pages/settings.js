@@ -1,7 +1,7 @@
 // This device: how it looks, what it keeps, who is here.
 
 import { html, useEffect, useState } from "../parts/html.js";
-import { getMeta, putMeta } from "../parts/db.js";
+import { getMeta } from "../parts/db.js";
 import { Check, Choice, useSaving } from "../parts/fields.js";
 import { dayAndTime } from "../parts/format.js";
 import { Frame, Problem, exchangeNow, go } from "../parts/frame.js";
@@ -10,21 +10,32 @@ import { programme, useView, waiting } from "../parts/view.js";
 
 const PLAIN = { theme: "auto", gloves: false };
 
+const COMFORT = "weirbook-comfort";
+
+/** How this device looks. It is kept where it is read before the first drawing: nothing flickers, no choice is lost. */
+function comfortHere() {
+  try {
+    return { ...PLAIN, ...JSON.parse(localStorage.getItem(COMFORT) ?? "{}") };
+  } catch {
+    return PLAIN;
+  }
+}
+
 /** Put the device's comfort settings on the root. */
-export async function applyComfort() {
-  const comfort = { ...PLAIN, ...(await getMeta("comfort")) };
+export function applyComfort() {
+  const comfort = comfortHere();
   document.documentElement.dataset.theme = comfort.theme;
   document.documentElement.dataset.gloves = comfort.gloves ? "yes" : "no";
   return comfort;
 }
 
 function Comfort() {
-  const [comfort, setComfort] = useState(PLAIN);
-  useEffect(() => { applyComfort().then(setComfort, () => {}); }, []);
+  const [comfort, setComfort] = useState(comfortHere);
   const choose = (change) => {
     const next = { ...comfort, ...change };
     setComfort(next);
-    putMeta("comfort", next).then(applyComfort).catch(() => {});
+    localStorage.setItem(COMFORT, JSON.stringify(next));
+    applyComfort();
   };
   return html`<section class="card stack"><h2>This tablet</h2>
     <${Choice} label="Look" value=${comfort.theme} onChoose=${(theme) => choose({ theme })}

@@ -3,7 +3,7 @@
 import { html, useEffect, useState } from "../parts/html.js";
 import { TextField, useSaving } from "../parts/fields.js";
 import { Mark, Problem, go } from "../parts/frame.js";
-import { ask, keep } from "../parts/session.js";
+import { ask, askState, keep } from "../parts/session.js";
 import { sync } from "../parts/sync.js";
 
 async function enter(state) {
@@ -53,14 +53,18 @@ function Own({ back }) {
 export function Start() {
   const [own, setOwn] = useState(false);
   useEffect(() => { document.title = own ? "Start a programme · Weirbook" : "Weirbook"; }, [own]);
+  const [server, setServer] = useState(undefined);
+  useEffect(() => { askState().then(setServer, () => setServer(null)); }, []);
   const { save, problem, busy } = useSaving(async () => enter(await ask("POST", "/api/example", {})));
   if (own) return html`<main class="page" id="main" tabindex="-1"><${Own} back=${() => setOwn(false)} /></main>`;
   return html`<main class="page stack" id="main" tabindex="-1">
     <${Mark} /><h1>Weirbook</h1>
     <p>One bottle, from the discharge point to the signed certificate: logged without a network, diluted right the first time,
       digested, read, calculated with an honest uncertainty, held against the limit and certified.</p>
-    <button class="main" type="button" onClick=${() => setOwn(true)}>Start my own programme</button>
-    <button type="button" onClick=${save} disabled=${busy} aria-live="polite">${busy ? "Filling the example…" : "Look around with an example"}</button>
+    ${server === null && html`<p class="card wait">The server cannot be reached from here. A programme is started with it at hand.</p>`}
+    ${server?.started && html`<p class="card">A programme runs on this server already. <a href="/sign-in">Sign in</a></p>`}
+    <button class="main" type="button" disabled=${server?.started} onClick=${() => setOwn(true)}>Start my own programme</button>
+    <button type="button" onClick=${save} disabled=${busy || (server?.started && !server.example)} aria-live="polite">${busy ? "Filling the example…" : "Look around with an example"}</button>
     <p class="soft small">The example is invented: people, firms, places and numbers. It fills this server's empty store.</p>
     <${Problem} words=${problem} />
     <p><a href="/emergency">Emergency and first aid</a> · <a href="/sign-in">Sign in</a></p>

@@ -4,7 +4,7 @@
 import { ago, clock } from "./format.js";
 import { html, useEffect, useState } from "./html.js";
 import { health, sync, watch } from "./sync.js";
-import { useView, waiting, whereIs } from "./view.js";
+import { programme, useView, waiting, whereIs } from "./view.js";
 
 export const PLACES = [["field", "Field"], ["bench", "Bench"], ["review", "Review"]];
 
@@ -84,11 +84,12 @@ function Update() {
 
 /** A screen in its frame. */
 export function Frame({ place, title, about, wide = false, children }) {
+  const here = useView(programme);
   const words = PLACES.find(([key]) => key === place)?.[1] ?? "Weirbook";
   useEffect(() => { document.title = `${title} · ${words} · Weirbook`; }, [title, words]);
   return html`<div class="frame">
     <a class="skip" href="#main">To the content</a>
-    <header class="bar"><${Mark} /><span class="place">${words}</span><span class="about">${about ?? ""}</span>
+    <header class="bar"><${Mark} /><span class="place">${words}</span><span class="about">${about ?? (here?.example ? `Example: ${here.name}` : here?.name) ?? ""}</span>
       <a class="gear" href="/settings" aria-label="Settings">☰</a></header>
     <${Banner} /><${Update} />
     ${wide ? children : html`<main class="screen" id="main" tabindex="-1"><h1>${title}</h1>${children}</main>`}
