@@ -41,7 +41,7 @@ function Checks({ checks }) {
     ...checks.duplicates.map((check) => [`Duplicate ${check.samples.join(", ")}`, "", `${plain(check.rpd_percent, 1)} %`, check.ok, check.samples.join()]),
     ...checks.spikes.map((check) => [`Spike ${check.spiked}`, "", `${plain(check.recovery_percent)} %`, check.ok, check.spiked]),
   ];
-  return html`<section class="card"><h2>Checks</h2><table><thead><tr><th>Check</th><th class="right">Found</th><th></th></tr></thead><tbody>
+  return html`<section class="card"><h2>Checks</h2><table><thead><tr><th>Check</th><th class="right">Found</th><th>Judged</th></tr></thead><tbody>
     ${rows.map(([name, found, words, ok, key]) => html`<tr key=${name + key}><td>${name}</td><td class="right">${found}</td><td class=${ok === false ? "above" : ""}>${words}, ${ok === null ? "not judged" : ok ? "holds" : "▲ does not hold"}</td></tr>`)}
     ${checks.blank && html`<tr><td>Blank</td><td class="right">${checks.blank.mean.toFixed(4)} AU</td><td>subtracted</td></tr>`}</tbody></table></section>`;
 }

@@ -53,9 +53,11 @@ def _signed_in(context: BrowserContext) -> Page:
 
 
 def _settled(page: Page, path: str) -> None:
-    page.goto(path)
+    page.evaluate(
+        "(path) => { history.pushState(null, '', path); dispatchEvent(new Event('weirbook-moved')); }", path
+    )
     page.locator("h1:visible").first.wait_for()
-    page.wait_for_load_state("networkidle")
+    page.wait_for_timeout(120)  # drafts and words come from the device's store
 
 
 @pytest.mark.parametrize(

@@ -9,6 +9,7 @@ from __future__ import annotations
 import json
 import re
 import subprocess
+import sys
 from collections.abc import Callable
 from datetime import UTC, datetime, timedelta
 from pathlib import Path
@@ -118,15 +119,13 @@ def _records(page: Page) -> dict[tuple[str, str], Any]:
 def _text_of(pdf: bytes, folder: Path) -> str:
     path = folder / "certificate.pdf"
     path.write_bytes(pdf)
-    told_ = subprocess.run(
-        ["pdftotext", "-layout", str(path), "-"], capture_output=True, text=True, check=True
-    )
-    return told_.stdout
+    command = ["pdftotext", "-layout", str(path), "-"]
+    return subprocess.run(command, capture_output=True, text=True, check=True).stdout
 
 
 def _calculate(given: dict[str, Any]) -> dict[str, Any]:
     run = subprocess.run(
-        [str(ROOT / ".venv" / "bin" / "python"), "-m", "app", "calculate"],
+        [sys.executable, "-m", "app", "calculate"],
         input=json.dumps(given),
         capture_output=True,
         text=True,
