@@ -127,8 +127,9 @@ class Writing:
             return Answer(entry.id, "duplicate", position, held)
         hold = hold or append.collision(self.connection, entry) or self._objection(entry)
         hold = self._enter(entry, carrier, hold)
+        position = self.head.position
         self.react(reactions.AT_ONCE)
-        return Answer(entry.id, "held" if hold else "stored", self.head.position, hold)
+        return Answer(entry.id, "held" if hold else "stored", position, hold)
 
     def state(self, kind: str, about: str, body: Body, by: str = SYSTEM) -> Entry:
         """State one entry as the server; what the server states must be valid.
