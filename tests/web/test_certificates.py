@@ -1,4 +1,4 @@
-"""Certificates: only of what is decided, numbered without gaps, the same bytes for ever, calculate's digits."""
+"""Certificates: only of what is decided, no gaps, the same bytes for ever, calculate's digits."""
 
 from __future__ import annotations
 
