@@ -1,0 +1,83 @@
+"""Serving, rebuilding and verifying a store from the command line."""
+
+from __future__ import annotations
+
+import socket
+import sqlite3
+import subprocess
+import sys
+from pathlib import Path
+
+import pytest
+
+from app.journal.store import Store
+from app.scenarios import load
+
+
+def run(*arguments: str) -> subprocess.CompletedProcess[str]:
+    """Run a verb."""
+    command = [sys.executable, "-m", "app", *arguments]
+    return subprocess.run(command, capture_output=True, text=True, timeout=60)
+
+
+@pytest.fixture
+def folder(tmp_path: Path) -> Path:
+    store = Store(tmp_path / "store")
+    load(store)
+    store.close()
+    return tmp_path / "store"
+
+
+def test_rebuild_says_that_the_records_are_the_same(folder: Path) -> None:
+    done = run("rebuild", "--store", str(folder))
+    assert done.returncode == 0, done.stderr
+    assert "the same as before" in done.stdout
+
+
+def test_rebuild_mends_records_that_were_changed_behind_the_journals_back(folder: Path) -> None:
+    with sqlite3.connect(folder / "weirbook.db") as connection:
+        connection.execute("UPDATE record SET body = '{}' WHERE type = 'point'")
+    connection.close()
+    assert "different from before" in run("rebuild", "--store", str(folder)).stdout
+    assert "the same as before" in run("rebuild", "--store", str(folder)).stdout
+
+
+def test_verify_names_the_first_bad_entry(folder: Path) -> None:
+    good = run("verify", "--store", str(folder))
+    assert (good.returncode, "each as it was written" in good.stdout) == (0, True)
+    with sqlite3.connect(folder / "weirbook.db") as connection:
+        connection.execute("DROP TRIGGER journal_keeps")
+        connection.execute("UPDATE journal SET raw = CAST(raw || ' ' AS BLOB) WHERE position IN (40, 41)")
+    connection.close()
+    bad = run("verify", "--store", str(folder))
+    assert bad.returncode == 1
+    assert bad.stdout.startswith("Entry 40 is not as it was written")
+
+
+@pytest.mark.parametrize("verb", ["rebuild", "verify"])
+def test_a_folder_without_a_store_is_told_in_one_sentence(tmp_path: Path, verb: str) -> None:
+    done = run(verb, "--store", str(tmp_path / "nothing"))
+    assert done.returncode == 1
+    assert done.stdout == ""
+    assert done.stderr.startswith("There is no store in")
+    assert not (tmp_path / "nothing").exists()
+
+
+def test_a_busy_port_is_told_in_one_sentence(tmp_path: Path) -> None:
+    with socket.socket() as taken:
+        taken.bind(("127.0.0.1", 0))
+        taken.listen()
+        port = taken.getsockname()[1]
+        done = run("serve", "--store", str(tmp_path / "s"), "--port", str(port))
+    assert done.returncode == 1
+    assert f"Port {port} cannot be used" in done.stderr
+    assert "Traceback" not in done.stderr
+    assert len(done.stderr.strip().splitlines()) == 1
+
+
+def test_a_folder_that_cannot_be_written_is_told_in_one_sentence(tmp_path: Path) -> None:
+    (tmp_path / "file").write_text("x", encoding="utf-8")
+    done = run("serve", "--store", str(tmp_path / "file"), "--port", "0")
+    assert done.returncode == 1
+    assert "cannot be opened" in done.stderr
+    assert "Traceback" not in done.stderr
