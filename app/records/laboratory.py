@@ -16,6 +16,8 @@ from zoneinfo import ZoneInfo
 
 from app import __version__, verbs
 from app.chemistry import rounding
+from app.chemistry.calibration import Standard, fit
+from app.chemistry.diagnostics import findings
 from app.chemistry.recipe import Recipe
 from app.errors import WeirbookError
 from app.journal import measured
@@ -60,12 +62,20 @@ def fit_curve(writing: Writing, id_: str) -> None:
     """State the curve of a calibration; one that cannot be fitted keeps the reason."""
     calibration = writing.get("calibration", id_) or {}
     given = {"standards": standards(calibration), "model": calibration["model"], "weights": "equal"}
+    recipe = writing.get("recipe", calibration["recipe"]) or {}
     try:
-        fitted = verbs.find("fit")(given)
+        fitted = verbs.find("fit")(given) | {"findings": _findings(given, recipe)}
     except WeirbookError as error:
         fitted = error.body()
     body = {"software": SOFTWARE, "inputs_digest": inputs_digest(given), "fitted": fitted}
     writing.state("calibration.fitted", id_, body)
+
+
+def _findings(given: Body, recipe: Body) -> list[Body]:
+    """Return what is the matter with a curve, in words, the most serious first."""
+    levels = [Standard(one["cod"], tuple(one["absorbance"])) for one in given["standards"]]
+    curve = fit(levels, given["model"])
+    return [asdict(one) for one in findings(curve, levels, Recipe(**recipe_input(recipe)))]
 
 
 def standards(calibration: Body) -> list[Body]:

@@ -1,7 +1,7 @@
 // What waits at the bench: runs first, then bottles by the time they have left.
 
 import { html } from "../parts/html.js";
-import { clock, left } from "../parts/format.js";
+import { clock, dilution, left } from "../parts/format.js";
 import { Empty, Frame, Where } from "../parts/frame.js";
 import { all, one, programme, useView } from "../parts/view.js";
 import { heatedAt, span, useNow } from "./timer.js";
@@ -35,7 +35,7 @@ function BottleRow({ bottle }) {
   const to = bottle.state === "received" ? "/bench/plan" : `/bench/receive/${bottle.code}`;
   return html`<a href=${to}><strong>${bottle.code}</strong>
     <span class="under"><span>${bottle.place ? `${bottle.place.discharger_name}, ${bottle.place.name}` : "its sample has not arrived yet"}</span><span>${bottle.state}</span></span>
-    ${bottle.sampled && html`<span class="under"><span>${bottle.sampled.plan ? `to be diluted 1:${bottle.sampled.plan.dilution_factor}` : "dilution open"}</span><span>analysis to start: ${left(bottle.sampled.hold_until)}</span></span>`}</a>`;
+    ${bottle.sampled && html`<span class="under"><span>${bottle.sampled.plan ? `plan: ${dilution(bottle.sampled.plan.dilution_factor)}` : "dilution open"}</span><span>analysis to start: ${left(bottle.sampled.hold_until)}</span></span>`}</a>`;
 }
 
 /** The first screen of the Bench. */

@@ -2,7 +2,7 @@
 
 import { html } from "../parts/html.js";
 import { Choice, TextField, useForm, useSaving } from "../parts/fields.js";
-import { plain, reported } from "../parts/format.js";
+import { dilution, plain, reported } from "../parts/format.js";
 import { Problem, say } from "../parts/frame.js";
 import { state } from "../parts/journal.js";
 import { all, one } from "../parts/view.js";
@@ -18,7 +18,7 @@ const TOLD = new Map([
 function Advice({ advice }) {
   if (!advice) return null;
   const steps = advice.dilution_factor ? stepsOf(advice.dilution_factor) : null;
-  const words = advice.dilution_factor ? `Repeat at 1:${plain(advice.dilution_factor)}.` : "Repeat it.";
+  const words = advice.dilution_factor ? `Repeat ${advice.dilution_factor === 1 ? "" : "at "}${dilution(advice.dilution_factor)}.` : "Repeat it.";
   return html`<p><strong>${words}</strong> ${advice.why} ${steps?.length ? `${stepWords(steps)}.` : ""}</p>`;
 }
 

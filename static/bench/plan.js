@@ -2,7 +2,7 @@
 
 import { html } from "../parts/html.js";
 import { Check, Select, TextField, useForm, useSaving } from "../parts/fields.js";
-import { day, plain } from "../parts/format.js";
+import { day, dilution, plain } from "../parts/format.js";
 import { Empty, Frame, Problem, go, say } from "../parts/frame.js";
 import { newId, state } from "../parts/journal.js";
 import { all, one, programme, useView } from "../parts/view.js";
@@ -14,9 +14,11 @@ import { waitingBottles } from "./home.js";
 const BLANKS = 3;
 const POSITIONS = 25;
 
+const usable = (curve) => !curve.fitted?.error && !curve.fitted?.findings?.some((one_) => one_.severity === "stop");
+
 /** The curves that a run may be read with: of the recipe, and not past their date. */
 export function curvesFor(recipe, today) {
-  return all("calibration").filter((curve) => curve.recipe === recipe && curve.valid_until >= today && !curve.fitted?.error);
+  return all("calibration").filter((curve) => curve.recipe === recipe && curve.valid_until >= today && usable(curve));
 }
 
 /** The level of the verification: the middle of the working range, as a round standard. */
@@ -42,13 +44,13 @@ function Bottle({ bottle, v, set, factors }) {
   const picked = v.picked.includes(bottle.code);
   const factor = v.factors[bottle.code] ?? bottle.sampled?.plan?.dilution_factor ?? 1;
   const name = bottle.place ? `${bottle.place.discharger_name}, ${bottle.place.name}` : "sample not here yet";
-  const options = [...new Set([...factors, factor])].sort((a, b) => a - b).map((f) => [String(f), f === 1 ? "undiluted" : `1:${plain(f)}`]);
+  const options = [...new Set([...factors, factor])].sort((a, b) => a - b).map((f) => [String(f), dilution(f)]);
   const steps = stepsOf(factor);
   return html`<div class="item stack">
     <${Check} label=${html`<strong>${bottle.code}</strong> ${name} (${bottle.state})`} checked=${picked}
       onChange=${(on) => set("picked", on ? [...v.picked, bottle.code] : v.picked.filter((code) => code !== bottle.code))} />
     ${picked && html`<${Select} label="Dilution of ${bottle.code}" value=${String(factor)} options=${options} onChoose=${(text) => set("factors", { ...v.factors, [bottle.code]: Number(text) })}
-      hint=${`${steps?.length ? `${stepWords(steps)}. ` : ""}${bottle.sampled?.plan ? `At the manhole: 1:${bottle.sampled.plan.dilution_factor}, ${bottle.sampled.plan.reason}` : "Nothing was planned at the manhole."}`} />`}
+      hint=${`${steps?.length ? `${stepWords(steps)}. ` : ""}${bottle.sampled?.plan ? `At the manhole: ${dilution(bottle.sampled.plan.dilution_factor)}, ${bottle.sampled.plan.reason}` : "Nothing was planned at the manhole."}`} />`}
   </div>`;
 }
 

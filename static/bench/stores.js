@@ -7,6 +7,7 @@ import { Empty, Frame, Problem, Where, go, say } from "../parts/frame.js";
 import { newId, state } from "../parts/journal.js";
 import { read } from "../parts/measured.js";
 import { all, one, programme, useView } from "../parts/view.js";
+import { CurveChart, Findings } from "./curve.js";
 import { FORMS, RECIPE_FIELDS } from "./recipes.js";
 
 function Recipe({ recipe }) {
@@ -24,7 +25,7 @@ function Curve({ curve }) {
   return html`<section class="card ${bad ? "stop" : ""}"><div class="row spread"><h3>${one("recipe", curve.recipe)?.name ?? "Curve"}</h3>${curve.local && html`<${Where} about=${curve.id} />`}</div>
     <p>${one("lot", curve.lot)?.name}, ${one("instrument", curve.instrument)?.name}, valid until ${curve.valid_until}.</p>
     ${bad ? html`<p class="above">▲ ${f.error}</p>` : f ? html`<dl class="facts"><dt>Slope</dt><dd>${(f.coefficients[1] * 1000).toPrecision(4)} mAU per mg/L</dd><dt>Residual scatter</dt><dd>${(f.residual_sd * 1000).toFixed(2)} mAU</dd>
-      <dt>Relative standard error</dt><dd>${f.relative_standard_error_percent === null ? "–" : `${f.relative_standard_error_percent.toFixed(2)} %`}</dd><dt>Standards</dt><dd>${f.n} readings</dd></dl>` : html`<p class="soft">Fitted when the server is reached.</p>`}</section>`;
+      <dt>Relative standard error</dt><dd>${f.relative_standard_error_percent === null ? "–" : `${f.relative_standard_error_percent.toFixed(2)} %`}</dd><dt>Standards</dt><dd>${f.n} readings</dd></dl><${CurveChart} curve=${curve} /><${Findings} curve=${curve} />` : html`<p class="soft">Fitted when the server is reached.</p>`}</section>`;
 }
 
 function Rows({ title, rows, words, what }) {

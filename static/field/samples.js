@@ -1,7 +1,7 @@
 // The samples of this person: where each one is, and which bottles are still in hand.
 
 import { html, useEffect, useState } from "../parts/html.js";
-import { dayAndTime, left } from "../parts/format.js";
+import { dayAndTime, dilution, left } from "../parts/format.js";
 import { Empty, Where } from "../parts/frame.js";
 import { whoIsHere } from "../parts/session.js";
 import { all, one, programme, useView } from "../parts/view.js";
@@ -30,7 +30,7 @@ function Row({ sample }) {
     <div class="row spread"><strong class="code">${sample.bottle}</strong><${Where} about=${sample.id} /></div>
     <div>${point ? html`<a class="inline" href=${cardOf(sample.point)}>${nameOf(point)}</a>` : "a point that is not on this tablet"}</div>
     <div class="under"><span>${dayAndTime(sample.collected_at, zone)}, ${sample.state}${sample.holder ? ` (${sample.holder})` : ""}</span><${Hold} sample=${sample} /></div>
-    ${sample.plan && html`<div class="under"><span>to be diluted 1:${sample.plan.dilution_factor}${sample.plan.chosen_by === "person" ? `, chosen by ${sample.by_name || "a person"}` : ""}</span></div>`}
+    ${sample.plan && html`<div class="under"><span>plan: ${dilution(sample.plan.dilution_factor)}${sample.plan.chosen_by === "person" ? `, chosen by ${sample.by_name || "a person"}` : ""}</span></div>`}
   </li>`;
 }
 

@@ -29,6 +29,9 @@ export function percent(share) {
   return `${rounded}\u00a0%`;
 }
 
+/** A dilution in words: "undiluted", or "1:5" for a factor of 5 (one part made up to five). */
+export const dilution = (factor) => (factor === 1 ? "undiluted" : `1:${plain(factor, Number.isInteger(factor) ? 0 : 1)}`);
+
 const pad = (n) => String(n).padStart(2, "0");
 
 function parts(moment, zone) {

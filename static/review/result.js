@@ -2,7 +2,7 @@
 
 import { html, useState } from "../parts/html.js";
 import { LongField, useSaving } from "../parts/fields.js";
-import { dayAndTime, percent, plain } from "../parts/format.js";
+import { dayAndTime, dilution, percent, plain } from "../parts/format.js";
 import { Empty, Frame, Problem, Where, say } from "../parts/frame.js";
 import { state } from "../parts/journal.js";
 import { ask } from "../parts/session.js";
@@ -109,7 +109,7 @@ export function ResultReview({ id }) {
         <div><${Number_} result=${result} big /></div>
         <div class="row"><${Verdict} result=${result} />${!result.checks_ok && html`<span class="tag wait"><span aria-hidden="true">◇</span>a check of the run did not hold</span>`}</div>
         <${Strip} predictive=${around(result)} bars=${bar(result)} limit=${verdict?.limit ?? null} />
-        <p class="soft">Diluted 1:${result.dilution_factor}; reporting level ${plain(result.reporting_level)} mg/L after dilution.</p></section>
+        <p class="soft">Dilution: ${dilution(result.dilution_factor)}; reporting level ${plain(result.reporting_level)} mg/L after dilution.</p></section>
       <${Verdicts} result=${result} />
       <${Decide} result=${result} />
       <${Certificate} result=${result} />

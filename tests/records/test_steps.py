@@ -159,6 +159,41 @@ def test_a_run_with_a_curve_of_another_lot_or_an_impossible_rack_is_held(
     assert ready.held(devices.planned(d, "r", CODES[0], **changed)) == ["wrong_plan"]
 
 
+def curve(desk: Desk, id_: str, **changed: object) -> str:
+    """Return the entry of another calibration like the first."""
+    body = json.loads(devices.setting_up(desk.device)[8])["body"]
+    return desk.device.make("calibration.made", id_, body | changed)
+
+
+def test_a_curve_past_its_day_is_refused(ready: Desk) -> None:
+    assert ready.held(curve(ready, "old", valid_until="2031-05-31")) == [None]
+    plan = devices.planned(ready.device, "r", CODES[0], calibration="old")
+    assert ready.held(plan) == ["wrong_plan"]
+
+
+def test_a_curve_that_falls_where_it_must_rise_stops_the_run(ready: Desk) -> None:
+    levels = [
+        ("0", "0.40"),
+        ("100", "0.36"),
+        ("250", "0.30"),
+        ("500", "0.20"),
+        ("750", "0.10"),
+        ("900", "0.04"),
+    ]
+    standards = [{"cod": cod, "absorbance": [a]} for cod, a in levels]
+    assert ready.held(curve(ready, "falls", standards=standards)) == [None]
+    found = ready.get("calibration", "falls")["fitted"]["findings"]
+    assert found[0]["severity"] == "stop"
+    assert ready.held(devices.planned(ready.device, "r", CODES[0], calibration="falls")) == ["wrong_plan"]
+
+
+def test_a_hopeless_curve_keeps_its_reason_and_reads_nothing(ready: Desk) -> None:
+    flat = [{"cod": str(100 * i), "absorbance": ["0.1"]} for i in range(6)]
+    assert ready.held(curve(ready, "flat", standards=flat)) == [None]
+    assert ready.get("calibration", "flat")["fitted"]["error"]
+    assert ready.held(devices.planned(ready.device, "r", CODES[0], calibration="flat")) == ["wrong_plan"]
+
+
 def test_a_question_keeps_the_run_open_until_somebody_decides(ready: Desk) -> None:
     digested(ready)
     d = ready.device

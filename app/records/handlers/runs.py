@@ -56,23 +56,43 @@ def _tube(run: Body, position: int) -> Body:
     raise Refused("unknown_tube", f"There is no tube in position {position}.", {"position": ["Empty."]})
 
 
-def _check_plan(change: Change, body: Body) -> None:
-    calibration, lot = change.need("calibration", body["calibration"]), change.need("lot", body["lot"])
+def _wrong_curve(change: Change, body: Body) -> list[str]:
+    """Return why the readings of a run would refuse its curve; a curve holds for one lot until a day."""
+    calibration = change.need("calibration", body["calibration"])
+    found = [
+        f"It was made with another {name}: a reading refuses it."
+        for name in ("recipe", "lot", "instrument")
+        if calibration[name] != body[name]
+    ]
+    fitted = calibration["fitted"] or {}
+    found += [fitted["error"]] if "error" in fitted else []
+    found += [one["words"] for one in fitted.get("findings", []) if one["severity"] == "stop"]
+    if calibration["valid_until"] < change.entry.at[:10]:
+        found.append(f"It was valid until {calibration['valid_until']}: make a new one.")
+    return found
+
+
+def _wrong_tubes(tubes: list[Body]) -> dict[str, list[str]]:
+    """Return what keeps each tube out of the rack."""
     wrong: dict[str, list[str]] = {}
-    for name in ("recipe", "lot", "instrument"):
-        if calibration[name] != body[name]:
-            wrong["calibration"] = [f"It was made with another {name}: a reading refuses it."]
-    if lot["recipe"] != body["recipe"]:
-        wrong["lot"] = ["It belongs to another recipe."]
-    for name, type_ in (("recipe", "recipe"), ("block", "instrument"), ("container", "container")):
-        change.need(type_, body[name])
-    positions = [tube["position"] for tube in body["tubes"]]
-    for index, tube in enumerate(body["tubes"]):
+    positions = [tube["position"] for tube in tubes]
+    for index, tube in enumerate(tubes):
         if positions.count(tube["position"]) > 1:
             wrong[f"tubes.{index}.position"] = ["Two tubes cannot stand in one position."]
         for name in {"sample": ("bottle", "dilution"), "verification": ("expected",)}.get(tube["role"], ()):
             if tube.get(name) is None:
                 wrong[f"tubes.{index}.{name}"] = [f"A {tube['role']} tube needs it."]
+    return wrong
+
+
+def _check_plan(change: Change, body: Body) -> None:
+    for name, type_ in (("recipe", "recipe"), ("block", "instrument"), ("container", "container")):
+        change.need(type_, body[name])
+    wrong = _wrong_tubes(body["tubes"])
+    if curve := _wrong_curve(change, body):
+        wrong["calibration"] = curve
+    if change.need("lot", body["lot"])["recipe"] != body["recipe"]:
+        wrong["lot"] = ["It belongs to another recipe."]
     if wrong:
         raise Refused("wrong_plan", "This run cannot be digested as planned.", wrong)
 
