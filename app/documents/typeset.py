@@ -94,7 +94,7 @@ def typeset(template: str, view: dict[str, Any], made_at: datetime, data: bytes 
         except typst.TypstError as error:
             missing = missing_glyphs(str(error.diagnostic))
             if not missing - cannot:
-                raise
+                break  # text that the fonts draw but cannot give back, e.g. a lone vowel sign
             cannot |= missing
     everything = characters(view) - SURELY_PRINTED
     return _compile(template, without(view, everything), data.decode("utf-8"), made_at)
