@@ -34,15 +34,16 @@ export function CurveChart({ curve }) {
   const most = Math.max(...off.map((p) => Math.abs(p.d)), 0.1);
   const r = (d) => (UPPER + LOWER) / 2 - (d / most) * ((LOWER - UPPER) / 2 - 6);
   const words = `Absorbance against COD for ${curve.standards.length} standards up to ${plain(top)} mg/L; readings lie within ${most.toFixed(2)} mAU of the curve.`;
-  return html`<svg class="chart" viewBox="0 0 ${W} 330" role="img" aria-label=${words}>
+  return html`<svg class="chart" viewBox="0 0 ${W} 346" role="img" aria-label=${words}>
     <polyline points=${line.map((p) => `${x(p.cod).toFixed(1)},${y(p.a).toFixed(1)}`).join(" ")} fill="none" stroke="var(--water)" stroke-width="2" />
     <line x1=${LEFT} x2=${RIGHT} y1=${BOTTOM} y2=${BOTTOM} stroke="var(--ink)" /><line x1=${LEFT} x2=${RIGHT} y1=${r(0)} y2=${r(0)} stroke="var(--water)" />
     ${points.map((p, i) => html`<circle key=${i} cx=${x(p.cod)} cy=${y(p.a)} r="4.5" fill="var(--card)" stroke="var(--ink)" stroke-width="2" />`)}
     ${off.map((p, i) => html`<g key=${i}><line x1=${x(p.cod)} x2=${x(p.cod)} y1=${r(0)} y2=${r(p.d)} stroke="var(--ink)" /><path d=${`M${x(p.cod)} ${r(p.d) - 5}l5 5-5 5-5-5z`} fill="var(--card)" stroke="var(--ink)" stroke-width="1.6" /></g>`)}
     ${[0, top / 2, top].map((cod) => html`<text key=${cod} x=${x(cod)} y=${LOWER + 22} text-anchor="middle" font-size="12">${plain(cod)}</text>`)}
     <text x=${RIGHT} y=${LOWER + 38} text-anchor="end" font-size="12">COD of the standard, mg/L</text>
-    <text x="4" y=${TOP + 8} font-size="12">AU</text><text x="4" y=${UPPER + 8} font-size="12">mAU off</text>
-    <text x=${LEFT - 6} y=${r(most) + 4} text-anchor="end" font-size="12">${most.toFixed(1)}</text></svg>`;
+    ${[line[0].a, line[20].a, line[40].a].map((a) => html`<text key=${a} x=${LEFT - 6} y=${y(a) + 4} text-anchor="end" font-size="12">${a.toFixed(2)}</text>`)}
+    <text x=${LEFT} y=${TOP + 2} font-size="12">AU</text><text x=${LEFT} y=${UPPER - 10} font-size="12">off the curve, mAU</text>
+    ${[most, 0, -most].map((d) => html`<text key=${d} x=${LEFT - 6} y=${r(d) + 4} text-anchor="end" font-size="12">${d.toFixed(1)}</text>`)}</svg>`;
 }
 
 const SIGNS = { stop: "▲", warning: "◇", note: "○" };

@@ -4,24 +4,15 @@ import { html } from "../parts/html.js";
 import { dayAndTime } from "../parts/format.js";
 import { Empty, Frame, exchangeNow } from "../parts/frame.js";
 import { entries, useView } from "../parts/view.js";
+import { kindWords } from "../parts/kinds.js";
 
 const WORDS = new Map([["tablet", "on this tablet"], ["server", "on the server"], ["held", "needs attention"], ["other", "of another programme"]]);
-const KINDS = new Map(Object.entries({
-  "sample.taken": "Sample taken", "custody.handed_over": "Bottles handed over", "bottle.received": "Bottle received",
-  "run.planned": "Run planned", "gate.confirmed": "Gate confirmed", "heating.started": "Heating started",
-  "heating.ended": "Heating ended", "tube.read": "Tube read", "tube.excluded": "Tube excluded",
-  "readings.finished": "Readings finished", "run.closed": "Run closed", "result.reviewed": "Result reviewed",
-  "entry.settled": "Entry settled", "discharger.registered": "Discharger registered", "point.registered": "Point registered",
-  "limit.set": "Limit set", "recipe.adopted": "Recipe adopted", "lot.made": "Lot made", "instrument.added": "Instrument added",
-  "container.opened": "Container opened", "calibration.made": "Calibration made", "result.recorded": "Result recorded",
-  "settings.changed": "Settings changed",
-}));
 
 function Row({ row }) {
   const body = JSON.parse(row.text).body;
   const subject = body.bottle ?? body.bottles?.join(", ") ?? body.name ?? (body.position ? `position ${body.position}` : "");
   const kind = { tablet: "wait", server: "good", held: "stop", other: "wait" }[row.state];
-  return html`<li class="item"><div class="row spread"><strong>${KINDS.get(row.kind) ?? row.kind} ${subject}</strong>
+  return html`<li class="item"><div class="row spread"><strong>${kindWords(row.kind)} ${subject}</strong>
       <span class="tag ${kind}">${WORDS.get(row.state)}</span></div>
     <span class="soft small">${dayAndTime(row.at)}</span>
     ${row.told && html`<p class="above">▲ ${row.told.message}</p>

@@ -7,6 +7,7 @@ const W = 344;
 const LEFT = 46;
 const RIGHT = 288;
 const BASE = 104;
+const STEPS = 240;
 const TOP = 22;
 
 function scale(predictive, bars, limit) {
@@ -21,8 +22,8 @@ function scale(predictive, bars, limit) {
 
 function hill(predictive, { from, to, x }) {
   const points = [];
-  for (let i = 0; i <= 90; i += 1) {
-    const log = from + ((to - from) * i) / 90;
+  for (let i = 0; i <= STEPS; i += 1) {
+    const log = from + ((to - from) * i) / STEPS;
     points.push([x(10 ** log), predictive.density(log * Math.LN10)]);
   }
   const most = Math.max(...points.map(([, d]) => d));
@@ -50,7 +51,7 @@ function describe(predictive, bars, limit) {
   const said = predictive
     ? [`Expected ${plain(predictive.quantile(0.5))} mg/L, nine in ten between ${plain(predictive.quantile(0.05))} and ${plain(predictive.quantile(0.95))}.`]
     : [];
-  bars.forEach((bar) => said.push(`Diluted 1:${bar.factor}, ${plain(bar.low)} to ${plain(bar.high)} mg/L can be read: ${percent(bar.share)}.`));
+  bars.forEach((bar) => said.push(`Diluted 1:${bar.factor}, ${plain(bar.low)} to ${plain(bar.high)} mg/L can be read${bar.share === null ? "" : `: ${percent(bar.share)}`}.`));
   if (limit) said.push(`Limit ${plain(limit)} mg/L.`);
   return said.join(" ");
 }

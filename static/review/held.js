@@ -5,6 +5,7 @@ import { TextField, useSaving } from "../parts/fields.js";
 import { dayAndTime } from "../parts/format.js";
 import { Empty, Frame, Problem, Where, say } from "../parts/frame.js";
 import { state } from "../parts/journal.js";
+import { kindWords } from "../parts/kinds.js";
 import { all, one, programme, useView } from "../parts/view.js";
 
 function readable(text) {
@@ -31,7 +32,7 @@ function Settle({ entry }) {
 function Entry({ entry, zone }) {
   const open = entry.state === "held";
   return html`<section class="card stack ${open ? "stop" : ""}">
-    <h2>${open ? "▲ " : ""}${entry.kind}, ${entry.state}</h2>
+    <h2>${open ? "▲ " : ""}${kindWords(entry.kind)}, ${entry.state}</h2>
     <p>${entry.message}</p>
     <ul>${Object.entries(entry.fields ?? {}).map(([path, lines]) => html`<li key=${path}>${path}: ${lines.join(" ")}</li>`)}</ul>
     <p class="soft small">Stated by ${one("person", entry.by)?.name ?? entry.by}, received ${dayAndTime(entry.received_at, zone)}.</p>

@@ -63,6 +63,17 @@ function describe(results, zone) {
   return `${results.length} results from ${day(results[0].collected_at, zone)} to ${day(last.collected_at, zone)}, ${above} judged above a limit; the last one ${last.shown} mg/L.`;
 }
 
+const LABEL = 34;
+
+/** The labels of the limits, pushed apart so that none covers another. */
+function apart(segments, y) {
+  let lowest = Infinity;
+  return [...segments].sort((a, b) => a.value - b.value).map((segment) => {
+    lowest = Math.min(y(segment.value) + 4, lowest - LABEL);
+    return [segment, lowest];
+  });
+}
+
 /** The chart. */
 export function History({ results, limits, zone }) {
   const known = results.filter((result) => boundOf(result) > 0);
@@ -83,7 +94,7 @@ export function History({ results, limits, zone }) {
     ${segments.map((segment) => html`<g key=${segment.basis + segment.from}><line x1=${x(segment.start)} x2=${x(segment.end)} y1=${y(segment.value)} y2=${y(segment.value)} stroke="var(--stop)" stroke-width="2" stroke-dasharray=${segment.basis === "daily_maximum" ? "8 4" : "2 4"} />
 </g>`)}
     ${known.map((result) => html`<${Point} key=${result.id} result=${result} x=${x} y=${y} />`)}
-    ${segments.filter((segment) => segment.last).map((segment) => html`<text key=${segment.basis} x=${RIGHT + 8} y=${y(segment.value) + 4} font-size="12.5" font-weight="700" class="above-text">
+    ${apart(segments.filter((segment) => segment.last), y).map(([segment, at]) => html`<text key=${segment.basis} x=${RIGHT + 8} y=${at} font-size="12.5" font-weight="700" class="above-text">
       <tspan>${NAMES.get(segment.basis) ?? segment.basis}</tspan><tspan x=${RIGHT + 8} dy="15">${plain(segment.value)}</tspan></text>`)}
   </svg>`;
 }

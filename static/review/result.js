@@ -80,7 +80,7 @@ function Certificate({ result }) {
 }
 
 function bar(result) {
-  return [{ factor: result.dilution_factor, low: result.reporting_level, high: result.top, share: 1, chosen: true }];
+  return [{ factor: result.dilution_factor, low: result.reporting_level, high: result.top, share: null, chosen: true }];
 }
 
 /** A distribution that stands for a result: where it is and how sure. */
@@ -104,7 +104,7 @@ export function ResultReview({ id }) {
   const verdict = verdictOf(result);
   return html`<${Frame} place="review" title="${point?.discharger_name ?? "Sample"}, ${point?.name ?? result.bottle}" about=${result.bottle}>
     <div class="stack">
-      <section class="card ${verdict?.verdict === "above" ? "stop" : ""}">
+      <section class="card">
         <div class="soft">Chemical oxygen demand, sample of ${dayAndTime(result.collected_at, zone)}</div>
         <div><${Number_} result=${result} big /></div>
         <div class="row"><${Verdict} result=${result} />${!result.checks_ok && html`<span class="tag wait"><span aria-hidden="true">◇</span>a check of the run did not hold</span>`}</div>
