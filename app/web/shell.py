@@ -4,11 +4,14 @@ from __future__ import annotations
 
 import hashlib
 import json
+from dataclasses import asdict
 from pathlib import Path
 
 from flask import Blueprint, Response, jsonify, send_file
 
 from app import __version__
+from app.chemistry.recipe import COMMON_PRACTICE_C, COMMON_PRACTICE_HOURS
+from app.chemistry.standard_recipes import STANDARD_RECIPES, StandardRecipe
 from app.journal.units import STATIC
 from app.safety.pack import client_pack
 from app.web.context import context
@@ -54,8 +57,22 @@ def manifest() -> Response:
 
 @blueprint.get("/api/words")
 def words() -> Response:
-    """Gates, hazards and emergency lines: the same words on every side, without signing in."""
-    return jsonify({"weirbook": __version__, **client_pack()})
+    """Gates, hazards, emergency lines and published recipes: the same on every side, without signing in."""
+    recipes = [_form(one) for one in STANDARD_RECIPES]
+    return jsonify({"weirbook": __version__, **client_pack(), "recipes": recipes})
+
+
+def _form(one: StandardRecipe) -> dict[str, str]:
+    """Return a published recipe as the texts of the form that adopts one; what is not stated stays blank."""
+    numbers = {name: f"{value:.4g}" for name, value in asdict(one.recipe).items()}
+    numbers["dichromate_g_per_l"] = f"{one.recipe.dichromate_g_per_l:.5g}"
+    range_ = {"working_low": one.stated_low, "working_high": one.stated_top}
+    told = {name: "" if value is None else f"{value:g}" for name, value in range_.items()}
+    practice = {
+        "temperature_c": f"{COMMON_PRACTICE_C:g}",
+        "minutes": f"{60 * COMMON_PRACTICE_HOURS:g}",
+    }
+    return {"name": one.name, "source": one.source} | numbers | told | practice
 
 
 @blueprint.get("/healthz")

@@ -1,14 +1,15 @@
 // The stores: recipes with what follows from them, lots, instruments, containers, curves.
 
 import { html } from "../parts/html.js";
-import { Choice, Select, TextField, useForm, useSaving } from "../parts/fields.js";
+import { Choice, LongField, Select, TextField, useForm, useSaving } from "../parts/fields.js";
 import { day, plain } from "../parts/format.js";
 import { Empty, Frame, Problem, Where, go, say } from "../parts/frame.js";
 import { newId, state } from "../parts/journal.js";
 import { read } from "../parts/measured.js";
 import { all, one, programme, useView } from "../parts/view.js";
+import { useWords } from "../parts/words.js";
 import { CurveChart, Findings } from "./curve.js";
-import { FORMS, RECIPE_FIELDS } from "./recipes.js";
+import { RECIPE_FIELDS } from "./recipes.js";
 
 function Recipe({ recipe }) {
   const d = recipe.derived;
@@ -112,8 +113,11 @@ function AddContainer() {
     <${TextField} label="Capacity, mL" inputmode="decimal" value=${v.capacity_ml} onInput=${(text) => set("capacity_ml", text)} /><//>`;
 }
 
+const EMPTY_RECIPE = { name: "", source: "", form: "", order: "sample, digestion solution, acid reagent", ...Object.fromEntries(RECIPE_FIELDS.map(([name]) => [name, ""])) };
+
 function AddRecipe() {
-  const { v, set, saving } = useAdding("recipe", { name: "", source: "", order: "sample, digestion solution, acid reagent", ...FORMS[0].numbers, form: FORMS[0].name }, (given) => {
+  const forms = useWords()?.recipes ?? [];
+  const { v, set, saving } = useAdding("recipe", EMPTY_RECIPE, (given) => {
     need(given, [["name", "Name"], ["source", "Source"], ...RECIPE_FIELDS]);
     const wrong = RECIPE_FIELDS.filter(([name]) => read(given[name]).problem).map(([, label]) => label);
     if (wrong.length) throw new Error(`Not a number: ${wrong.join(", ")}.`);
@@ -123,14 +127,14 @@ function AddRecipe() {
   });
   if (!v) return null;
   const take = (name) => {
-    const form = FORMS.find((one_) => one_.name === name);
     set("form", name);
-    Object.entries({ ...form.numbers, name: form.name, source: form.source }).forEach(([key, text]) => set(key, text));
+    Object.entries(forms.find((form) => form.name === name) ?? {}).forEach(([key, text]) => set(key, text));
   };
   return html`<${Shell} title="Adopt a recipe" saving=${saving}>
-    <${Choice} label="Begin from a published form" value=${v.form} options=${FORMS.map((form) => form.name)} onChoose=${take} />
+    <${Select} label="Begin from a published form" value=${v.form} options=${[["", "none: type every number"], ...forms.map((form) => [form.name, form.name])]} onChoose=${take}
+      hint="What the method does not state stays blank. Check the amounts against the method's own text and your lot." />
     <${TextField} label="Name" value=${v.name} onInput=${(text) => set("name", text)} />
-    <${TextField} label="Source" value=${v.source} onInput=${(text) => set("source", text)} />
+    <${LongField} label="Source" value=${v.source} onInput=${(text) => set("source", text)} />
     ${RECIPE_FIELDS.map(([name, label]) => html`<${TextField} key=${name} label=${label} inputmode="decimal" value=${v[name]} onInput=${(text) => set(name, text)} />`)}
     <${TextField} label="Order of addition, separated by commas" value=${v.order} onInput=${(text) => set("order", text)} hint="texts differ; it is shown at the gate from here" /><//>`;
 }

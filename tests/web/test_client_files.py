@@ -6,6 +6,7 @@ import json
 import re
 from pathlib import Path
 
+from app.journal import kinds
 from app.journal.units import STATIC
 from app.web.shell import build_of, shell_files
 from tests.web.conftest import Browser
@@ -56,6 +57,20 @@ def test_the_words_of_safety_need_no_sign_in(browser: Browser) -> None:
     assert words["gates"][0]["id"] == "hood_on"
     assert words["emergency"]
     assert words["deferral"]
+
+
+def test_published_recipes_come_with_their_source_and_can_be_adopted_where_the_method_states_all(
+    browser: Browser,
+) -> None:
+    forms = browser.get("/api/words").get_json()["recipes"]
+    assert all(form["source"] for form in forms)
+    adopted = 0
+    for form in forms:
+        body = form | {"order": ["sample", "digestion solution", "acid reagent"]}
+        if body["working_low"] and body["working_high"]:
+            kinds.check("recipe.adopted", body)
+            adopted += 1
+    assert adopted >= 2
 
 
 def test_health_says_little_and_readiness_tries_a_write(browser: Browser) -> None:
