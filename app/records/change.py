@@ -49,6 +49,15 @@ def find(connection: sqlite3.Connection, type_: str, parent: str | None = None) 
     return [(id_, json.loads(body)) for id_, body in rows.fetchall()]
 
 
+def latest(connection: sqlite3.Connection, type_: str, count: int) -> list[Body]:
+    """Return the newest records of a type by their times, newest first."""
+    rows = connection.execute(
+        "SELECT body FROM record WHERE type = ? AND body IS NOT NULL ORDER BY at DESC, id LIMIT ?",
+        (type_, count),
+    )
+    return [json.loads(row[0]) for row in rows.fetchall()]
+
+
 class Change:
     """One entry's effect on the records."""
 

@@ -22,7 +22,7 @@ from app.chemistry.recipe import Recipe
 from app.errors import WeirbookError
 from app.journal import measured
 from app.journal.entry import digest
-from app.records import verdicts
+from app.records import experience, verdicts
 from app.records.change import Body
 from app.safety import waste
 
@@ -196,7 +196,8 @@ def calculate_run(writing: Writing, id_: str) -> None:
     recipe = writing.get("recipe", run["recipe"]) or {}
     calibration = writing.get("calibration", run["calibration"]) or {}
     settings = writing.find("programme")[0][1]["settings"]
-    given = run_input(run, recipe, calibration, settings)
+    in_force = settings | {"repeatability": experience.repeatability(writing, settings)}
+    given = run_input(run, recipe, calibration, in_force)
     answer = verbs.find("calculate")(given)
     capacity = recipe["derived"]["oxidant_capacity"]
     body = {

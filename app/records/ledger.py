@@ -24,7 +24,7 @@ from app.journal.entry import Entry, parse, reopen
 from app.journal.identity import uuid7
 from app.journal.store import Store
 from app.records import handlers, reactions
-from app.records.change import Body, Change, Refused, find, get
+from app.records.change import Body, Change, Refused, find, get, latest
 
 SYSTEM = "system"
 SERVER_DEVICE = "server"
@@ -109,6 +109,10 @@ class Writing:
     def find(self, type_: str, parent: str | None = None) -> list[tuple[str, Body]]:
         """Return the records of a type (of one parent)."""
         return find(self.connection, type_, parent)
+
+    def latest(self, type_: str, count: int) -> list[Body]:
+        """Return the newest records of a type."""
+        return latest(self.connection, type_, count)
 
     def received_at(self) -> str:
         """Return the present in UTC, as entries carry it."""
