@@ -18,6 +18,7 @@ from app import __version__, verbs
 from app.chemistry import rounding
 from app.chemistry.calibration import Standard, fit
 from app.chemistry.diagnostics import findings
+from app.chemistry.quality import Event, bracket
 from app.chemistry.recipe import Recipe
 from app.errors import WeirbookError
 from app.journal import measured
@@ -208,8 +209,21 @@ def calculate_run(writing: Writing, id_: str) -> None:
         "tubes": _tubes_found(run, given, answer, capacity),
         "results": [_result(writing, id_, run, recipe, settings, one, answer) for one in answer["samples"]],
         "waste": _waste(run, recipe),
+        "bracketing": _bracketing(run, answer),
     }
     writing.state("run.calculated", id_, body)
+
+
+def _bracketing(run: Body, answer: Body) -> Body:
+    """Return which samples stand between verifications that held; a failed one holds what touches it."""
+    judged = iter(check["ok"] for check in answer["checks"]["verifications"])
+    events = [
+        Event(tube["bottle"] or "", next(judged) if tube["role"] == "verification" else None)
+        for tube in run["tubes"]
+        if tube["role"] != "blank" and tube["absorbance"] is not None and tube["excluded"] is None
+    ]
+    found = asdict(bracket(events))
+    return {name: list(dict.fromkeys(codes)) for name, codes in found.items()}
 
 
 def _waste(run: Body, recipe: Body) -> Body:

@@ -35,6 +35,14 @@ function Sample({ sample, run }) {
     <${Advice} advice=${sample.advice} /></section>`;
 }
 
+function Bracketing({ run }) {
+  const { held = [], open = [] } = run.bracketing ?? {};
+  if (!held.length && !open.length) return null;
+  return html`<section class="card ${held.length ? "stop" : "wait"}"><h2>Between verifications</h2>
+    ${held.length > 0 && html`<p class="above">▲ Held by a failed verification: ${held.join(", ")}. Correct, then do them again since the last good one.</p>`}
+    ${open.length > 0 && html`<p>Not closed by a verification after them: ${open.join(", ")}.</p>`}</section>`;
+}
+
 function Checks({ checks }) {
   const rows = [
     ...checks.verifications.map((check, i) => [`Verification ${plain(check.expected)}`, plain(check.found), `${plain(check.recovery_percent)} %`, check.ok, i]),
@@ -87,7 +95,7 @@ export function Outcome({ run }) {
   const samples = [...run.answer.samples].sort((a, b) => Number(b.status !== "ok") - Number(a.status !== "ok"));
   return html`<div class="stack">
     ${samples.map((sample) => html`<${Sample} key=${sample.sample} sample=${sample} run=${run} />`)}
-    <${Checks} checks=${run.answer.checks} /><${Waste} run=${run} />
+    <${Checks} checks=${run.answer.checks} /><${Bracketing} run=${run} /><${Waste} run=${run} />
     ${run.closed && html`<section class="card"><h2>Closed</h2><p>by ${run.closed.by}</p>${run.closed.decisions.map((d) => html`<p key=${d.what + d.subject}>${d.what}, ${d.subject}: <strong>${d.decision}</strong>. ${d.reason}</p>`)}</section>`}
   </div>`;
 }

@@ -12,6 +12,7 @@ import { relativeU } from "./glassware.js";
 import { waitingBottles } from "./home.js";
 
 const BLANKS = 3;
+const BRACKET = 10; // verification after at most ten analyses and at the end: EPA 410.4 rev 2.0, 9.3.4
 const POSITIONS = 25;
 
 const usable = (curve) => !curve.fitted?.error && !curve.fitted?.findings?.some((one_) => one_.severity === "stop");
@@ -24,10 +25,12 @@ export function curvesFor(recipe, today) {
 /** The level of the verification: the middle of the working range, as a round standard. */
 export const checkLevel = (recipe) => (recipe.working_high >= 500 ? "500" : String(Math.round(recipe.working_high / 2)));
 
-/** The tubes of a run, placed by themselves: blanks, verification, each sample's replicates. */
+/** The tubes of a run, placed by themselves: blanks, each sample's replicates, verifications around every ten. */
 export function tubesOf(recipe, bottles, factors, replicates) {
   const tubes = Array.from({ length: BLANKS }, () => ({ role: "blank" }));
-  tubes.push({ role: "verification", expected: checkLevel(recipe) });
+  const verify = () => tubes.push({ role: "verification", expected: checkLevel(recipe) });
+  let since = 0;
+  verify();
   for (const bottle of bottles) {
     const factor = factors[bottle.code];
     const planned = bottle.sampled?.plan;
@@ -35,8 +38,14 @@ export function tubesOf(recipe, bottles, factors, replicates) {
     const steps = (own ?? []).map(({ pipette_ml, flask_ml }) => ({ pipette_ml, flask_ml }));
     const reason = planned?.dilution_factor === factor ? planned.reason : "chosen at the bench";
     const dilution = { factor, steps, relative_u: relativeU(steps) ?? 0.01, reason };
+    if (since && since + replicates > BRACKET) {
+      verify();
+      since = 0;
+    }
     for (let i = 0; i < replicates; i += 1) tubes.push({ role: "sample", bottle: bottle.code, dilution });
+    since += replicates;
   }
+  if (since) verify();
   return tubes.map((tube, i) => ({ position: i + 1, ...tube }));
 }
 
@@ -120,7 +129,7 @@ function PlanForm({ v, set, forget }) {
         <${Select} label="Block" value=${stores.block} options=${options(stores.blocks)} onChoose=${(id) => set("block", id)} />
         <${Select} label="Waste container" value=${stores.container} options=${options(stores.containers)} onChoose=${(id) => set("container", id)} /></section>
       <section class="card stack"><h2>The rack</h2>
-        <p>${tubes.length} of ${room} positions: ${BLANKS} blanks, one verification of ${checkLevel(recipe)} mg/L, ${picked.length} ${picked.length === 1 ? "sample" : "samples"} in ${settings?.replicates ?? 3} tubes each.</p>
+        <p>${tubes.length} of ${room} positions: ${BLANKS} blanks, ${tubes.filter((tube) => tube.role === "verification").length} verifications of ${checkLevel(recipe)} mg/L, ${picked.length} ${picked.length === 1 ? "sample" : "samples"} in ${settings?.replicates ?? 3} tubes each.</p>
         <p class="soft">${plain(tubes.length * recipe.digestion_solution_ml, 1)} mL digestion solution and ${plain(tubes.length * recipe.acid_reagent_ml, 1)} mL acid reagent; order: ${recipe.order.join(", then ")}.</p></section>
       ${words && html`<section class="card wait"><h2>Reminders</h2><ul>${words.reminders.filter((row) => row.stage === "before tubes").map((row) => html`<li key=${row.id}>${row.words}</li>`)}</ul><a href="/emergency">Emergency and first aid</a></section>`}
       <${Problem} words=${problem} />

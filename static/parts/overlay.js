@@ -131,7 +131,7 @@ const KINDS = new Map(Object.entries({
   "run.planned": (layer, { about, at, by }, body) => {
     layer.put("run", about, {
       ...body, state: "planned", tubes: [...body.tubes].sort((a, b) => a.position - b.position).map(newTube), gates: {},
-      heating: null, answer: null, input: null, questions: [], problem: null, waste: null, closed: null,
+      heating: null, answer: null, input: null, questions: [], problem: null, waste: null, bracketing: null, closed: null,
       planned_by: layer.name(by), planned_at: at,
     }, { at });
     for (const code of new Set(body.tubes.map((tube) => tube.bottle).filter(Boolean))) {

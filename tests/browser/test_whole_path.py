@@ -24,7 +24,7 @@ from tests.browser.test_offline import PATIENT_MS, open_field, sign_in, take_sam
 from tests.tools.devices import CODES
 
 CODE = CODES[5]
-READINGS = ("0.011", "0.010", "0,012", "0.2015", "0.179", "0.181", "0.180")
+READINGS = ("0.011", "0.010", "0,012", "0.2015", "0.179", "0.181", "0.180", "0.2021")
 GATES = ("Hood on", "Chloride within the limit", "Order of addition", "Caps tight, tubes sound")
 BEFORE = datetime.now(UTC).replace(microsecond=0) + timedelta(minutes=1)
 
@@ -46,7 +46,7 @@ def plan(page: Page) -> None:
     page.goto("/bench/plan")
     page.get_by_label(re.compile(CODE)).first.check()
     page.get_by_label(f"Dilution of {CODE}").select_option("5")
-    expect(page.get_by_text("7 of 25 positions")).to_be_visible()
+    expect(page.get_by_text("8 of 25 positions")).to_be_visible()
     page.get_by_role("button", name="Save the plan").click()
     page.wait_for_url("**/bench/run/**")
 

@@ -159,6 +159,25 @@ def test_a_run_with_a_curve_of_another_lot_or_an_impossible_rack_is_held(
     assert ready.held(devices.planned(d, "r", CODES[0], **changed)) == ["wrong_plan"]
 
 
+def test_a_failed_verification_holds_what_touches_it(ready: Desk) -> None:
+    """EPA 410.4 rev 2.0, 9.3.4: everything since the last good one is done again."""
+    d = ready.device
+    ready.tell(devices.sample(d, "s", CODES[0]), devices.sample(d, "t", CODES[1]))
+    plan = json.loads(devices.planned(d, "r", CODES[0]))
+    dilution = plan["body"]["tubes"][4]["dilution"]
+    second = [
+        {"position": p, "role": "sample", "bottle": CODES[1], "dilution": dilution} for p in (9, 10, 11)
+    ]
+    checks = [{"position": p, "role": "verification", "expected": "500"} for p in (8, 12)]
+    plan["body"]["tubes"] += [*checks, *second]
+    assert set(ready.held(json.dumps(plan), *devices.heated(d, "r"))) == {None}
+    values = (*devices.READINGS, "0.2010", "0.150", "0.151", "0.149", "0.1500")
+    assert set(ready.held(*devices.read(d, "r", values))) == {None}
+    found = ready.get("run", "r")["bracketing"]
+    assert (found["good"], found["held"], found["open"]) == ([CODES[0]], [CODES[1]], [])
+    assert {"what": "verification", "subject": "3: 500 mg/L"} in ready.get("run", "r")["questions"]
+
+
 def curve(desk: Desk, id_: str, **changed: object) -> str:
     """Return the entry of another calibration like the first."""
     body = json.loads(devices.setting_up(desk.device)[8])["body"]

@@ -213,6 +213,7 @@ class RunCalculated(Body):
     tubes = fields.List(fields.Dict(), required=True)
     results = fields.List(fields.Dict(), required=True)
     waste = fields.Dict(required=True)
+    bracketing = fields.Dict()
 
 
 class Decision(Body):

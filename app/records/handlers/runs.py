@@ -121,6 +121,7 @@ def run_planned(change: Change) -> None:
         "questions": [],
         "problem": None,
         "waste": None,
+        "bracketing": None,
         "closed": None,
         "planned_by": change.name_of(change.entry.by),
         "planned_at": change.entry.at,
@@ -261,6 +262,7 @@ def run_calculated(change: Change) -> None:
         "questions": questions(change.body["answer"]),
         "problem": None,
         "waste": change.body["waste"],
+        "bracketing": change.body.get("bracketing"),
     }
     change.update("run", change.entry.about, run)
     for result in change.body["results"]:
