@@ -6,9 +6,11 @@ point's past teaches, ``sectors`` where a point without a past starts,
 1970-01-01 UTC.
 """
 
+from app.forecast.observations import Now, Observation
 from app.forecast.planning import Plan, Planned, Range, plan
-from app.forecast.posterior import Now, Observation, Posterior, Programme, expected, posterior
+from app.forecast.posterior import Posterior, bounded_readings, expected, posterior
 from app.forecast.predictive import Component, Predictive
+from app.forecast.programme import Programme
 
 __all__ = [
     "Component",
@@ -20,6 +22,7 @@ __all__ = [
     "Predictive",
     "Programme",
     "Range",
+    "bounded_readings",
     "expected",
     "plan",
     "posterior",

@@ -1,115 +1,50 @@
-"""What a point's past teaches about its next sample.
+"""What a point's past teaches about its next sample, small enough for a tablet.
 
-ln COD is regressed on field readings by Bayesian linear regression with a
-normal-inverse-gamma prior: the intercept starts at the sector's level, the
-slopes near zero. Old results fade exponentially with real time; two speeds of
-fading are kept side by side and averaged. A result above or below a bound
-enters with its expectation given the bound (a few rounds of expectation and
-maximisation). The answer is a mixture of Student t distributions of ln COD.
+The kinds of wandering of :mod:`app.forecast.wandering` are drawn together into
+one normal state with their common mean and covariance: on open series that
+changes the forecasts less than the third digit of their log density. With the
+moment and the readings of now the state gives a Student t distribution of ln
+COD; the server and the tablet do that last step alike.
 
-Assumes that a reading acts on ln COD about linearly in its logarithm (pH,
-temperature: in itself) within the range seen at the point; a reading far
-outside it is flagged and its pull is bounded.
-
-References
-----------
-.. [1] Gelman et al., Bayesian Data Analysis, 3rd ed., chapter 14.
-.. [2] West and Harrison, Bayesian Forecasting and Dynamic Models, chapter 2.3 (discounting).
+Assumes that between the last result and now the slopes keep their values; the
+level goes back towards its usual one.
 """
 
 from __future__ import annotations
 
 import math
-from collections.abc import Mapping, Sequence
-from dataclasses import dataclass, field
-from typing import Any, Literal
+from collections.abc import Sequence
+from dataclasses import dataclass
+from typing import Any
 
 import numpy as np
-from scipy import special
 
 from app.errors import InputError
+from app.forecast.observations import (
+    INPUTS,
+    KNOWN_WELL,
+    READINGS,
+    SOURCE,
+    Now,
+    Observation,
+    activity_of,
+    calendar_of,
+    in_order,
+    inputs_of,
+    settle,
+)
 from app.forecast.predictive import Component, Predictive
-from app.forecast.sectors import Level, level_of
+from app.forecast.programme import MEMORIES, Programme
+from app.forecast.wandering import SHORT_DAYS, SHORT_VARIANCE, Filtered, Past, filtered, past_of
 
-State = Literal["ok", "over", "below"]
-
-READINGS = ("conductivity_us_cm", "turbidity_ntu", "ph", "temperature_c")
-LOGARITHMIC = frozenset({"conductivity_us_cm", "turbidity_ntu"})
-SPREADS = {"conductivity_us_cm": 0.5, "turbidity_ntu": 0.8, "ph": 0.6, "temperature_c": 4.0}
-"""Spread of a reading at one point before it is known there: from experience, marked as such."""
-FARTHEST = 3.0
-"""A reading counts for at most this many spreads from its centre."""
-MEMORY_DAYS = (150.0, 900.0)
-PRIOR_DOF = 3.0
-PRIOR_SCALE = 0.45
-SLOPE_SD = 0.35
-ROUNDS = 4
-
-
-@dataclass(frozen=True)
-class Observation:
-    """One past result of a point.
-
-    Parameters
-    ----------
-    days : float
-        When it was collected, days since 1970-01-01 UTC.
-    cod : float
-        mg/L; for ``over`` and ``below`` the bound.
-    state : {"ok", "over", "below"}
-        A value, more than the bound, or less than it.
-    field : mapping of str to float
-        Field readings by the names of :data:`READINGS`; others are ignored.
-    activity : str or None
-        What the discharger was doing.
-    """
-
-    days: float
-    cod: float
-    state: State = "ok"
-    field: Mapping[str, float] = field(default_factory=dict)
-    activity: str | None = None
-
-    def __post_init__(self) -> None:
-        """Refuse a result that is no number above zero."""
-        if not (math.isfinite(self.cod) and self.cod > 0):
-            raise InputError("A COD must be above zero.", {"cod": ["must be above zero"]})
-
-
-@dataclass(frozen=True)
-class Now:
-    """The moment of the next sample and what the meters show."""
-
-    days: float
-    field: Mapping[str, float] = field(default_factory=dict)
-    activity: str | None = None
-
-
-@dataclass(frozen=True)
-class Programme:
-    """What the programme's points have in common: where a sector's points start."""
-
-    levels: Mapping[str, Level] = field(default_factory=dict)
-
-    @classmethod
-    def default(cls) -> Programme:
-        """Return a programme that has learnt nothing yet."""
-        return cls()
-
-    def level(self, sector: str | None) -> Level:
-        """Return where a point of a sector starts, ln COD."""
-        return self.levels.get(sector or "", level_of(sector))
-
-
-@dataclass(frozen=True)
-class Regression:
-    """One normal-inverse-gamma posterior: ln COD on the intercept and the readings."""
-
-    weight: float
-    mean: tuple[float, ...]
-    covariance: tuple[tuple[float, ...], ...]
-    shape: float
-    rate: float
+VERSION = 2
+#: Results further back than this many add nothing that later ones do not say.
+LONGEST = 200
+LONG_DAYS = tuple(sorted({days for days, _ in MEMORIES}))
+WANDER_DAYS = (SHORT_DAYS, *LONG_DAYS)
+STATE = 1 + len(INPUTS) + 5 + len(WANDER_DAYS)
+CONSTANT = 1 + len(INPUTS) + 5
+DIGITS = 7
 
 
 @dataclass(frozen=True)
@@ -118,129 +53,129 @@ class Posterior:
 
     Parameters
     ----------
-    centres, spreads : mapping of str to float
-        Of each reading at this point, on the scale it enters on.
-    regressions : tuple of Regression
-        One for each speed of fading.
     n : int
         Results behind it.
+    last_days : float
+        Moment of the last result, days since 1970; 0 without one.
+    centre, spread, count : tuple of float
+        What is usual here for each of :data:`app.forecast.observations.INPUTS`.
+    missing : tuple of float
+        Variance that each missing input adds, against the noise variance.
+    mean : tuple of float
+        The state of length 15: level at the usual readings, slopes of the
+        inputs, activities, season, and the wandering by :data:`WANDER_DAYS`.
+    covariance : tuple of tuple of float
+        Of the state, (ln mg/L)^2.
+    wander : tuple of float
+        Variance each wandering of the level has when nothing is known of it.
+    noise, dof : float
+        Noise variance and the degrees of freedom it is known with.
     """
 
-    centres: Mapping[str, float]
-    spreads: Mapping[str, float]
-    regressions: tuple[Regression, ...]
     n: int
+    last_days: float
+    centre: tuple[float, ...]
+    spread: tuple[float, ...]
+    count: tuple[float, ...]
+    missing: tuple[float, ...]
+    mean: tuple[float, ...]
+    covariance: tuple[tuple[float, ...], ...]
+    wander: tuple[float, ...]
+    noise: float
+    dof: float
 
     def to_json(self) -> dict[str, Any]:
-        """Return the pack as plain JSON: names as here, numbers in ln(mg/L)."""
+        """Return the pack as plain JSON, numbers to seven digits, the covariance's upper triangle by rows."""
+        upper = [value for i, row in enumerate(self.covariance) for value in row[i:]]
         return {
-            "version": 1,
+            "version": VERSION,
             "n": self.n,
-            "centres": dict(self.centres),
-            "spreads": dict(self.spreads),
+            "last_days": self.last_days,
+            "centre": _short(self.centre),
+            "spread": _short(self.spread),
+            "count": [int(value) for value in self.count],
+            "missing": _short(self.missing),
             "regressions": [
                 {
-                    "weight": one.weight,
-                    "mean": list(one.mean),
-                    "covariance": [list(row) for row in one.covariance],
-                    "shape": one.shape,
-                    "rate": one.rate,
+                    "mean": _short(self.mean),
+                    "covariance": _short(upper),
+                    "wander_days": list(WANDER_DAYS),
+                    "wander": _short(self.wander),
+                    "noise": _short([self.noise])[0],
+                    "dof": _short([self.dof])[0],
                 }
-                for one in self.regressions
             ],
         }
 
+    @classmethod
+    def from_json(cls, told: Any) -> Posterior:
+        """Return the posterior of a pack.
 
-def scaled(name: str, value: float) -> float | None:
-    """Return a reading on the scale it enters on, or None where it has none."""
-    if name in LOGARITHMIC:
-        return math.log(value) if value > 0 else None
-    return value
-
-
-def _centres(history: Sequence[Observation]) -> tuple[dict[str, float], dict[str, float]]:
-    centres, spreads = {}, {}
-    for name in READINGS:
-        seen = [scaled(name, one.field[name]) for one in history if name in one.field]
-        known = [value for value in seen if value is not None]
-        if known:
-            centres[name] = float(np.mean(known))
-            typical = SPREADS[name] ** 2
-            spreads[name] = math.sqrt((3 * typical + len(known) * float(np.var(known))) / (3 + len(known)))
-    return centres, spreads
-
-
-def features(
-    centres: Mapping[str, float], spreads: Mapping[str, float], readings: Mapping[str, float]
-) -> tuple[list[float], list[str]]:
-    """Return the regression's inputs for some readings, and which were far outside their past.
-
-    Parameters
-    ----------
-    centres, spreads : mapping of str to float
-        Of the point.
-    readings : mapping of str to float
-        By the names of :data:`READINGS`; what is missing enters as usual.
-
-    Returns
-    -------
-    list of float
-        One for the intercept, then one for each of :data:`READINGS`.
-    list of str
-        Names whose pull was bounded.
-    """
-    found, bounded = [1.0], []
-    for name in READINGS:
-        value = scaled(name, readings[name]) if name in readings and name in centres else None
-        z = 0.0 if value is None else (value - centres[name]) / spreads[name]
-        if abs(z) > FARTHEST:
-            bounded.append(name)
-        found.append(min(FARTHEST, max(-FARTHEST, z)))
-    return found, bounded
+        Raises
+        ------
+        InputError
+            If it is no pack of this version.
+        """
+        try:
+            if told["version"] != VERSION:
+                raise ValueError
+            one = told["regressions"][0]
+            upper = np.zeros((STATE, STATE))
+            upper[np.triu_indices(STATE)] = one["covariance"]
+            whole = upper + np.triu(upper, 1).T
+            return cls(
+                int(told["n"]),
+                float(told["last_days"]),
+                _tuple(told["centre"]),
+                _tuple(told["spread"]),
+                _tuple(told["count"]),
+                _tuple(told["missing"]),
+                _tuple(one["mean"]),
+                tuple(map(tuple, whole.tolist())),
+                _tuple(one["wander"]),
+                float(one["noise"]),
+                float(one["dof"]),
+            )
+        except (KeyError, IndexError, TypeError, ValueError):
+            words = "is no pack of this version; it is made anew from the point's results"
+            raise InputError("The point's forecast cannot be used.", {"pack": [words]}) from None
 
 
-def _imputed(bound: float, state: State, mean: float, sd: float) -> float:
-    """Return the expectation of ln COD given that it lies beyond a bound, normal approximation."""
-    z = (bound - mean) / sd
-    if state == "over":
-        return mean + sd * math.exp(-0.5 * z * z - 0.9189385332046727 - float(special.log_ndtr(-z)))
-    return mean - sd * math.exp(-0.5 * z * z - 0.9189385332046727 - float(special.log_ndtr(z)))
+def _short(values: Sequence[float]) -> list[float]:
+    return [float(f"{value:.{DIGITS}g}") for value in values]
 
 
-def _regress(
-    x: np.ndarray, y: np.ndarray, weights: np.ndarray, level: Level, share: float
-) -> tuple[Regression, np.ndarray]:
-    prior_mean = np.array([level.mean] + [0.0] * (x.shape[1] - 1))
-    sds = np.array([level.sd / PRIOR_SCALE] + [SLOPE_SD] * (x.shape[1] - 1))
-    prior = np.diag(1.0 / sds**2)
-    precision = prior + (x * weights[:, None]).T @ x
-    covariance = np.linalg.inv(precision)
-    mean = covariance @ (prior @ prior_mean + x.T @ (weights * y))
-    shape = 0.5 * (PRIOR_DOF + float(weights.sum()))
-    drop = mean - prior_mean
-    misfit = float((weights * (y - x @ mean) ** 2).sum() + drop @ prior @ drop)
-    rate = 0.5 * (PRIOR_DOF * PRIOR_SCALE**2 + misfit)
-    found = Regression(
-        share, tuple(mean.tolist()), tuple(tuple(row) for row in covariance.tolist()), shape, rate
-    )
-    return found, mean
+def _tuple(values: Sequence[float]) -> tuple[float, ...]:
+    return tuple(float(value) for value in values)
 
 
-def _one_speed(
-    x: np.ndarray, history: Sequence[Observation], memory: float, level: Level, share: float
-) -> Regression:
-    last = max((one.days for one in history), default=0.0)
-    weights = np.array([math.exp(-(last - one.days) / memory) for one in history])
-    bounds = np.array([math.log(one.cod) for one in history])
-    y = bounds.copy()
-    censored = [i for i, one in enumerate(history) if one.state != "ok"]
-    found, mean = _regress(x, y, weights, level, share)
-    for _ in range(ROUNDS if censored else 0):
-        sd = math.sqrt(found.rate / found.shape)
-        for i in censored:
-            y[i] = _imputed(bounds[i], history[i].state, float(x[i] @ mean), sd)
-        found, mean = _regress(x, y, weights, level, share)
+def _onto_state(centre: np.ndarray) -> np.ndarray:
+    """Return the matrices (4, 15, 20) from the regression's state to the pack's, one a kind of wandering."""
+    k = len(INPUTS)
+    common = np.zeros((STATE, CONSTANT + 2 + k))
+    common[:CONSTANT, :CONSTANT] = np.eye(CONSTANT)
+    common[0, 1 : 1 + k] = centre
+    common[1 : 1 + k, CONSTANT + 2 :] = np.eye(k)
+    common[CONSTANT, CONSTANT] = 1.0
+    found = np.repeat(common[None], len(MEMORIES), axis=0)
+    for kind, (days, _) in enumerate(MEMORIES):
+        found[kind, CONSTANT + 1 + LONG_DAYS.index(days), CONSTANT + 1] = 1.0
     return found
+
+
+def _together(past: Past, known: Filtered) -> tuple[np.ndarray, np.ndarray, list[float]]:
+    """Return mean, covariance and wandering variances of the kinds of wandering taken as one."""
+    onto, weights = _onto_state(past.centre), known.weights[-1]
+    means = np.einsum("kij,kj->ki", onto, known.state)
+    mean = weights @ means
+    apart = means - mean
+    covariance = np.einsum("k,kij->ij", weights, onto @ known.covariance @ onto.transpose(0, 2, 1))
+    covariance += np.einsum("k,ki,kj->ij", weights, apart, apart)
+    wander = [SHORT_VARIANCE * float(weights @ known.noise)]
+    for days in LONG_DAYS:
+        shares = [known.noise[k] * size if at == days else 0.0 for k, (at, size) in enumerate(MEMORIES)]
+        wander.append(float(weights @ np.array(shares)))
+    return mean, covariance, wander
 
 
 def posterior(programme: Programme, sector: str | None, history: Sequence[Observation]) -> Posterior:
@@ -253,19 +188,40 @@ def posterior(programme: Programme, sector: str | None, history: Sequence[Observ
     sector : str or None
         The point's sector.
     history : sequence of Observation
-        Its results, in any order; may be empty.
+        Its results, in any order; may be empty. The last 200 count.
 
     Returns
     -------
     Posterior
     """
-    centres, spreads = _centres(history)
-    inputs = [features(centres, spreads, one.field)[0] for one in history]
-    x = np.array(inputs, dtype=float).reshape(len(history), 1 + len(READINGS))
-    level = programme.level(sector)
-    share = 1.0 / len(MEMORY_DAYS)
-    found = tuple(_one_speed(x, history, memory, level, share) for memory in MEMORY_DAYS)
-    return Posterior(centres, spreads, found, len(history))
+    results = in_order(history)[-LONGEST:]
+    past = past_of(results)
+    known = filtered(past, programme, sector)
+    mean, covariance, wander = _together(past, known)
+    pulls = np.array(programme.pull_mean[: len(INPUTS)])
+    return Posterior(
+        len(history),
+        float(past.days[-1]) if results else 0.0,
+        tuple(past.centre.tolist()),
+        tuple(past.spread.tolist()),
+        tuple(past.count.tolist()),
+        tuple(((pulls * past.spread / programme.noise) ** 2).tolist()),
+        tuple(mean.tolist()),
+        tuple(map(tuple, covariance.tolist())),
+        tuple(wander),
+        float(known.weights[-1] @ known.noise),
+        2.0 * float(known.weights[-1] @ known.final_shape),
+    )
+
+
+def _inputs_now(known: Posterior, now: Now) -> tuple[np.ndarray, np.ndarray, np.ndarray, np.ndarray]:
+    """Return the state's inputs, what a wandering keeps, which inputs are missing and which bounded."""
+    centre, spread = np.array(known.centre), np.array(known.spread)
+    settled, missing, bounded = settle(np.array(inputs_of(now.field)), centre, spread)
+    gap = max(now.days - known.last_days, 0.0) if known.n else math.inf
+    keeps = np.exp(-gap / np.array(WANDER_DAYS))
+    rest = [*activity_of(now.activity), *calendar_of(now.days)]
+    return np.array([1.0, *(settled - centre), *rest, *keeps]), keeps, missing, bounded
 
 
 def expected(known: Posterior, now: Now) -> Predictive:
@@ -282,11 +238,32 @@ def expected(known: Posterior, now: Now) -> Predictive:
     -------
     Predictive
     """
-    inputs, _ = features(known.centres, known.spreads, now.field)
-    x = np.array(inputs)
-    parts = []
-    for one in known.regressions:
-        spread = float(x @ np.array(one.covariance) @ x)
-        scale = math.sqrt(one.rate / one.shape * (1.0 + spread))
-        parts.append(Component(one.weight, float(x @ np.array(one.mean)), scale, 2.0 * one.shape))
-    return Predictive(tuple(parts))
+    inputs, keeps, missing, _ = _inputs_now(known, now)
+    added = float(np.array(known.missing) @ missing)
+    variance = (
+        float(inputs @ np.array(known.covariance) @ inputs)
+        + float(np.array(known.wander) @ (1.0 - keeps**2))
+        + known.noise * (1.0 + added)
+    )
+    return Predictive((Component(1.0, float(inputs @ np.array(known.mean)), math.sqrt(variance), known.dof),))
+
+
+def bounded_readings(known: Posterior, now: Now) -> tuple[str, ...]:
+    """Return the readings of now that lie far outside this point's past, so that their pull is bounded.
+
+    Parameters
+    ----------
+    known : Posterior
+        Of the point.
+    now : Now
+        Moment and readings.
+
+    Returns
+    -------
+    tuple of str
+        Names of :data:`app.forecast.observations.READINGS`; none is named
+        before five readings of it are known.
+    """
+    bounded = _inputs_now(known, now)[3]
+    named = {READINGS[SOURCE[i]] for i in range(len(INPUTS)) if bounded[i] and known.count[i] >= KNOWN_WELL}
+    return tuple(name for name in READINGS if name in named)

@@ -1,9 +1,13 @@
-// The forecast's twin on the tablet: the same mixture of Student t distributions as app/forecast, held to the same
+// The forecast's twin on the tablet: the same Student t distribution of ln COD as app/forecast, held to the same
 // vectors. The pack comes from the server; readings of now are laid on here.
 
 const READINGS = ["conductivity_us_cm", "turbidity_ntu", "ph", "temperature_c"];
-const LOGARITHMIC = new Set(["conductivity_us_cm", "turbidity_ntu"]);
-const FARTHEST = 3;
+const SOURCE = [0, 1, 2, 3, 0, 1];
+const TYPICAL = [0.6, 0.9, 0.5, 0.5, 0.5, 0.5];
+const ACTIVITIES = ["production", "cleaning", "idle"];
+const FARTHEST = 4;
+const KNOWN_WELL = 5;
+const YEAR_DAYS = 365.25;
 
 const LANCZOS = [
   0.99999999999980993, 676.5203681218851, -1259.1392167224028, 771.32342877765313, -176.61502916214059,
@@ -87,25 +91,46 @@ export function predictiveOf(components) {
   };
 }
 
-function scaled(name, value) {
-  if (!LOGARITHMIC.has(name)) return value;
-  return value > 0 ? Math.log(value) : null;
+const logarithm = (value, reference) => (value > 0 ? Math.log(value / reference) : NaN);
+
+/** The inputs that readings make, in the order of the pack; NaN where a reading is missing. */
+function inputsOf(field) {
+  const salt = logarithm(field.conductivity_us_cm, 1000);
+  const solids = logarithm(field.turbidity_ntu, 50);
+  const bend = (value, from) => (Number.isNaN(value) ? value : Math.max(value - from, 0));
+  const ph = (field.ph ?? NaN) - 7.5;
+  const warmth = ((field.temperature_c ?? NaN) - 20) / 10;
+  return [salt, solids, ph, warmth, bend(salt, Math.log(2)), bend(solids, 0)];
 }
 
-/** The regression's inputs for some readings, and the names whose pull was bounded. */
-export function features(pack, field) {
-  const bounded = [];
-  const inputs = [1];
-  for (const name of READINGS) {
-    const value = name in field && name in pack.centres ? scaled(name, field[name]) : null;
-    const z = value === null ? 0 : (value - pack.centres[name]) / pack.spreads[name];
-    if (Math.abs(z) > FARTHEST) bounded.push(name);
-    inputs.push(Math.min(FARTHEST, Math.max(-FARTHEST, z)));
-  }
-  return { inputs, bounded };
+/** Readings less what is usual here; what is missing counts as usual, what is far is drawn back to a bound. */
+export function settle(pack, field) {
+  const bounded = new Set();
+  const missing = [];
+  const off = inputsOf(field).map((value, i) => {
+    missing.push(Number.isNaN(value));
+    if (missing[i]) return 0;
+    const reach = FARTHEST * Math.max(pack.spread[i], 0.3 * TYPICAL[i]);
+    const distance = value - pack.centre[i];
+    if (Math.abs(distance) > reach && pack.count[i] >= KNOWN_WELL) bounded.add(READINGS[SOURCE[i]]);
+    return Math.min(reach, Math.max(-reach, distance));
+  });
+  return { off, missing, bounded: READINGS.filter((name) => bounded.has(name)) };
 }
 
 const dot = (a, b) => a.reduce((sum, x, i) => sum + x * b[i], 0);
+
+/** x'Cx with C given as its upper triangle by rows. */
+function squared(x, upper) {
+  let sum = 0;
+  let at = 0;
+  for (let i = 0; i < x.length; i += 1) {
+    sum += x[i] * x[i] * upper[at];
+    at += 1;
+    for (let j = i + 1; j < x.length; j += 1, at += 1) sum += 2 * x[i] * x[j] * upper[at];
+  }
+  return sum;
+}
 
 /**
  * What is expected of the sample of now.
@@ -113,13 +138,18 @@ const dot = (a, b) => a.reduce((sum, x, i) => sum + x * b[i], 0);
  * @param {{days: number, field: Record<string, number>, activity: string|null}} now
  */
 export function expected(pack, now) {
-  const { inputs, bounded } = features(pack, now.field ?? {});
-  const components = pack.regressions.map((one) => {
-    const spread = dot(inputs, one.covariance.map((row) => dot(row, inputs)));
-    const scale = Math.sqrt((one.rate / one.shape) * (1 + spread));
-    return { weight: one.weight, mean: dot(inputs, one.mean), scale, dof: 2 * one.shape };
-  });
-  return { ...predictiveOf(components), bounded };
+  const { off, missing, bounded } = settle(pack, now.field ?? {});
+  const [one] = pack.regressions;
+  const gap = pack.n ? Math.max(now.days - pack.last_days, 0) : Infinity;
+  const keeps = one.wander_days.map((days) => Math.exp(-gap / days));
+  const turn = (2 * Math.PI * now.days) / YEAR_DAYS;
+  const doing = ACTIVITIES.map((name) => (name === now.activity ? 1 : 0));
+  const x = [1, ...off, ...doing, Math.cos(turn), Math.sin(turn), ...keeps];
+  const added = pack.missing.reduce((sum, variance, i) => sum + (missing[i] ? variance : 0), 0);
+  const wandered = one.wander.reduce((sum, variance, i) => sum + variance * (1 - keeps[i] ** 2), 0);
+  const variance = squared(x, one.covariance) + wandered + one.noise * (1 + added);
+  const found = predictiveOf([{ weight: 1, mean: dot(x, one.mean), scale: Math.sqrt(variance), dof: one.dof }]);
+  return { ...found, bounded };
 }
 
 function objections(range, factor, { chloride, decision_limit: limit }) {

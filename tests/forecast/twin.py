@@ -6,7 +6,7 @@ import json
 from pathlib import Path
 from typing import Any
 
-from app.forecast import Now, Observation, Programme, Range, expected, plan, posterior
+from app.forecast import Now, Observation, Posterior, Programme, Range, expected, plan, posterior
 
 VECTORS = Path(__file__).with_name("vectors.json")
 RANGE = Range("high", 20.0, 900.0, 1998.0, 20.0)
@@ -37,13 +37,14 @@ def cases() -> list[dict[str, Any]]:
         (6, 2300.0, "dairy"),
         (40, 310.0, "textile"),
     ):
-        known = posterior(Programme.default(), sector, history(n, level))
+        pack = posterior(Programme.default(), sector, history(n, level)).to_json()
+        known = Posterior.from_json(pack)
         for readings in ({}, {"conductivity_us_cm": 1500.0, "ph": 6.1}, {"turbidity_ntu": 90000.0}):
             predictive = expected(known, Now(21000.0, readings, None))
             planned = plan(predictive, (RANGE,), DILUTIONS, 3000.0, 1500.0)
             found.append(
                 {
-                    "pack": known.to_json(),
+                    "pack": pack,
                     "field": readings,
                     "quantiles": {p: predictive.quantile(float(p)) for p in ("0.05", "0.25", "0.5", "0.95")},
                     "cdf": {c: predictive.cdf(float(c)) for c in ("20", "900", "4500")},
