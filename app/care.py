@@ -1,4 +1,4 @@
-"""The care of a store on the command line: serve it, rebuild its records, verify its chain.
+"""The care of a store on the command line: serve, rebuild, verify, back up, restore.
 
 What a verb needs is imported when it runs, so that the sums start without it.
 """
@@ -33,6 +33,14 @@ def add_verbs(commands: argparse._SubParsersAction[argparse.ArgumentParser]) -> 
     ):
         one = commands.add_parser(name, help=words)
         _add_store(one)
+        one.set_defaults(run=function)
+    for name, function, words in (
+        ("backup", make_backup, "copy a store into a new file, also while it serves, and verify the copy"),
+        ("restore", restore_backup, "make a store from a copy; devices send again what came after it"),
+    ):
+        one = commands.add_parser(name, help=words)
+        _add_store(one)
+        one.add_argument("file", type=Path, help="the copy")
         one.set_defaults(run=function)
 
 
@@ -112,4 +120,28 @@ def verify_chain(arguments: argparse.Namespace) -> int:
         print(f"Entry {bad} is not as it was written; entries before it are whole.")
         return 1
     print(f"{head.position} entries, each as it was written; head {head.digest}.")
+    return 0
+
+
+def make_backup(arguments: argparse.Namespace) -> int:
+    """Copy the store and say what the copy holds."""
+    from app.journal.backup import backup
+
+    try:
+        head = backup(arguments.store, arguments.file)
+    except WeirbookError as error:
+        return _fail(error, "")
+    print(f"{arguments.file} holds {head.position} entries and was verified; head {head.digest}.")
+    return 0
+
+
+def restore_backup(arguments: argparse.Namespace) -> int:
+    """Make a store from a copy and say what it holds."""
+    from app.journal.backup import restore
+
+    try:
+        head = restore(arguments.file, arguments.store)
+    except WeirbookError as error:
+        return _fail(error, "")
+    print(f"{arguments.store} holds {head.position} entries; devices send again what came after them.")
     return 0

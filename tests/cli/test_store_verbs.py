@@ -6,11 +6,15 @@ import socket
 import sqlite3
 import subprocess
 import sys
+import threading
 from pathlib import Path
 
 import pytest
 
+from app.journal import chain
 from app.journal.store import Store
+from app.records.ledger import Ledger
+from app.records.rebuild import rebuild
 from app.scenarios import load
 
 
@@ -81,3 +85,49 @@ def test_a_folder_that_cannot_be_written_is_told_in_one_sentence(tmp_path: Path)
     assert done.returncode == 1
     assert "cannot be opened" in done.stderr
     assert "Traceback" not in done.stderr
+
+
+def test_a_backup_made_while_the_store_is_written_is_whole_and_restores(folder: Path, tmp_path: Path) -> None:
+    store = Store(folder)
+    ledger, stop = Ledger(store), threading.Event()
+
+    def write() -> None:
+        while not stop.is_set():
+            ledger.state("person.changed", "teague", {"name": "R", "roles": ["inspector"], "active": True})
+
+    writer = threading.Thread(target=write)
+    writer.start()
+    try:
+        made = run("backup", str(tmp_path / "copies" / "one.db"), "--store", str(folder))
+    finally:
+        stop.set()
+        writer.join()
+    assert made.returncode == 0, made.stderr
+    assert "was verified" in made.stdout
+    epoch = store.epoch
+    store.close()
+    again = run("restore", str(tmp_path / "copies" / "one.db"), "--store", str(tmp_path / "restored"))
+    assert again.returncode == 0, again.stderr
+    restored = Store(tmp_path / "restored")
+    assert restored.epoch != epoch
+    assert chain.first_bad(restored.read()) is None
+    assert chain.head(restored.read()).position > 500
+    done = rebuild(restored)
+    assert done.before == done.after
+    restored.close()
+
+
+def test_nothing_is_overwritten_and_a_damaged_copy_is_refused(folder: Path, tmp_path: Path) -> None:
+    copy = tmp_path / "copy.db"
+    assert run("backup", str(copy), "--store", str(folder)).returncode == 0
+    assert "exists already" in run("backup", str(copy), "--store", str(folder)).stderr
+    assert "holds a store already" in run("restore", str(copy), "--store", str(folder)).stderr
+    assert "no store" in run("backup", str(tmp_path / "x.db"), "--store", str(tmp_path / "nothing")).stderr
+    damaged = tmp_path / "damaged.db"
+    data = bytearray(copy.read_bytes())
+    data[len(data) // 2 : len(data) // 2 + 4000] = b"x" * 4000
+    damaged.write_bytes(data)
+    refused = run("restore", str(damaged), "--store", str(tmp_path / "new"))
+    assert refused.returncode == 1
+    assert "no whole copy" in refused.stderr
+    assert not (tmp_path / "new" / "weirbook.db").exists()
