@@ -88,7 +88,8 @@ def _sample(id_: str, sample: Body) -> paper.Sample:
     )
 
 
-def _plain(number: float) -> str:
+def plain(number: float) -> str:
+    """Return a number as paper prints it: its shortest text, without an exponent."""
     return rounding.plain(Decimal(repr(float(number))).normalize())
 
 
@@ -98,11 +99,11 @@ def _method(run: Body, recipe: Body) -> paper.Method:
     return paper.Method(
         recipe=recipe["name"],
         source=recipe["source"],
-        wavelength_nm=_plain(recipe["wavelength_nm"]),
+        wavelength_nm=plain(recipe["wavelength_nm"]),
         minutes=round(float(heating.get("minutes") or recipe["minutes"])),
-        temperature_c=_plain(recipe["temperature_c"]),
-        working_low=_plain(recipe["working_low"]),
-        working_high=_plain(recipe["working_high"]),
+        temperature_c=plain(recipe["temperature_c"]),
+        working_low=plain(recipe["working_low"]),
+        working_high=plain(recipe["working_high"]),
         run=run["name"],
         analysed_from=heating.get("started_at"),
         analysed_to=max(read, default=None),
@@ -114,7 +115,7 @@ def _result(result: Body, used: int) -> paper.Result:
     given = paper.Result(
         status=result["status"],
         reported=result["shown"],
-        reporting_level=_plain(result["reporting_level"]),
+        reporting_level=plain(result["reporting_level"]),
         tubes_used=used,
     )
     if result["status"] != "ok" or result["shown_u"] is None:
@@ -136,7 +137,7 @@ def _verdict(one: Body) -> paper.Verdict:
         rule=one["rule"],
         rule_source=one["rule_source"],
         basis=(one["basis"] or "").replace("_", " "),
-        limit=None if one["limit"] is None else _plain(one["limit"]),
+        limit=None if one["limit"] is None else plain(one["limit"]),
         effective_from=one["effective_from"],
         source=one["source"] or "",
         probability_above_percent=None if above is None else f"{100 * above:.1f}",
@@ -216,12 +217,10 @@ def _dof(writing: Writing, run: Body) -> dict[str, float | None]:
     return {"line": line, "repeatability": policy["repeatability"]["dof"], "bias": policy["bias_dof"]}
 
 
-def _dilution(result: Body) -> paper.Dilution:
-    steps = result["dilution"]["steps"]
-    return paper.Dilution(
-        _plain(result["dilution_factor"]),
-        tuple(paper.Step(_plain(one["pipette_ml"]), _plain(one["flask_ml"])) for one in steps),
-    )
+def dilution_of(dilution: Body) -> paper.Dilution:
+    """Return a dilution as paper prints it."""
+    steps = tuple(paper.Step(plain(one["pipette_ml"]), plain(one["flask_ml"])) for one in dilution["steps"])
+    return paper.Dilution(plain(dilution["factor"]), steps)
 
 
 def gather(
@@ -258,7 +257,7 @@ def gather(
         zone=programme["zone"],
         sample=_sample(result["sample"], sample),
         method=_method(run, recipe),
-        dilution=_dilution(result),
+        dilution=dilution_of(result["dilution"]),
         result=_result(result, len(answer["used"])),
         verdicts=tuple(map(_verdict, result["verdicts"])),
         authorised=paper.Signature(signer, "coordinator", meaning, now),

@@ -11,7 +11,7 @@ from app import __version__
 from app.journal.store import Store
 from app.journal.units import STATIC
 from app.records.ledger import Ledger
-from app.web import certificates, programme, security, sessions, shell, sync
+from app.web import certificates, papers, programme, security, sessions, shell, sync
 from app.web.context import Context
 
 MAX_REQUEST_BYTES = 16 * 1024 * 1024
@@ -53,7 +53,7 @@ def create_app(
     app.extensions["weirbook"] = Context(store, Ledger(store), passwords, shell.build_of(), base_url)
     security.install(app)
     api = security.OneBodyApi(app)
-    for module in (sessions, programme, sync, certificates):
+    for module in (sessions, programme, sync, certificates, papers):
         api.register_blueprint(module.blueprint)
     app.register_blueprint(certificates.public)
     app.register_blueprint(shell.blueprint)

@@ -62,7 +62,7 @@ export function Run({ id }) {
     <p role="status">${runWords(run, Date.now(), zone)} ${run.local && html`<${Where} about=${id} />`}</p>
     <${Rack} run=${run} current=${position} onPick=${reading ? setPicked : undefined} />
     <${Confirmed} run=${run} words=${words} />
-    <p><a href="/bench">What waits</a> · <a href="/emergency">Emergency and first aid</a></p></div>`;
+    <p>${!run.local && html`<a href="/api/papers/run/${encodeURIComponent(id)}.pdf" target="_blank">Run sheet to print</a> · `}<a href="/bench">What waits</a> · <a href="/emergency">Emergency and first aid</a></p></div>`;
   const next = html`<div class="screen stack"><${Next} run=${run} words=${words} position=${position} onPick=${setPicked} /></div>`;
   return html`<${Frame} place="bench" title=${run.name} about=${recipe?.name} wide><div class="sides bench"><aside class="side front" aria-label="Next">${next}</aside><main class="side front" id="main">${rack}</main></div><//>`;
 }

@@ -30,7 +30,7 @@ function Curve({ curve }) {
 }
 
 function Rows({ title, rows, words, what }) {
-  return html`<h2>${title}</h2>${rows.length ? html`<ul class="plain list">${rows.map((row) => html`<li class="item" key=${row.id}><strong>${row.name}</strong><div class="soft">${words(row)}</div></li>`)}</ul>` : html`<${Empty} title="None yet">Add the first one.<//>`}
+  return html`<h2>${title}</h2>${rows.length ? html`<ul class="plain list">${rows.map((row) => html`<li class="item" key=${row.id}><strong>${row.name}</strong><div class="soft">${words(row)}</div>${what === "container" && !row.local && html`<a href="/api/papers/container/${encodeURIComponent(row.id)}.pdf" target="_blank">Waste label to print</a>`}</li>`)}</ul>` : html`<${Empty} title="None yet">Add the first one.<//>`}
     <a class="button" href="/bench/stores/${what}">Add</a>`;
 }
 
@@ -41,6 +41,7 @@ export function Stores() {
   const recipes = useView(() => all("recipe"));
   const curves = useView(() => all("calibration")).reverse();
   return html`<${Frame} place="bench" title="Stores"><div class="stack">
+    <p><a class="button" href="/api/papers/labels.pdf" target="_blank">Bottle labels to print</a> <span class="soft small">a sheet of codes that are free</span></p>
     <h2>Recipes</h2>${recipes.length ? recipes.map((recipe) => html`<${Recipe} key=${recipe.id} recipe=${recipe} />`) : html`<${Empty} title="No recipe yet">Everything a tube can do follows from it.<//>`}
     <a class="button" href="/bench/stores/recipe">Adopt a recipe</a>
     <${Rows} title="Reagent lots" what="lot" rows=${useView(() => all("lot"))} words=${(row) => `${one("recipe", row.recipe)?.name}, made ${row.made_on}, expires ${row.expires_on}`} />

@@ -37,6 +37,15 @@ function Row({ sample }) {
 /** All samples of the person who is here, newest first. */
 export const samplesOf = (person) => all("sample").filter((sample) => !person?.id || sample.by === person.id).reverse();
 
+/** Custody forms of the last hand-overs; the server prints them. */
+function Forms() {
+  const zone = useView(programme)?.zone;
+  const overs = useView(() => all("hand_over")).reverse().slice(0, 5);
+  if (!overs.length) return null;
+  return html`<section class="card"><h2>Custody forms to print</h2><ul class="plain">${overs.map((over) => html`<li key=${over.id}>
+    <a href="/api/papers/hand-over/${encodeURIComponent(over.id)}.pdf" target="_blank">${over.bottles.join(", ")}</a> to ${over.to}, ${dayAndTime(over.at, zone)}</li>`)}</ul></section>`;
+}
+
 /** The list of one's own samples. */
 export function Samples() {
   const person = usePerson();
@@ -48,5 +57,6 @@ export function Samples() {
       <a class="button main" href="/field/hand-over">Hand over</a></div>`}
     ${samples.length === 0 ? html`<${Empty} title="You have taken no sample yet">Choose a point, then “Take the sample”. <a href="/field">All points</a><//>`
       : html`<ul class="plain list">${samples.slice(0, 100).map((sample) => html`<${Row} key=${sample.id} sample=${sample} />`)}</ul>`}
+    <${Forms} />
   </div>`;
 }

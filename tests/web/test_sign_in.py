@@ -30,6 +30,10 @@ NEEDS = {
     "programme.add_person": {"administrator"},
     "certificates.Certificates": {"coordinator"},
     "certificates.pdf": set(ROLES),
+    "papers.labels": set(ROLES),
+    "papers.run_sheet": set(ROLES),
+    "papers.custody": set(ROLES),
+    "papers.waste_label": set(ROLES),
     "sync.push": set(ROLES),
     "sync.pull": set(ROLES),
 }
@@ -37,6 +41,10 @@ REQUESTS = {
     "programme.add_person": ("POST", "/api/people"),
     "certificates.Certificates": ("POST", "/api/certificates"),
     "certificates.pdf": ("GET", "/api/certificates/2031-0001.pdf"),
+    "papers.labels": ("GET", "/api/papers/labels.pdf?count=0"),
+    "papers.run_sheet": ("GET", "/api/papers/run/none.pdf"),
+    "papers.custody": ("GET", "/api/papers/hand-over/none.pdf"),
+    "papers.waste_label": ("GET", "/api/papers/container/none.pdf"),
     "sync.push": ("POST", "/api/push"),
     "sync.pull": ("GET", "/api/pull"),
 }

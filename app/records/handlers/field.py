@@ -93,7 +93,12 @@ def handed_over(change: Change) -> None:
     for code in change.body["bottles"]:
         known = bottle(change, code)
         put_bottle(change, known | {"holder": change.body["to"]})
-    change.put("hand_over", change.entry.about, {**change.body, "by": change.entry.by}, at=change.entry.at)
+    change.put(
+        "hand_over",
+        change.entry.about,
+        {**change.body, "by": change.entry.by, "at": change.entry.at},
+        at=change.entry.at,
+    )
 
 
 @handles("bottle.received")
