@@ -1,18 +1,11 @@
 // The samples of this person: where each one is, and which bottles are still in hand.
 
-import { html, useEffect, useState } from "../parts/html.js";
+import { html } from "../parts/html.js";
 import { dayAndTime, dilution, left } from "../parts/format.js";
 import { Empty, Where } from "../parts/frame.js";
-import { whoIsHere } from "../parts/session.js";
+import { usePerson } from "../parts/person.js";
 import { all, one, programme, useView } from "../parts/view.js";
 import { cardOf, nameOf } from "./point.js";
-
-/** Who is here, or null while that is looked up. */
-export function usePerson() {
-  const [person, setPerson] = useState(null);
-  useEffect(() => { whoIsHere().then(setPerson, () => {}); }, []);
-  return person;
-}
 
 const DAY_MS = 86400000;
 const SHORT_DAYS = 7;

@@ -3,6 +3,7 @@
 
 import { ago, clock } from "./format.js";
 import { html, useEffect, useState } from "./html.js";
+import { usePerson } from "./person.js";
 import { health, sync, watch } from "./sync.js";
 import { programme, useView, waiting, whereIs } from "./view.js";
 
@@ -82,6 +83,16 @@ function Update() {
     <button type="button" class="quiet" onClick=${() => worker.postMessage("update")}>Use it now</button></div>`;
 }
 
+const ROLES = { field: "inspector", bench: "analyst", review: "coordinator" };
+
+/** Say before anything is typed that a place belongs to another role: what is stated there would be held. */
+function RoleNote({ place }) {
+  const person = usePerson();
+  const role = ROLES[place];
+  if (!role || !person?.id || person.roles.includes(role)) return null;
+  return html`<div class="banner">You are here as ${person.roles.join(" and ")}. You may look; what only ${role === "analyst" || role === "inspector" ? "an" : "a"} ${role} may state would be held.</div>`;
+}
+
 /** A screen in its frame. */
 export function Frame({ place, title, about, wide = false, children }) {
   const here = useView(programme);
@@ -91,7 +102,7 @@ export function Frame({ place, title, about, wide = false, children }) {
     <a class="skip" href="#main">To the content</a>
     <header class="bar"><${Mark} /><span class="place">${words}</span><span class="about">${about ?? (here?.example ? `Example: ${here.name}` : here?.name) ?? ""}</span>
       <a class="gear" href="/settings" aria-label="Settings">☰</a></header>
-    <${Banner} /><${Update} />
+    <${Banner} /><${RoleNote} place=${place} /><${Update} />
     ${wide ? children : html`<main class="screen" id="main" tabindex="-1"><h1>${title}</h1>${children}</main>`}
     <nav class="places" aria-label="Places">${PLACES.map(([key, name]) => html`<a key=${key} href="/${key}" aria-current=${key === place ? "page" : undefined}>${name}</a>`)}</nav>
     <${Toast} />
