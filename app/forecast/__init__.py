@@ -7,7 +7,7 @@ point's past teaches, ``sectors`` where a point without a past starts,
 """
 
 from app.forecast.observations import Now, Observation
-from app.forecast.planning import Plan, Planned, Range, plan
+from app.forecast.planning import Plan, Planned, Range, Sample, Shelf, Split, plan
 from app.forecast.posterior import Posterior, bounded_readings, expected, posterior
 from app.forecast.predictive import Component, Predictive
 from app.forecast.programme import Programme
@@ -22,6 +22,9 @@ __all__ = [
     "Predictive",
     "Programme",
     "Range",
+    "Sample",
+    "Shelf",
+    "Split",
     "bounded_readings",
     "expected",
     "plan",

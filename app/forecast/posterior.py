@@ -214,8 +214,25 @@ def posterior(programme: Programme, sector: str | None, history: Sequence[Observ
     )
 
 
-def _inputs_now(known: Posterior, now: Now) -> tuple[np.ndarray, np.ndarray, np.ndarray, np.ndarray]:
-    """Return the state's inputs, what a wandering keeps, which inputs are missing and which bounded."""
+def inputs_now(known: Posterior, now: Now) -> tuple[np.ndarray, np.ndarray, np.ndarray, np.ndarray]:
+    """Return what now means for the state.
+
+    Parameters
+    ----------
+    known : Posterior
+        Of the point.
+    now : Now
+        Moment and readings.
+
+    Returns
+    -------
+    inputs : ndarray of shape (15,)
+        The state's inputs.
+    keeps : ndarray of shape (3,)
+        What each wandering keeps since the last result.
+    missing, bounded : ndarray of bool, shape (6,)
+        Inputs not read, and inputs drawn back to their bound.
+    """
     centre, spread = np.array(known.centre), np.array(known.spread)
     settled, missing, bounded = settle(np.array(inputs_of(now.field)), centre, spread)
     gap = max(now.days - known.last_days, 0.0) if known.n else math.inf
@@ -238,14 +255,35 @@ def expected(known: Posterior, now: Now) -> Predictive:
     -------
     Predictive
     """
-    inputs, keeps, missing, _ = _inputs_now(known, now)
-    added = float(np.array(known.missing) @ missing)
-    variance = (
-        float(inputs @ np.array(known.covariance) @ inputs)
-        + float(np.array(known.wander) @ (1.0 - keeps**2))
-        + known.noise * (1.0 + added)
-    )
-    return Predictive((Component(1.0, float(inputs @ np.array(known.mean)), math.sqrt(variance), known.dof),))
+    inputs, keeps, missing, _ = inputs_now(known, now)
+    mean, scale = moments(known, inputs[None], keeps, missing[None])
+    return Predictive((Component(1.0, float(mean[0]), float(scale[0]), known.dof),))
+
+
+def moments(
+    known: Posterior, inputs: np.ndarray, keeps: np.ndarray, missing: np.ndarray
+) -> tuple[np.ndarray, np.ndarray]:
+    """Return centre and scale of ln COD for several sets of inputs.
+
+    Parameters
+    ----------
+    known : Posterior
+        Of the point.
+    inputs : ndarray of shape (m, 15)
+        Inputs of the state.
+    keeps : ndarray of shape (3,)
+        What each wandering keeps since the last result.
+    missing : ndarray of bool, shape (m, 6)
+        Inputs not read.
+
+    Returns
+    -------
+    tuple of ndarray of shape (m,)
+    """
+    variance = np.einsum("mi,ij,mj->m", inputs, np.array(known.covariance), inputs)
+    variance += float(np.array(known.wander) @ (1.0 - keeps**2))
+    variance += known.noise * (1.0 + missing @ np.array(known.missing))
+    return inputs @ np.array(known.mean), np.sqrt(variance)
 
 
 def bounded_readings(known: Posterior, now: Now) -> tuple[str, ...]:
@@ -264,6 +302,6 @@ def bounded_readings(known: Posterior, now: Now) -> tuple[str, ...]:
         Names of :data:`app.forecast.observations.READINGS`; none is named
         before five readings of it are known.
     """
-    bounded = _inputs_now(known, now)[3]
+    bounded = inputs_now(known, now)[3]
     named = {READINGS[SOURCE[i]] for i in range(len(INPUTS)) if bounded[i] and known.count[i] >= KNOWN_WELL}
     return tuple(name for name in READINGS if name in named)

@@ -13,7 +13,9 @@ References
 from __future__ import annotations
 
 import math
+from collections.abc import Sequence
 from dataclasses import dataclass
+from typing import Protocol
 
 import numpy as np
 from scipy import special
@@ -43,6 +45,13 @@ class Component:
     dof: float
 
 
+class Expected(Protocol):
+    """Anything that says how probable a COD at or below a value is."""
+
+    def below(self, cods_mg_l: Sequence[float]) -> np.ndarray:
+        """Return the probability of a COD at or below each of some values in mg/L."""
+
+
 @dataclass(frozen=True)
 class Predictive:
     """A mixture of Student t distributions of ln COD.
@@ -68,6 +77,15 @@ class Predictive:
         log = math.log(cod_mg_l)
         return float(sum(c.weight * special.stdtr(c.dof, (log - c.mean) / c.scale) for c in self.components))
 
+    def below(self, cods_mg_l: Sequence[float]) -> np.ndarray:
+        """Return the probability of a COD at or below each of some values in mg/L."""
+        values = np.asarray(cods_mg_l, dtype=float)
+        logs = np.log(np.maximum(values, 1e-300))
+        total = np.zeros(len(values))
+        for c in self.components:
+            total += c.weight * special.stdtr(c.dof, (logs - c.mean) / c.scale)
+        return np.where(values > 0, total, 0.0)
+
     def density(self, log_cod: float) -> float:
         """Return the density of ln COD at a value of ln COD."""
         return float(sum(c.weight * _density(c, log_cod) for c in self.components))
@@ -82,8 +100,10 @@ class Predictive:
         """
         if not 0.0 < probability < 1.0:
             raise InputError("A probability lies between 0 and 1.", {"probability": [f"{probability:g}"]})
-        ends = [c.mean + c.scale * special.stdtrit(c.dof, probability) for c in self.components]
-        low, high = float(min(ends)), float(max(ends))
+        ends = [c.mean + c.scale * float(special.stdtrit(c.dof, probability)) for c in self.components]
+        if len(ends) == 1:
+            return math.exp(ends[0])
+        low, high = min(ends), max(ends)
         while high - low > 1e-12 * max(1.0, abs(low)):
             middle = 0.5 * (low + high)
             if middle in (low, high):
@@ -95,6 +115,31 @@ class Predictive:
         return float(
             sum(c.weight * special.stdtr(c.dof, (log_cod - c.mean) / c.scale) for c in self.components)
         )
+
+
+@dataclass(frozen=True)
+class Beyond:
+    """What remains of an expectation once a tube has shown on which side of a bound the COD lies.
+
+    Parameters
+    ----------
+    expected : Predictive
+        Before the tube.
+    bound_mg_l : float
+        COD of the sample that the tube's range ends at.
+    above : bool
+        Whether the COD is above the bound; else below it.
+    """
+
+    expected: Predictive
+    bound_mg_l: float
+    above: bool
+
+    def below(self, cods_mg_l: Sequence[float]) -> np.ndarray:
+        """Return the probability of a COD at or below each of some values, given what the tube showed."""
+        whole, at = self.expected.below(cods_mg_l), self.expected.cdf(self.bound_mg_l)
+        cut = (whole - at) / max(1.0 - at, 1e-12) if self.above else whole / max(at, 1e-12)
+        return np.clip(cut, 0.0, 1.0)
 
 
 def _density(component: Component, log_cod: float) -> float:

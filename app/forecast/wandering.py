@@ -102,6 +102,8 @@ class Filtered:
         Of the state, in (ln mg/L)^2.
     noise, final_shape : ndarray of shape (4,)
         Noise variance and half its degrees of freedom after the last result.
+    usual_noise : ndarray of shape (4,)
+        Noise variance, mean over all results.
     """
 
     mean: np.ndarray
@@ -112,6 +114,7 @@ class Filtered:
     covariance: np.ndarray
     noise: np.ndarray
     final_shape: np.ndarray
+    usual_noise: np.ndarray
 
 
 def past_of(history: Sequence[Observation]) -> Past:
@@ -302,4 +305,5 @@ def filtered(past: Past, programme: Programme, sector: str | None) -> Filtered:
         within * spread[-1][:, None, None],
         spread[-1],
         work.shape[-1],
+        spread.mean(axis=0),
     )

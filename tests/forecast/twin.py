@@ -6,7 +6,7 @@ import json
 from pathlib import Path
 from typing import Any
 
-from app.forecast import Now, Observation, Posterior, Programme, Range, expected, plan, posterior
+from app.forecast import Now, Observation, Posterior, Programme, Range, Sample, expected, plan, posterior
 
 VECTORS = Path(__file__).with_name("vectors.json")
 RANGE = Range("high", 20.0, 900.0, 1998.0, 20.0)
@@ -41,7 +41,7 @@ def cases() -> list[dict[str, Any]]:
         known = Posterior.from_json(pack)
         for readings in ({}, {"conductivity_us_cm": 1500.0, "ph": 6.1}, {"turbidity_ntu": 90000.0}):
             predictive = expected(known, Now(21000.0, readings, None))
-            planned = plan(predictive, (RANGE,), DILUTIONS, 3000.0, 1500.0)
+            planned = plan(predictive, (RANGE,), DILUTIONS, Sample(3000.0, decision_limit=1500.0))
             found.append(
                 {
                     "pack": pack,
