@@ -5,13 +5,29 @@ from __future__ import annotations
 import json
 import sqlite3
 from dataclasses import dataclass
-from typing import Any
+from typing import Any, Protocol
 
 from app.errors import Fields
 from app.journal.append import Hold
 from app.journal.entry import Entry
 
 Body = dict[str, Any]
+
+
+class Stating(Protocol):
+    """What a reaction may do: read records, and state entries as the server."""
+
+    def get(self, type_: str, id_: str) -> Body | None:
+        """Return a record's body, or None."""
+
+    def find(self, type_: str, parent: str | None = None) -> list[tuple[str, Body]]:
+        """Return the records of a type (of one parent)."""
+
+    def latest(self, type_: str, count: int) -> list[Body]:
+        """Return the newest records of a type."""
+
+    def state(self, kind: str, about: str, body: Body) -> Entry:
+        """State one entry as the server."""
 
 
 class Refused(Exception):

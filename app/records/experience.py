@@ -8,13 +8,9 @@ value whose degrees of freedom the programme has set itself is left as it is.
 from __future__ import annotations
 
 from dataclasses import asdict
-from typing import TYPE_CHECKING
 
 from app.chemistry.repeatability import Repeatability, TubeSet, pool
-from app.records.change import Body
-
-if TYPE_CHECKING:
-    from app.records.ledger import Writing
+from app.records.change import Body, Stating
 
 LATEST_RUNS = 100
 
@@ -29,7 +25,7 @@ def tube_sets(run: Body) -> list[TubeSet]:
     return [TubeSet(tuple(cod)) for (code, _), cod in found.items() if len(cod) >= 2 and code not in over]
 
 
-def repeatability(writing: Writing, settings: Body) -> Body:
+def repeatability(writing: Stating, settings: Body) -> Body:
     """Return the repeatability in force as ``calculate`` takes it."""
     given: Body = settings["repeatability"]
     if given["dof"] is not None:

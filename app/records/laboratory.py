@@ -11,7 +11,7 @@ import json
 from collections.abc import Iterable
 from dataclasses import asdict
 from datetime import datetime
-from typing import TYPE_CHECKING, Any
+from typing import Any
 from zoneinfo import ZoneInfo
 
 from app import __version__, verbs
@@ -24,11 +24,8 @@ from app.errors import WeirbookError
 from app.journal import measured
 from app.journal.entry import digest
 from app.records import experience, verdicts
-from app.records.change import Body
+from app.records.change import Body, Stating
 from app.safety import waste
-
-if TYPE_CHECKING:
-    from app.records.ledger import Writing
 
 SOFTWARE = f"weirbook {__version__}"
 _RECIPE = (
@@ -52,14 +49,14 @@ def recipe_input(recipe: Body) -> Body:
     return {name: recipe[name] for name in _RECIPE}
 
 
-def derive_recipe(writing: Writing, id_: str) -> None:
+def derive_recipe(writing: Stating, id_: str) -> None:
     """State what follows from a recipe."""
     recipe = writing.get("recipe", id_) or {}
     derived = verbs.find("recipe")(recipe_input(recipe))
     writing.state("recipe.derived", id_, {"software": SOFTWARE, "derived": derived})
 
 
-def fit_curve(writing: Writing, id_: str) -> None:
+def fit_curve(writing: Stating, id_: str) -> None:
     """State the curve of a calibration; one that cannot be fitted keeps the reason."""
     calibration = writing.get("calibration", id_) or {}
     given = {"standards": standards(calibration), "model": calibration["model"], "weights": "equal"}
@@ -191,7 +188,7 @@ def _tubes_found(run: Body, given: Body, answer: Body, capacity: float) -> list[
     return found
 
 
-def calculate_run(writing: Writing, id_: str) -> None:
+def calculate_run(writing: Stating, id_: str) -> None:
     """State a run's answer and the result of each of its samples."""
     run = writing.get("run", id_) or {}
     recipe = writing.get("recipe", run["recipe"]) or {}
@@ -232,7 +229,7 @@ def _waste(run: Body, recipe: Body) -> Body:
 
 
 def _result(
-    writing: Writing, run_id: str, run: Body, recipe: Body, settings: Body, one: Body, answer: Body
+    writing: Stating, run_id: str, run: Body, recipe: Body, settings: Body, one: Body, answer: Body
 ) -> Body:
     tubes = sample_names(run)[one["sample"]]
     code, factor = tubes[0]["bottle"], tubes[0]["dilution"]["factor"]
@@ -273,7 +270,7 @@ def _shown(one: Body) -> Body:
     return {"shown": (one["reported"] or {}).get("cod"), "shown_u": None}
 
 
-def _verdicts(writing: Writing, result: Body, settings: Body) -> list[Body]:
+def _verdicts(writing: Stating, result: Body, settings: Body) -> list[Body]:
     point = result["point"] and writing.get("point", result["point"])
     if not point or not result["collected_at"]:
         return []

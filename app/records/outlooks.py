@@ -3,15 +3,11 @@
 from __future__ import annotations
 
 from datetime import datetime
-from typing import TYPE_CHECKING
 
 from app import __version__
 from app.forecast import Observation, Programme, posterior
 from app.journal import measured
-from app.records.change import Body
-
-if TYPE_CHECKING:
-    from app.records.ledger import Writing
+from app.records.change import Body, Stating
 
 UNITS = {"conductivity_us_cm": "uS/cm", "turbidity_ntu": "NTU", "ph": "pH", "temperature_c": "Cel"}
 
@@ -48,7 +44,7 @@ def observation(result: Body) -> Observation | None:
     )
 
 
-def look_ahead(writing: Writing, point: str) -> None:
+def look_ahead(writing: Stating, point: str) -> None:
     """State what is expected of a point's next sample."""
     body = writing.get("point", point)
     if body is None:

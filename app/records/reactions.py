@@ -11,14 +11,11 @@ from __future__ import annotations
 
 import logging
 from collections.abc import Callable, Iterator
-from typing import TYPE_CHECKING, Any
+from typing import Any
 
 from app.errors import WeirbookError
 from app.records import laboratory, outlooks
-from app.records.change import Change
-
-if TYPE_CHECKING:
-    from app.records.ledger import Writing
+from app.records.change import Change, Stating
 
 Due = tuple[int, str]
 
@@ -29,7 +26,7 @@ NAMES = ("derive", "fit", "calculate", "look ahead")
 
 log = logging.getLogger("weirbook")
 
-_REACTIONS: dict[int, Callable[[Writing, str], None]] = {
+_REACTIONS: dict[int, Callable[[Stating, str], None]] = {
     DERIVE_RECIPE: laboratory.derive_recipe,
     FIT_CURVE: laboratory.fit_curve,
     CALCULATE_RUN: laboratory.calculate_run,
@@ -61,7 +58,7 @@ def failure(what: Due, error: Exception) -> dict[str, Any]:
     return named | {"error": error.message, "fields": error.fields}
 
 
-def run(what: Due, writing: Writing) -> None:
+def run(what: Due, writing: Stating) -> None:
     """Do what is due."""
     _REACTIONS[what[0]](writing, what[1])
 
