@@ -9,6 +9,7 @@ from flask import current_app
 
 from app.journal.store import Store
 from app.records.ledger import Ledger
+from app.web.limits import Attempts
 
 PROTOCOL = 1
 
@@ -22,6 +23,7 @@ class Context:
     passwords: PasswordHasher
     build: str
     base_url: str
+    attempts: Attempts
 
 
 def context() -> Context:

@@ -13,6 +13,7 @@ from app.journal.units import STATIC
 from app.records.ledger import Ledger
 from app.web import certificates, papers, programme, security, sessions, shell, sync
 from app.web.context import Context
+from app.web.limits import Attempts
 
 MAX_REQUEST_BYTES = 16 * 1024 * 1024
 
@@ -50,7 +51,9 @@ def create_app(
     app.json.sort_keys = False  # type: ignore[attr-defined]
     store = Store(folder)
     passwords = PasswordHasher.from_parameters(profiles.CHEAPEST) if fast_passwords else PasswordHasher()
-    app.extensions["weirbook"] = Context(store, Ledger(store), passwords, shell.build_of(), base_url)
+    app.extensions["weirbook"] = Context(
+        store, Ledger(store), passwords, shell.build_of(), base_url, Attempts()
+    )
     security.install(app)
     api = security.OneBodyApi(app)
     for module in (sessions, programme, sync, certificates, papers):

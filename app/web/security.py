@@ -11,6 +11,7 @@ from flask_smorest import Api
 from werkzeug.exceptions import HTTPException
 
 from app.errors import WeirbookError, flatten
+from app.web.limits import TooMany
 
 log = logging.getLogger("weirbook")
 
@@ -110,7 +111,10 @@ def answer_http(error: HTTPException) -> tuple[Response, int]:
 
 def answer_known(error: WeirbookError) -> tuple[Response, int]:
     """Turn one of our errors into the one body."""
-    return jsonify(error.body()), error.status
+    response = jsonify(error.body())
+    if isinstance(error, TooMany):
+        response.headers["Retry-After"] = str(error.retry_after)
+    return response, error.status
 
 
 def answer_unknown(error: Exception) -> tuple[Response, int]:

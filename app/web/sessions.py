@@ -180,10 +180,12 @@ def get_state() -> dict[str, Any]:
 
 
 def _verify(sign_in: str, password: str) -> str:
+    account, source = sign_in.strip().casefold(), request.remote_addr or ""
+    context().attempts.check(account, source)
     row = (
         context()
         .store.read()
-        .execute("SELECT person, password FROM account WHERE sign_in = ?", (sign_in.casefold(),))
+        .execute("SELECT person, password FROM account WHERE sign_in = ?", (account,))
         .fetchone()
     )
     hashed = (
@@ -194,7 +196,9 @@ def _verify(sign_in: str, password: str) -> str:
     except VerificationError:
         row = None
     if row is None:
+        context().attempts.failed(account, source)
         raise InputError("Sign-in name and password do not agree.", {"password": ["Try again."]})
+    context().attempts.passed(account)
     return str(row[0])
 
 
