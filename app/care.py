@@ -42,6 +42,10 @@ def add_verbs(commands: argparse._SubParsersAction[argparse.ArgumentParser]) -> 
         _add_store(one)
         one.add_argument("file", type=Path, help="the copy")
         one.set_defaults(run=function)
+    one = commands.add_parser("verify-document", help="read a certificate's attached data, without a server")
+    one.add_argument("file", type=Path, help="the PDF")
+    one.add_argument("--base-url", default=f"http://localhost:{PORT}", help="the address printed on it")
+    one.set_defaults(run=verify_document)
 
 
 def _add_store(one: argparse.ArgumentParser) -> None:
@@ -145,3 +149,28 @@ def restore_backup(arguments: argparse.Namespace) -> int:
         return _fail(error, "")
     print(f"{arguments.store} holds {head.position} entries; devices send again what came after them.")
     return 0
+
+
+def verify_document(arguments: argparse.Namespace) -> int:
+    """Say what a certificate's attached data are and whether its pages were made from them; 1 if not."""
+    from app.documents.verify import embedded_data, embedded_json, made_again
+    from app.journal.entry import digest
+
+    try:
+        pdf = arguments.file.read_bytes()
+        data, content = embedded_data(pdf), embedded_json(pdf)
+        same = made_again(pdf, arguments.base_url)
+    except (WeirbookError, OSError) as error:
+        return _fail(error, f"{arguments.file} cannot be read")
+    result = data["result"]
+    print(
+        f"Certificate {data['number']}: {result['reported']} {result['unit']}, bottle {data['sample']['bottle']}."
+    )
+    print(f"Digest of its data: {digest(content)}")
+    if same:
+        print("Its pages were made from exactly these data by this version.")
+        return 0
+    print(
+        "Its pages are not what this version makes of these data: compare them, or use the version it names."
+    )
+    return 1

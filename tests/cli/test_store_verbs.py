@@ -11,11 +11,14 @@ from pathlib import Path
 
 import pytest
 
+from app.documents.certificate import render_certificate
+from app.documents.data import data_digest
 from app.journal import chain
 from app.journal.store import Store
 from app.records.ledger import Ledger
 from app.records.rebuild import rebuild
 from app.scenarios import load
+from tests.documents.example import BASE_URL, EXAMPLE
 
 
 def run(*arguments: str) -> subprocess.CompletedProcess[str]:
@@ -131,3 +134,20 @@ def test_nothing_is_overwritten_and_a_damaged_copy_is_refused(folder: Path, tmp_
     assert refused.returncode == 1
     assert "no whole copy" in refused.stderr
     assert not (tmp_path / "new" / "weirbook.db").exists()
+
+
+def test_a_certificate_is_verified_without_a_server(tmp_path: Path) -> None:
+    path = tmp_path / "c.pdf"
+    path.write_bytes(render_certificate(EXAMPLE, BASE_URL))
+    good = run("verify-document", str(path))
+    assert good.returncode == 0, good.stderr
+    assert f"Certificate {EXAMPLE.number}: {EXAMPLE.result.reported} mg/L" in good.stdout
+    assert data_digest(EXAMPLE) in good.stdout
+    elsewhere = run("verify-document", str(path), "--base-url", "http://other.example")
+    assert elsewhere.returncode == 1
+    assert "not what this version makes" in elsewhere.stdout
+    path.write_bytes(path.read_bytes() + b"x")
+    changed = run("verify-document", str(path))
+    assert (changed.returncode, changed.stdout) == (1, "")
+    assert "was changed since" in changed.stderr
+    assert "cannot be read" in run("verify-document", str(tmp_path / "nothing.pdf")).stderr
