@@ -163,9 +163,8 @@ def verify_document(arguments: argparse.Namespace) -> int:
     except (WeirbookError, OSError) as error:
         return _fail(error, f"{arguments.file} cannot be read")
     result = data["result"]
-    print(
-        f"Certificate {data['number']}: {result['reported']} {result['unit']}, bottle {data['sample']['bottle']}."
-    )
+    bottle = data["sample"]["bottle"]
+    print(f"Certificate {data['number']}: {result['reported']} {result['unit']}, bottle {bottle}.")
     print(f"Digest of its data: {digest(content)}")
     if same:
         print("Its pages were made from exactly these data by this version.")
