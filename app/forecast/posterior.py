@@ -45,6 +45,7 @@ WANDER_DAYS = (SHORT_DAYS, *LONG_DAYS)
 STATE = 1 + len(INPUTS) + 5 + len(WANDER_DAYS)
 CONSTANT = 1 + len(INPUTS) + 5
 DIGITS = 7
+NOTHING = 1e-12
 
 
 @dataclass(frozen=True)
@@ -142,7 +143,7 @@ class Posterior:
 
 
 def _short(values: Sequence[float]) -> list[float]:
-    return [float(f"{value:.{DIGITS}g}") for value in values]
+    return [float(f"{value:.{DIGITS}g}") if abs(value) > NOTHING else 0.0 for value in values]
 
 
 def _tuple(values: Sequence[float]) -> tuple[float, ...]:

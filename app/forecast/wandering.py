@@ -26,6 +26,7 @@ from __future__ import annotations
 import math
 from collections.abc import Sequence
 from dataclasses import dataclass
+from functools import lru_cache
 
 import numpy as np
 from scipy import special
@@ -48,7 +49,7 @@ PRIOR_SHAPE = 2.0
 SPREAD_KEEPS, SCORE_KEEPS = 0.97, 0.98
 OUTLIER_DOF = 12.0
 LOWEST_SCORE = -8.0
-ROUNDS, ROUNDS_WITH_BOUNDS = 2, 5
+ROUNDS, ROUNDS_WITH_BOUNDS = 2, 4
 HALF_LOG_TWO_PI = 0.9189385332046727
 
 
@@ -168,12 +169,15 @@ def _links(past: Past, variance: np.ndarray) -> tuple[np.ndarray, np.ndarray]:
     return np.stack(links), np.array(sizes)
 
 
+@lru_cache(maxsize=32)
+def _fading(n: int, keeps: float) -> np.ndarray:
+    steps = np.arange(n + 1)[:, None] - 1 - np.arange(n)[None, :]
+    return np.where(steps >= 0, keeps ** np.maximum(steps, 0), 0.0)
+
+
 def _faded(values: np.ndarray, keeps: float) -> np.ndarray:
     """Return, before each row and after the last, the sum of rows faded by how many came later."""
-    n = len(values)
-    steps = np.arange(n + 1)[:, None] - 1 - np.arange(n)[None, :]
-    weights = np.where(steps >= 0, keeps ** np.maximum(steps, 0), 0.0)
-    total: np.ndarray = weights @ values
+    total: np.ndarray = _fading(len(values), keeps) @ values
     return total
 
 
@@ -282,7 +286,7 @@ def filtered(past: Past, programme: Programme, sector: str | None) -> Filtered:
     Filtered
     """
     work = _Rounds(past, programme, sector)
-    for _ in range(ROUNDS - 1 if work.free.all() else ROUNDS_WITH_BOUNDS):
+    for _ in range((ROUNDS if work.free.all() else ROUNDS_WITH_BOUNDS) - 1):
         work.factorise(False)
         work.judge()
     rows = work.factorise(True)
