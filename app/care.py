@@ -9,6 +9,9 @@ import argparse
 import logging
 import os
 import sys
+from collections.abc import Callable
+from contextlib import closing
+from functools import wraps
 from pathlib import Path
 from typing import TYPE_CHECKING
 
@@ -18,6 +21,8 @@ if TYPE_CHECKING:
     from app.journal.store import Store
 
 PORT = 8700
+
+Verb = Callable[[argparse.Namespace], int]
 
 
 def add_verbs(commands: argparse._SubParsersAction[argparse.ArgumentParser]) -> None:
@@ -52,6 +57,21 @@ def _add_store(one: argparse.ArgumentParser) -> None:
     one.add_argument("--store", type=Path, default=Path("data"), help="the store's folder")
 
 
+def _told(verb: Verb) -> Verb:
+    """Tell an error in its own words and return 1, with no traceback."""
+
+    @wraps(verb)
+    def telling(arguments: argparse.Namespace) -> int:
+        try:
+            return verb(arguments)
+        except WeirbookError as error:
+            print(error.message, file=sys.stderr)
+            return 1
+
+    return telling
+
+
+@_told
 def serve(arguments: argparse.Namespace) -> int:
     """Serve until the process is ended."""
     from waitress.server import create_server
@@ -63,28 +83,21 @@ def serve(arguments: argparse.Namespace) -> int:
     logging.basicConfig(level=logging.WARNING, format="%(message)s")
     address = f"http://localhost:{arguments.port}"
     fast = os.environ.get("WEIRBOOK_FAST_PASSWORDS") == "1"
+    app = create_app(arguments.store, address, fast_passwords=fast)
+    store = app.extensions["weirbook"].store
     try:
-        app = create_app(arguments.store, address, fast_passwords=fast)
-        store = app.extensions["weirbook"].store
         if arguments.example and chain.head(store.read()).position == 0:
             load(store)
         server = create_server(app, host="127.0.0.1", port=arguments.port, threads=8, ident=None)
-    except (WeirbookError, OSError) as error:
-        return _fail(error, f"Port {arguments.port} cannot be used")
-    print(f"Weirbook serves {arguments.store} on {address}", flush=True)
-    try:
+        print(f"Weirbook serves {arguments.store} on {address}", flush=True)
         server.run()
+    except OSError as error:
+        raise WeirbookError(f"Port {arguments.port} cannot be used: {error}.") from error
     except KeyboardInterrupt:
         pass
     finally:
         store.close()
     return 0
-
-
-def _fail(error: Exception, about: str) -> int:
-    words = error.message if isinstance(error, WeirbookError) else f"{about}: {error}."
-    print(words, file=sys.stderr)
-    return 1
 
 
 def _open(folder: Path) -> Store:
@@ -95,31 +108,25 @@ def _open(folder: Path) -> Store:
     return Store(folder)
 
 
+@_told
 def rebuild_records(arguments: argparse.Namespace) -> int:
     """Derive every record again and say whether they came out the same."""
     from app.records.rebuild import rebuild
 
-    try:
-        store = _open(arguments.store)
+    with closing(_open(arguments.store)) as store:
         done = rebuild(store)
-    except WeirbookError as error:
-        return _fail(error, "")
-    store.close()
     same = "the same as before" if done.before == done.after else "different from before"
     print(f"{done.entries} entries replayed; the records are {same} ({done.after[:16]}).")
     return 0
 
 
+@_told
 def verify_chain(arguments: argparse.Namespace) -> int:
     """Walk the chain; 1 where an entry is bad."""
     from app.journal import chain
 
-    try:
-        store = _open(arguments.store)
-    except WeirbookError as error:
-        return _fail(error, "")
-    bad, head = chain.first_bad(store.read()), chain.head(store.read())
-    store.close()
+    with closing(_open(arguments.store)) as store:
+        bad, head = chain.first_bad(store.read()), chain.head(store.read())
     if bad is not None:
         print(f"Entry {bad} is not as it was written; entries before it are whole.")
         return 1
@@ -127,30 +134,27 @@ def verify_chain(arguments: argparse.Namespace) -> int:
     return 0
 
 
+@_told
 def make_backup(arguments: argparse.Namespace) -> int:
     """Copy the store and say what the copy holds."""
     from app.journal.backup import backup
 
-    try:
-        head = backup(arguments.store, arguments.file)
-    except WeirbookError as error:
-        return _fail(error, "")
+    head = backup(arguments.store, arguments.file)
     print(f"{arguments.file} holds {head.position} entries and was verified; head {head.digest}.")
     return 0
 
 
+@_told
 def restore_backup(arguments: argparse.Namespace) -> int:
     """Make a store from a copy and say what it holds."""
     from app.journal.backup import restore
 
-    try:
-        head = restore(arguments.file, arguments.store)
-    except WeirbookError as error:
-        return _fail(error, "")
+    head = restore(arguments.file, arguments.store)
     print(f"{arguments.store} holds {head.position} entries; devices send again what came after them.")
     return 0
 
 
+@_told
 def verify_document(arguments: argparse.Namespace) -> int:
     """Say what a certificate's attached data are and whether its pages were made from them; 1 if not."""
     from app.documents.verify import embedded_data, embedded_json, made_again
@@ -158,18 +162,14 @@ def verify_document(arguments: argparse.Namespace) -> int:
 
     try:
         pdf = arguments.file.read_bytes()
-        data, content = embedded_data(pdf), embedded_json(pdf)
-        same = made_again(pdf, arguments.base_url)
-    except (WeirbookError, OSError) as error:
-        return _fail(error, f"{arguments.file} cannot be read")
-    result = data["result"]
-    bottle = data["sample"]["bottle"]
+    except OSError as error:
+        raise WeirbookError(f"{arguments.file} cannot be read: {error.strerror}.") from error
+    data, content = embedded_data(pdf), embedded_json(pdf)
+    result, bottle = data["result"], data["sample"]["bottle"]
     print(f"Certificate {data['number']}: {result['reported']} {result['unit']}, bottle {bottle}.")
     print(f"Digest of its data: {digest(content)}")
-    if same:
+    if made_again(pdf, arguments.base_url):
         print("Its pages were made from exactly these data by this version.")
         return 0
-    print(
-        "Its pages are not what this version makes of these data: compare them, or use the version it names."
-    )
+    print("Its pages are not what this version makes of these data: compare them by eye.")
     return 1
