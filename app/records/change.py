@@ -14,6 +14,12 @@ from app.journal.entry import Entry
 Body = dict[str, Any]
 
 
+def count(connection: sqlite3.Connection, type_: str) -> int:
+    """Return how many records of a type there are."""
+    row = connection.execute("SELECT count(*) FROM record WHERE type = ?", (type_,)).fetchone()
+    return int(row[0])
+
+
 class Stating(Protocol):
     """What a reaction may do: read records, and state entries as the server."""
 
@@ -25,6 +31,9 @@ class Stating(Protocol):
 
     def latest(self, type_: str, count: int) -> list[Body]:
         """Return the newest records of a type."""
+
+    def count(self, type_: str) -> int:
+        """Return how many records of a type there are."""
 
     def state(self, kind: str, about: str, body: Body) -> Entry:
         """State one entry as the server."""

@@ -24,7 +24,7 @@ from app.journal.entry import Entry, parse, reopen
 from app.journal.identity import uuid7
 from app.journal.store import Store
 from app.records import handlers, reactions
-from app.records.change import Body, Change, Refused, find, get, latest
+from app.records.change import Body, Change, Refused, count, find, get, latest
 
 SYSTEM = "system"
 SERVER_DEVICE = "server"
@@ -113,6 +113,10 @@ class Writing:
     def latest(self, type_: str, count: int) -> list[Body]:
         """Return the newest records of a type."""
         return latest(self.connection, type_, count)
+
+    def count(self, type_: str) -> int:
+        """Return how many records of a type there are."""
+        return count(self.connection, type_)
 
     def received_at(self) -> str:
         """Return the present in UTC, as entries carry it."""

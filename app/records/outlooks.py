@@ -6,9 +6,12 @@ from datetime import datetime
 
 from app import __version__
 from app.forecast import Observation, Programme, posterior
+from app.forecast.learning import Point, learn
 from app.journal import measured
 from app.records.change import Body, Stating
 
+SOFTWARE = f"weirbook {__version__}"
+GROWTH, FEW = 1.1, 10
 UNITS = {"conductivity_us_cm": "uS/cm", "turbidity_ntu": "NTU", "ph": "pH", "temperature_c": "Cel"}
 
 
@@ -44,18 +47,42 @@ def observation(result: Body) -> Observation | None:
     )
 
 
+def history_of(writing: Stating, point: str) -> list[Observation]:
+    """Return what a point's results teach, in the order of their times."""
+    results = (result for _, result in writing.find("result", point))
+    return [one for one in map(observation, results) if one is not None]
+
+
+def learn_again(writing: Stating, about: str) -> None:
+    """State what the points have in common, once a good part of the results is new."""
+    known: Body = writing.get("learned", about) or {"n": 0}
+    n = writing.count("result")
+    if n < GROWTH * known["n"] + FEW:
+        return
+    points = [
+        Point(body["sector"], tuple(history_of(writing, point))) for point, body in writing.find("point")
+    ]
+    stated = {"software": SOFTWARE, "programme": learn(points).to_json(), "n": n}
+    writing.state("programme.learned", about, stated)
+
+
+def programme(writing: Stating) -> Programme:
+    """Return what the programme has learnt, or the beginning."""
+    known = writing.get("learned", "programme")
+    return Programme.from_json(known["programme"]) if known else Programme.default()
+
+
 def look_ahead(writing: Stating, point: str) -> None:
     """State what is expected of a point's next sample."""
     body = writing.get("point", point)
     if body is None:
         return
-    results = [result for _, result in writing.find("result", point)]
-    history = [one for one in map(observation, results) if one is not None]
-    pack = posterior(Programme.default(), body["sector"], history).to_json()
+    history = history_of(writing, point)
+    results = writing.find("result", point)
     stated = {
-        "software": f"weirbook {__version__}",
-        "pack": pack,
+        "software": SOFTWARE,
+        "pack": posterior(programme(writing), body["sector"], history).to_json(),
         "n": len(history),
-        "last_at": results[-1]["collected_at"] if results else None,
+        "last_at": results[-1][1]["collected_at"] if results else None,
     }
     writing.state("outlook.computed", point, stated)

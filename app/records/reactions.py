@@ -19,10 +19,10 @@ from app.records.change import Change, Stating
 
 Due = tuple[int, str]
 
-DERIVE_RECIPE, FIT_CURVE, CALCULATE_RUN, LOOK_AHEAD = range(4)
+DERIVE_RECIPE, FIT_CURVE, CALCULATE_RUN, LEARN, LOOK_AHEAD = range(5)
 AT_ONCE = (DERIVE_RECIPE, FIT_CURVE, CALCULATE_RUN)
-ALL = (*AT_ONCE, LOOK_AHEAD)
-NAMES = ("derive", "fit", "calculate", "look ahead")
+ALL = (*AT_ONCE, LEARN, LOOK_AHEAD)
+NAMES = ("derive", "fit", "calculate", "learn", "look ahead")
 
 log = logging.getLogger("weirbook")
 
@@ -30,6 +30,7 @@ _REACTIONS: dict[int, Callable[[Stating, str], None]] = {
     DERIVE_RECIPE: laboratory.derive_recipe,
     FIT_CURVE: laboratory.fit_curve,
     CALCULATE_RUN: laboratory.calculate_run,
+    LEARN: outlooks.learn_again,
     LOOK_AHEAD: outlooks.look_ahead,
 }
 
@@ -44,6 +45,7 @@ def due(change: Change) -> Iterator[Due]:
     elif kind == "readings.finished" or (kind == "tube.excluded" and _calculated(change)):
         yield CALCULATE_RUN, about
     elif kind in ("point.registered", "result.recorded", "result.reviewed", "run.calculated"):
+        yield LEARN, "programme"
         yield from ((LOOK_AHEAD, point) for point in _points(change))
 
 

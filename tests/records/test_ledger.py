@@ -162,3 +162,28 @@ def test_a_refused_statement_of_the_server_leaves_nothing(ready: Desk) -> None:
         ready.ledger.state("person.changed", "nobody", {"name": "N", "roles": [], "active": True})
     assert chain.head(ready.store.read()) == head
     assert find(ready.store.read(), "held") == []
+
+
+def test_what_points_have_in_common_is_learnt_when_many_results_are_new(ready: Desk) -> None:
+    d = ready.device
+
+    def tell(first: int, last: int) -> int:
+        texts = []
+        for i in range(first, last):
+            body: dict[str, Any] = {"point": "outlet-b", "expanded_u": None, "field": {}, "activity": None}
+            body |= {
+                "collected_at": f"2029-{1 + i // 28:02d}-{1 + i % 28:02d}T08:00:00-07:00",
+                "source": "book",
+            }
+            body["cod"] = devices.measured(f"{700 + 9 * i}", "mg/L")
+            texts.append(d.make("result.recorded", f"old-{i}", body))
+        assert set(ready.held(*texts)) == {None}
+        return len([1 for row in chain.rows(ready.store.read()) if b'"programme.learned"' in row.raw])
+
+    assert tell(0, 9) == 0
+    assert tell(9, 12) == 1
+    assert tell(12, 14) == 1
+    assert tell(14, 40) == 2
+    assert ready.get("learned", "programme")["n"] == 40
+    done = rebuild(ready.store)
+    assert done.before == done.after

@@ -56,6 +56,15 @@ class SumFailed(Body):
     fields_ = fields.Dict(data_key="fields", required=True)
 
 
+@kind("programme.learned", SERVER)
+class ProgrammeLearned(Body):
+    """The server learnt what the programme's points have in common."""
+
+    software = Text(required=True)
+    programme = fields.Dict(required=True)
+    n = fields.Integer(required=True, strict=True)
+
+
 @kind("outlook.computed", SERVER)
 class OutlookComputed(Body):
     """What the server expects of a point's next sample, from all it knows."""

@@ -80,6 +80,12 @@ def sum_failed(change: Change) -> None:
     change.put("problem", f"{change.body['what']}:{change.entry.about}", problem, at=change.entry.at)
 
 
+@handles("programme.learned")
+def programme_learned(change: Change) -> None:
+    """What the points have in common; expectations made from now on begin with it."""
+    change.put("learned", change.entry.about, change.body)
+
+
 @handles("outlook.computed")
 def outlook_computed(change: Change) -> None:
     """What to expect at a point, and what it was made from."""
