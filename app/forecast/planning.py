@@ -3,8 +3,9 @@
 A run that misses is repeated: with probability p of being in range, a plan of
 r tubes needs r/p tubes in expectation. The plan with the fewest is chosen; of
 equals, the one with the lower risk of going over range, because a green tube
-gives no number at all. Two dilutions digested side by side take 2r tubes and
-miss only where both do; they are offered where that needs fewer.
+gives no number at all. Two dilutions digested side by side, with the two tubes
+each that can be compared (half of r, if that is more), miss only where both
+do; they are offered where that needs fewer tubes.
 """
 
 from __future__ import annotations
@@ -118,6 +119,8 @@ class Split:
     ----------
     plans : tuple of int
         Their places in the list of plans.
+    tubes_each : int
+        Tubes at each dilution.
     p_in_range : float
         That at least one is in range.
     expected_tubes : float
@@ -125,6 +128,7 @@ class Split:
     """
 
     plans: tuple[int, int]
+    tubes_each: int
     p_in_range: float
     expected_tubes: float
 
@@ -216,9 +220,11 @@ def _split(plans: Sequence[Plan], best: Plan | None, replicates: int) -> Split |
     together = np.triu(inside[:, None] + inside - np.maximum(shared, 0.0), 1)
     i, j = divmod(int(np.argmax(together)), len(places))
     chance = float(together[i, j])
-    if chance <= 2.0 * best.p_in_range + 1e-9:
+    each = max(min(replicates, 2), math.ceil(replicates / 2))
+    tubes = 2 * each / max(chance, LEAST_CHANCE)
+    if tubes >= best.expected_tubes * (1 - 1e-9):
         return None
-    return Split((places[i], places[j]), chance, 2 * replicates / chance)
+    return Split((places[i], places[j]), each, chance, tubes)
 
 
 def plan(

@@ -51,6 +51,13 @@ SECTORS: dict[str, Sector] = {
     "metal finishing": Sector(50, 250, 1500, "memory"),
     "coolant": Sector(5000, 30000, 150000, "memory"),
     "coke oven": Sector(500, 3500, 6000, "one plant 2018; memory"),
+    "secondary effluent": Sector(20, 45, 125, "memory"),
+    "olive mill": Sector(40000, 90000, 200000, "memory; single mills in papers"),
+    "agrochemical": Sector(5000, 9000, 15000, "range: table of 2021; typical: memory"),
+    "tank cleaning": Sector(1000, 6000, 30000, "memory"),
+    "paint": Sector(1000, 10000, 50000, "memory"),
+    "restaurants": Sector(500, 1500, 5000, "memory"),
+    "biodiesel": Sector(20000, 60000, 500000, "memory"),
 }
 UNKNOWN = Sector(100, 1500, 22000, "a wide guess for a sector that is not in the table: memory")
 
@@ -76,6 +83,6 @@ def level_of(sector: str | None) -> Level:
     Level
         Of ln COD with COD in mg/L.
     """
-    one = SECTORS.get((sector or "").lower(), UNKNOWN)
+    one = SECTORS.get((sector or "").strip().lower(), UNKNOWN)
     spread = (math.log(one.high) - math.log(one.low)) / (2 * 1.6448536269514722)
     return Level(math.log(one.typical), spread)

@@ -44,7 +44,7 @@ from app.forecast.programme import MEMORIES, Programme
 
 SHORT_DAYS, SHORT_VARIANCE = 40.0, 0.2
 SLOPE_DAYS, SLOPE_VARIANCE = 1500.0, 0.1
-PRIOR_SHAPE = 2.0
+PRIOR_SHAPE = 1.0
 #: What a result's say keeps with each later one: about the spread, about the kinds of wandering.
 SPREAD_KEEPS, SCORE_KEEPS = 0.97, 0.98
 OUTLIER_DOF = 12.0

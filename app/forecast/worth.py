@@ -1,7 +1,7 @@
 """What one more field reading would add, and the dilution after a tube that missed.
 
 Before leaving the manhole: for each reading not taken, the chance of being in
-range is averaged over what the meter would probably show (seven Gauss-Hermite
+range is averaged over what the meter would probably show (21 Gauss-Hermite
 points of what is usual here), each time with the dilution that would then be
 chosen.
 
@@ -26,7 +26,7 @@ from app.forecast.predictive import Beyond, Predictive
 
 #: A reading is named from this gain on.
 LEAST_GAIN = 0.005
-NODES, _SHARES = np.polynomial.hermite_e.hermegauss(7)
+NODES, _SHARES = np.polynomial.hermite_e.hermegauss(21)
 SHARES = _SHARES / _SHARES.sum()
 #: Input of each reading, its bend where it has one, and where the bend begins on the input's scale.
 BEND = {0: (4, float(np.log(2.0))), 1: (5, 0.0)}
