@@ -2,10 +2,10 @@
 
 from __future__ import annotations
 
+import http.client
 import http.cookiejar
 import json
 import threading
-import urllib.error
 import urllib.request
 from collections.abc import Iterator
 from pathlib import Path
@@ -58,7 +58,7 @@ class Sender:
                 texts = [device.make("discharger.registered", f"f{self.count}", body)]
                 told = self.ask("/api/push", common | {"entries": texts})
                 self.acknowledged += [one["id"] for one in told["answers"]]
-        except (OSError, urllib.error.URLError, ValueError):
+        except (OSError, http.client.HTTPException, ValueError):
             return
 
 
