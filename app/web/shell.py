@@ -5,6 +5,7 @@ from __future__ import annotations
 import hashlib
 import json
 from dataclasses import asdict
+from functools import cache
 from pathlib import Path
 
 from flask import Blueprint, Response, jsonify, send_file
@@ -22,6 +23,7 @@ blueprint = Blueprint("shell", __name__)
 _KINDS = {".js", ".css", ".html", ".json", ".svg", ".png", ".webmanifest"}
 _OUTSIDE = {"sw.js", "index.html"}
 _PICTURES = "pictures"
+WORDS = "/words.json"
 
 
 def shell_files(folder: Path = STATIC) -> list[str]:
@@ -33,7 +35,7 @@ def shell_files(folder: Path = STATIC) -> list[str]:
 
 def build_of(folder: Path = STATIC) -> str:
     """Return the digest that names this build of the client."""
-    total = hashlib.sha256(__version__.encode())
+    total = hashlib.sha256(_words_text().encode())
     for path in sorted(p for p in folder.rglob("*") if p.suffix in _KINDS):
         total.update(path.relative_to(folder).as_posix().encode())
         total.update(path.read_bytes())
@@ -45,7 +47,7 @@ def service_worker() -> Response:
     """The service worker of this build: its name and the list of its files."""
     text = (STATIC / "sw.js").read_text(encoding="utf-8")
     text = text.replace('"__BUILD__"', json.dumps(context().build))
-    text = text.replace("/*__SHELL__*/[]", json.dumps(["/", *shell_files()]))
+    text = text.replace("/*__SHELL__*/[]", json.dumps(["/", WORDS, *shell_files()]))
     return Response(text, mimetype="text/javascript", headers={"Cache-Control": "no-cache"})
 
 
@@ -55,11 +57,17 @@ def manifest() -> Response:
     return send_file(STATIC / "manifest.webmanifest", mimetype="application/manifest+json")
 
 
-@blueprint.get("/api/words")
+@blueprint.get(WORDS)
 def words() -> Response:
-    """Gates, hazards, emergency lines and published recipes: the same on every side, without signing in."""
+    """Gates, hazards, emergency lines and published recipes: part of the client, without signing in."""
+    headers = {"Cache-Control": "no-cache"}
+    return Response(_words_text(), mimetype="application/json", headers=headers)
+
+
+@cache
+def _words_text() -> str:
     recipes = [_form(one) for one in STANDARD_RECIPES]
-    return jsonify({"weirbook": __version__, **client_pack(), "recipes": recipes})
+    return json.dumps({"weirbook": __version__, **client_pack(), "recipes": recipes})
 
 
 def _form(one: StandardRecipe) -> dict[str, str]:

@@ -36,7 +36,7 @@ function Calculated({ run, words }) {
 }
 
 function Next({ run, words, position, onPick }) {
-  if (!words) return html`<${Empty} title="The words of safety are not on this tablet yet">They come with the first contact to the server; without them no gate can be confirmed.<//>`;
+  if (!words) return html`<${Empty} title="The words of safety could not be read">Reload this page; without them no gate can be confirmed.<//>`;
   if (run.state === "planned") {
     const [gate] = openGates(words, run, BEFORE_HEATING);
     return gate ? html`<${Gate} key=${gate.id} gate=${gate} run=${run} words=${words} />` : html`<${Start} run=${run} />`;

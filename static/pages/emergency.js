@@ -11,7 +11,7 @@ export function Emergency() {
     <h1>Emergency and first aid</h1>
     ${words ? words.emergency.map((part) => html`<section class="card stop" key=${part.id}><h2>${part.title}</h2>
       <ul>${part.lines.map((line) => html`<li key=${line}>${line}</li>`)}</ul></section>`)
-      : html`<p class="card stop"><strong>Call the emergency number posted at your site.</strong> The lines kept here load with the first contact to the server.</p>`}
+      : html`<p class="card stop"><strong>Call the emergency number posted at your site.</strong> The lines kept here could not be read; reload this page.</p>`}
     ${words && html`<p class="soft">${words.deferral}</p>`}
     <p><a class="button" href="/field">Back</a></p>
   </main>`;

@@ -1,19 +1,23 @@
-// Gates, hazards and emergency lines: the server's words, kept on the device, shown without signing in.
+// Gates, hazards and emergency lines: part of the shell, so at hand wherever the client opens, without signing in.
 
-import { getMeta, putMeta } from "./db.js";
-import { ask } from "./session.js";
 import { useEffect, useState } from "./html.js";
 
-/** The words kept on this device; asked for anew when the server answers. */
+let kept = null;
+
+async function read() {
+  if (kept) return kept;
+  const response = await fetch("/words.json");
+  if (!response.ok) throw new Error("The words of safety were not told.");
+  kept = await response.json();
+  return kept;
+}
+
+/** The words of this build; null until they are read. */
 export function useWords() {
-  const [words, setWords] = useState(null);
+  const [words, setWords] = useState(kept);
   useEffect(() => {
     let here = true;
-    const show = (found) => { if (here && found) setWords(found); };
-    getMeta("words").then(show).catch(() => {});
-    ask("GET", "/api/words")
-      .then((found) => { show(found); return putMeta("words", found); })
-      .catch(() => {});
+    read().then((found) => { if (here) setWords(found); }).catch(() => {});
     return () => { here = false; };
   }, []);
   return words;

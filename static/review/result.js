@@ -9,7 +9,7 @@ import { ask } from "../parts/session.js";
 import { Strip } from "../parts/strip.js";
 import { sync } from "../parts/sync.js";
 import { Tube } from "../parts/tube.js";
-import { one, programme, useView } from "../parts/view.js";
+import { one, programme, useView, whereIs } from "../parts/view.js";
 import { Number_, Verdict, verdictOf } from "./words.js";
 
 const NAMES = new Map([["line", "Calibration line"], ["repeatability", "Repeatability"], ["dilution", "Dilution"], ["standards", "Standards"], ["bias", "Bias"]]);
@@ -58,6 +58,7 @@ function printed(number) {
 
 function Certificate({ result }) {
   const certificate = useView(() => (result.certificate ? one("certificate", result.certificate) : null));
+  const waits = (useView(() => whereIs(result.id)) ?? "server") !== "server";
   const issue = useSaving(async () => {
     const made = await ask("POST", "/api/certificates", { result: result.id, meaning: "authorised" });
     await sync();
@@ -73,6 +74,7 @@ function Certificate({ result }) {
         <button type="button" onClick=${print.save}>Open to print</button></div></section>`;
   }
   if (result.review?.decision !== "accepted") return null;
+  if (waits) return html`<section class="card"><h2>Certificate</h2><p>It can be issued as soon as the decision is on the server.</p></section>`;
   return html`<section class="card stack"><h2>Certificate</h2>
     <p>By issuing you authorise this result under your name. The number is given by the server; what is issued is never changed, only amended by a later certificate.</p>
     <${Problem} words=${issue.problem} />

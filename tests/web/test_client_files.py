@@ -23,7 +23,7 @@ def test_the_worker_names_the_build_and_lists_every_file_of_the_client(browser: 
     build = browser.get("/api/state").get_json()["build"]
     assert f'const BUILD = "{build}";' in text
     listed = json.loads(re.search(r"const SHELL = (\[.*?\]);", text).group(1))  # type: ignore[union-attr]
-    assert listed[0] == "/"
+    assert listed[:2] == ["/", "/words.json"]
     for path in listed:
         answer = browser.get(path)
         assert answer.status_code == 200
@@ -53,7 +53,7 @@ def test_the_manifest_is_complete(browser: Browser) -> None:
 
 
 def test_the_words_of_safety_need_no_sign_in(browser: Browser) -> None:
-    words = browser.get("/api/words").get_json()
+    words = browser.get("/words.json").get_json()
     assert words["gates"][0]["id"] == "hood_on"
     assert words["emergency"]
     assert words["deferral"]
@@ -62,7 +62,7 @@ def test_the_words_of_safety_need_no_sign_in(browser: Browser) -> None:
 def test_published_recipes_come_with_their_source_and_can_be_adopted_where_the_method_states_all(
     browser: Browser,
 ) -> None:
-    forms = browser.get("/api/words").get_json()["recipes"]
+    forms = browser.get("/words.json").get_json()["recipes"]
     assert all(form["source"] for form in forms)
     adopted = 0
     for form in forms:
