@@ -23,6 +23,24 @@ def open_field(page: Page) -> None:
     page.evaluate("() => navigator.serviceWorker.ready.then(() => true)")
 
 
+DRAFTS_HOLD = """(text) => new Promise((found) => {
+  const opening = indexedDB.open("weirbook");
+  opening.onsuccess = () => {
+    const asked = opening.result.transaction("drafts").objectStore("drafts").getAll();
+    asked.onsuccess = () => { opening.result.close(); found(JSON.stringify(asked.result).includes(text)); };
+  };
+})"""
+
+
+def wait_until_kept(page: Page, text: str) -> None:
+    """Wait until the last keystroke is in the store: what is drawn is a moment ahead of it."""
+    for _ in range(100):
+        if page.evaluate(DRAFTS_HOLD, text):
+            return
+        page.wait_for_timeout(50)
+    raise AssertionError(f"no draft holds {text}")
+
+
 def take_sample(page: Page, code: str) -> None:
     """Log a sample at the point, as an inspector does, until it says that it is saved."""
     page.goto("/field/point/outlet-b/take")
@@ -100,6 +118,7 @@ def test_what_is_typed_outlives_the_browser(server: Server, profile_factory: Cal
     page.get_by_label("Note").fill("foam, smells of “Käse” — 2 cm")
     page.get_by_label("pH", exact=True).fill("7,")
     expect(page.get_by_text("is not a number")).to_be_visible()
+    wait_until_kept(page, '"7,"')
     profile.kill()
     page = profile.open()
     page.goto("/field/point/outlet-b/take")
