@@ -36,11 +36,16 @@ export function waitingBottles() {
     .sort((a, b) => ((a.sampled?.hold_until ?? "") < (b.sampled?.hold_until ?? "") ? -1 : 1));
 }
 
+function dilutionWords({ again: repeat, sampled: { plan } }) {
+  if (repeat?.factor) return `next: ${dilution(repeat.factor)}`;
+  return plan ? `plan: ${dilution(plan.dilution_factor)}` : "dilution open";
+}
+
 function BottleRow({ bottle }) {
   const to = bottle.state === "received" || bottle.again ? "/bench/plan" : `/bench/receive/${bottle.code}`;
   return html`<a href=${to}><strong>${bottle.code}</strong>
     <span class="under"><span>${bottle.place ? `${bottle.place.discharger_name}, ${bottle.place.name}` : "its sample has not arrived yet"}</span><span>${bottle.again ? html`<strong>▲ ${bottle.again.why}</strong>` : bottle.state}</span></span>
-    ${bottle.sampled && html`<span class="under"><span>${bottle.sampled.plan ? `plan: ${dilution(bottle.sampled.plan.dilution_factor)}` : "dilution open"}</span><span>analysis to start: ${left(bottle.sampled.hold_until)}</span></span>`}</a>`;
+    ${bottle.sampled && html`<span class="under"><span>${dilutionWords(bottle)}</span><span>analysis to start: ${left(bottle.sampled.hold_until)}</span></span>`}</a>`;
 }
 
 /** The first screen of the Bench. */

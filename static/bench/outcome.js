@@ -97,7 +97,7 @@ function Waste({ run }) {
   const { waste } = run;
   const container = one("container", run.container);
   if (!waste) return null;
-  return html`<p class="soft">Waste of this run: ${plain(waste.mercury_mg / 1000, 2)} g mercury, ${plain(waste.chromium_mg / 1000, 2)} g chromium, ${plain(waste.silver_mg / 1000, 2)} g silver, ${plain(waste.volume_ml)} mL.
+  return html`<p class="soft">Waste of this run: ${plain(waste.mercury_mg / 1000, 2)} g mercury, ${plain(waste.chromium_mg / 1000, 2)} g chromium, ${plain(waste.silver_mg / 1000, 2)} g silver, ${plain(waste.volume_ml)} mL.${" "}
     ${run.closed ? "It went" : "It goes"} to ${container?.name}, ${container ? Math.round((100 * container.filled_ml) / container.capacity_ml) : "?"} % full.</p>`;
 }
 

@@ -102,6 +102,7 @@ function PlanForm({ v, set, forget }) {
   const picked = bottles.filter((bottle) => v.picked.includes(bottle.code));
   const factors = Object.fromEntries(picked.map((bottle) => [bottle.code, v.factors[bottle.code] ?? firstFactor(bottle)]));
   const tubes = recipe ? tubesOf(recipe, picked, factors, settings?.replicates ?? 3) : [];
+  const checks = tubes.filter((tube) => tube.role === "verification").length;
   const room = (stores.block && one("instrument", stores.block)?.positions) || POSITIONS;
   const { save, problem, busy } = useSaving(async () => {
     if (!picked.length) throw new Error("Choose at least one bottle.");
@@ -132,9 +133,10 @@ function PlanForm({ v, set, forget }) {
         <${Select} label="Block" value=${stores.block} options=${options(stores.blocks)} onChoose=${(id) => set("block", id)} />
         <${Select} label="Waste container" value=${stores.container} options=${options(stores.containers)} onChoose=${(id) => set("container", id)} /></section>
       <section class="card stack"><h2>The rack</h2>
-        <p>${tubes.length} of ${room} positions: ${BLANKS} blanks, ${tubes.filter((tube) => tube.role === "verification").length} verifications of ${checkLevel(recipe)} mg/L, ${picked.length} ${picked.length === 1 ? "sample" : "samples"} in ${settings?.replicates ?? 3} tubes each.</p>
+        <p>${tubes.length} of ${room} positions: ${BLANKS} blanks, ${checks} ${checks === 1 ? "verification" : "verifications"} of ${checkLevel(recipe)} mg/L, ${picked.length} ${picked.length === 1 ? "sample" : "samples"} in ${settings?.replicates ?? 3} tubes each.</p>
         <p class="soft">${plain(tubes.length * recipe.digestion_solution_ml, 1)} mL digestion solution and ${plain(tubes.length * recipe.acid_reagent_ml, 1)} mL acid reagent; order: ${recipe.order.join(", then ")}.</p></section>
-      ${words && html`<section class="card wait"><h2>Reminders</h2><ul>${words.reminders.filter((row) => row.stage === "before tubes").map((row) => html`<li key=${row.id}>${row.words}</li>`)}</ul><a href="/emergency">Emergency and first aid</a></section>`}
+      ${words && html`<section class="card wait"><h2>Reminders</h2><ul>${words.reminders.filter((row) => row.stage === "before tubes").map((row) => html`<li key=${row.id}>${row.words}</li>`)}</ul></section>`}
+      <p><a href="/emergency">Emergency and first aid</a></p>
       <${Problem} words=${problem} />
       <div class="sticky"><button class="main" disabled=${busy}>${busy ? "Saving…" : "Save the plan"}</button></div>`}
     </form><//>`;

@@ -8,7 +8,7 @@ from __future__ import annotations
 
 import re
 from collections.abc import Callable
-from datetime import timedelta
+from datetime import UTC, datetime, timedelta
 from typing import Any
 
 import pytest
@@ -17,7 +17,7 @@ from playwright.sync_api import BrowserContext, Page, expect
 from tests.browser import chromium, told
 from tests.browser.server import Server
 from tests.browser.test_offline import PATIENT_MS, open_field
-from tests.browser.test_whole_path import BEFORE, CODE, GATES, _records, confirm, plan, receive
+from tests.browser.test_whole_path import CODE, GATES, _records, confirm, plan, receive
 from tests.tools import devices
 
 Contexts = Callable[..., BrowserContext]
@@ -54,15 +54,16 @@ def _heat(page: Page) -> None:
 def _digest(page: Page) -> None:
     """Heat with a reload in the middle, cool, open."""
     _heat(page)
-    page.clock.set_fixed_time(BEFORE + timedelta(minutes=60))
+    begun = datetime.now(UTC)
+    page.clock.set_fixed_time(begun + timedelta(minutes=60))
     page.reload()
     expect(page).to_have_title(re.compile(r"^(59|1:00|1:01):\d\d heating"))
-    page.clock.set_fixed_time(BEFORE + timedelta(minutes=125))
+    page.clock.set_fixed_time(begun + timedelta(minutes=125))
     page.reload()
     expect(page).to_have_title(re.compile("^The digestion is over"))
     page.get_by_role("button", name="The tubes are out of the block").click()
     expect(page.get_by_role("heading", name="Cooling")).to_be_visible()
-    page.clock.set_fixed_time(BEFORE + timedelta(minutes=150))
+    page.clock.set_fixed_time(begun + timedelta(minutes=150))
     page.reload()
     confirm(page, "Cooled")
 
@@ -142,6 +143,7 @@ def test_an_over_range_sample_is_decided_upon_and_waits_at_the_advised_dilution(
     page.goto("/bench")
     waits = page.get_by_role("navigation", name="Bottles that wait")
     expect(waits).to_contain_text(f"to repeat after {run['name']}")
+    expect(waits).to_contain_text(f"next: 1:{advised:g}")
     page.goto("/bench/plan")
     page.get_by_label(re.compile(CODE)).first.check()
     expect(page.get_by_label(f"Dilution of {CODE}")).to_have_value(f"{advised:g}")
@@ -233,3 +235,14 @@ def test_a_dilution_that_no_known_glassware_makes_is_not_planned(bench: Page) ->
     page.get_by_label(f"Dilution of {CODE}").select_option("5")
     page.get_by_role("button", name="Save the plan").click()
     page.wait_for_url("**/bench/run/**")
+
+
+@pytest.mark.parametrize(
+    "path",
+    ["", "/receive", "/plan", "/stores", "/stores/calibration"]
+    + [f"/stores/{what}" for what in ("lot", "instrument", "container", "recipe")],
+)
+def test_first_aid_is_one_tap_away_on_every_screen_of_the_bench(bench: Page, path: str) -> None:
+    bench.goto(f"/bench{path}")
+    bench.get_by_role("link", name="Emergency and first aid").click()
+    expect(bench.get_by_role("heading", name="Emergency and first aid")).to_be_visible()
