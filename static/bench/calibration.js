@@ -51,5 +51,5 @@ export function AddCalibration() {
       <table><thead><tr><th>COD, mg/L</th><th>first, AU</th><th>second, AU</th></tr></thead><tbody>${v.rows.map((one_, i) => html`<tr key=${i}>
         ${["cod", "a", "b"].map((name, k) => html`<td key=${name}><input aria-label="${["COD", "First absorbance", "Second absorbance"][k]} of level ${i + 1}" inputmode="decimal" value=${one_[name]} onInput=${change(i, name)} /></td>`)}</tr>`)}</tbody></table>
       <button type="button" onClick=${() => set("rows", [...v.rows, row("")])}>Another level</button></section>
-    <${Problem} words=${problem} /><button class="main" disabled=${busy}>${busy ? "Saving…" : "Save on this tablet"}</button></form><//>`;
+    <${Problem} words=${problem} /><button class="main" disabled=${busy}>${busy ? "Saving…" : "Save on this tablet"}</button><p><a href="/emergency">Emergency and first aid</a></p></form><//>`;
 }

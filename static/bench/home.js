@@ -4,6 +4,8 @@ import { html } from "../parts/html.js";
 import { clock, dilution, left } from "../parts/format.js";
 import { Empty, Frame, Where } from "../parts/frame.js";
 import { all, one, programme, useView } from "../parts/view.js";
+import { useWords } from "../parts/words.js";
+import { again } from "./again.js";
 import { heatedAt, span, useNow } from "./timer.js";
 
 const OPEN = new Set(["planned", "heating", "cooling", "reading", "calculated"]);
@@ -23,23 +25,32 @@ function RunRow({ run, zone }) {
     <span class="under"><span>${runWords(run, now, zone)}</span>${run.local ? html`<${Where} about=${run.id} />` : ""}</span></a>`;
 }
 
-/** Bottles that the laboratory has and that are in no run yet. */
+const WAITING = new Set(["handed over", "received", "taken"]);
+
+/** Bottles that are in no run yet, and those to be digested again, by the time they have left. */
 export function waitingBottles() {
   return all("bottle")
-    .filter((bottle) => ["handed over", "received", "taken"].includes(bottle.state))
+    .map((bottle) => ({ ...bottle, again: again(bottle) }))
+    .filter((bottle) => WAITING.has(bottle.state) || bottle.again)
     .map((bottle) => ({ ...bottle, sampled: bottle.sample ? one("sample", bottle.sample) : null, place: bottle.point ? one("point", bottle.point) : null }))
     .sort((a, b) => ((a.sampled?.hold_until ?? "") < (b.sampled?.hold_until ?? "") ? -1 : 1));
 }
 
+function dilutionWords({ again: repeat, sampled: { plan } }) {
+  if (repeat?.factor) return `next: ${dilution(repeat.factor)}`;
+  return plan ? `plan: ${dilution(plan.dilution_factor)}` : "dilution open";
+}
+
 function BottleRow({ bottle }) {
-  const to = bottle.state === "received" ? "/bench/plan" : `/bench/receive/${bottle.code}`;
+  const to = bottle.state === "received" || bottle.again ? "/bench/plan" : `/bench/receive/${bottle.code}`;
   return html`<a href=${to}><strong>${bottle.code}</strong>
-    <span class="under"><span>${bottle.place ? `${bottle.place.discharger_name}, ${bottle.place.name}` : "its sample has not arrived yet"}</span><span>${bottle.state}</span></span>
-    ${bottle.sampled && html`<span class="under"><span>${bottle.sampled.plan ? `plan: ${dilution(bottle.sampled.plan.dilution_factor)}` : "dilution open"}</span><span>analysis to start: ${left(bottle.sampled.hold_until)}</span></span>`}</a>`;
+    <span class="under"><span>${bottle.place ? `${bottle.place.discharger_name}, ${bottle.place.name}` : "its sample has not arrived yet"}</span><span>${bottle.again ? html`<strong>▲ ${bottle.again.why}</strong>` : bottle.state}</span></span>
+    ${bottle.sampled && html`<span class="under"><span>${dilutionWords(bottle)}</span><span>analysis to start: ${left(bottle.sampled.hold_until)}</span></span>`}</a>`;
 }
 
 /** The first screen of the Bench. */
 export function Home() {
+  useWords(); // the words of the gates are on the tablet before the network is lost
   const settings = useView(programme);
   const runs = useView(() => all("run")).reverse();
   const bottles = useView(waitingBottles);

@@ -7,10 +7,21 @@ import { Problem, say } from "../parts/frame.js";
 import { state } from "../parts/journal.js";
 import { all, one } from "../parts/view.js";
 import { stepWords, stepsOf } from "../field/glassware.js";
+import { tubesOfSample } from "./rack.js";
+
+const COUNTS = ["no", "the one", "both", "all three", "all four", "all five"];
+
+/** What an over-range sample looks like: said of the colours that a person saw, else of what the curve says. */
+function overWords(sample, run) {
+  const tubes = tubesOfSample(run, sample).filter((tube) => !tube.excluded);
+  if (!tubes.length || tubes.some((tube) => tube.colour !== "green")) return "The oxidant is spent or nearly so: no number can be given. Keep the caps on.";
+  const count = COUNTS[tubes.length] ?? `all ${tubes.length}`;
+  return `${count[0].toUpperCase()}${count.slice(1)} ${tubes.length === 1 ? "tube" : "tubes"} went green: the dichromate is spent and no number can be given. Keep the caps on.`;
+}
 
 const TOLD = new Map([
   ["ok", (s) => (s.excluded.length ? `${s.used.length} tubes agree, ${s.excluded.length} left out.` : `${s.used.length} ${s.used.length === 1 ? "tube" : "tubes agree"}.`)],
-  ["over", () => "The oxidant is spent or nearly so: no number can be given. Keep the caps on."],
+  ["over", overWords],
   ["below", () => "Below the working range at this dilution."],
   ["disagree", () => "The tubes disagree: the value is provisional. Repeat this sample."],
 ]);
@@ -31,7 +42,7 @@ function Sample({ sample, run }) {
     <p class="soft tight">${sample.sample}${point ? `, ${point.discharger_name}, ${point.name}` : ""}</p>
     ${stop ? html`<h2>▲ ${sample.sample} ${sample.status === "over" ? "is over range" : "disagrees"}</h2>`
       : html`<p class="tight"><span class="big">${reported(result?.shown ?? String(sample.reported?.cod ?? ""))}</span> ${result?.shown_u ? html`<span class="plus">± ${reported(result.shown_u)}</span>` : ""} <span class="unit">mg/L</span></p>`}
-    <p>${TOLD.get(sample.status)(sample)} ${above ? html`<span class="above">▲ ${above.why}</span>` : result?.verdicts?.[0]?.why ?? ""}</p>
+    <p>${TOLD.get(sample.status)(sample, run)} ${above ? html`<span class="above">▲ ${above.why}</span>` : result?.verdicts?.[0]?.why ?? ""}</p>
     <${Advice} advice=${sample.advice} /></section>`;
 }
 
@@ -86,7 +97,7 @@ function Waste({ run }) {
   const { waste } = run;
   const container = one("container", run.container);
   if (!waste) return null;
-  return html`<p class="soft">Waste of this run: ${plain(waste.mercury_mg / 1000, 2)} g mercury, ${plain(waste.chromium_mg / 1000, 2)} g chromium, ${plain(waste.silver_mg / 1000, 2)} g silver, ${plain(waste.volume_ml)} mL.
+  return html`<p class="soft">Waste of this run: ${plain(waste.mercury_mg / 1000, 2)} g mercury, ${plain(waste.chromium_mg / 1000, 2)} g chromium, ${plain(waste.silver_mg / 1000, 2)} g silver, ${plain(waste.volume_ml)} mL.${" "}
     ${run.closed ? "It went" : "It goes"} to ${container?.name}, ${container ? Math.round((100 * container.filled_ml) / container.capacity_ml) : "?"} % full.</p>`;
 }
 

@@ -7,8 +7,8 @@ import { Empty, Frame, Problem, go, say } from "../parts/frame.js";
 import { newId, state } from "../parts/journal.js";
 import { all, one, programme, useView } from "../parts/view.js";
 import { useWords } from "../parts/words.js";
-import { stepsOf, stepWords } from "../field/glassware.js";
-import { relativeU } from "./glassware.js";
+import { stepWords } from "../field/glassware.js";
+import { dilutionOf } from "./dilutions.js";
 import { waitingBottles } from "./home.js";
 
 const BLANKS = 3;
@@ -25,6 +25,12 @@ export function curvesFor(recipe, today) {
 /** The level of the verification: the middle of the working range, as a round standard. */
 export const checkLevel = (recipe) => (recipe.working_high >= 500 ? "500" : String(Math.round(recipe.working_high / 2)));
 
+/** The dilution that a bottle would be digested at, or what is wrong with it. */
+const dilutionFor = (bottle, factor) => dilutionOf(factor, bottle.sampled?.plan ?? null, bottle.again?.why ?? "chosen at the bench");
+
+/** The dilution that a bottle begins with: advised by its last run, else planned at the manhole. */
+const firstFactor = (bottle) => bottle.again?.factor ?? bottle.sampled?.plan?.dilution_factor ?? 1;
+
 /** The tubes of a run, placed by themselves: blanks, each sample's replicates, verifications around every ten. */
 export function tubesOf(recipe, bottles, factors, replicates) {
   const tubes = Array.from({ length: BLANKS }, () => ({ role: "blank" }));
@@ -32,12 +38,7 @@ export function tubesOf(recipe, bottles, factors, replicates) {
   let since = 0;
   verify();
   for (const bottle of bottles) {
-    const factor = factors[bottle.code];
-    const planned = bottle.sampled?.plan;
-    const own = planned?.dilution_factor === factor && planned.steps.length ? planned.steps : stepsOf(factor);
-    const steps = (own ?? []).map(({ pipette_ml, flask_ml }) => ({ pipette_ml, flask_ml }));
-    const reason = planned?.dilution_factor === factor ? planned.reason : "chosen at the bench";
-    const dilution = { factor, steps, relative_u: relativeU(steps) ?? 0.01, reason };
+    const dilution = dilutionFor(bottle, factors[bottle.code]);
     if (since && since + replicates > BRACKET) {
       verify();
       since = 0;
@@ -51,15 +52,15 @@ export function tubesOf(recipe, bottles, factors, replicates) {
 
 function Bottle({ bottle, v, set, factors }) {
   const picked = v.picked.includes(bottle.code);
-  const factor = v.factors[bottle.code] ?? bottle.sampled?.plan?.dilution_factor ?? 1;
+  const factor = v.factors[bottle.code] ?? firstFactor(bottle);
   const name = bottle.place ? `${bottle.place.discharger_name}, ${bottle.place.name}` : "sample not here yet";
   const options = [...new Set([...factors, factor])].sort((a, b) => a - b).map((f) => [String(f), dilution(f)]);
-  const steps = stepsOf(factor);
+  const { steps, problem } = dilutionFor(bottle, factor);
   return html`<div class="item stack">
-    <${Check} label=${html`<strong>${bottle.code}</strong> ${name} (${bottle.state})`} checked=${picked}
+    <${Check} label=${html`<strong>${bottle.code}</strong> ${name} (${bottle.again?.why ?? bottle.state})`} checked=${picked}
       onChange=${(on) => set("picked", on ? [...v.picked, bottle.code] : v.picked.filter((code) => code !== bottle.code))} />
     ${picked && html`<${Select} label="Dilution of ${bottle.code}" value=${String(factor)} options=${options} onChoose=${(text) => set("factors", { ...v.factors, [bottle.code]: Number(text) })}
-      hint=${`${steps?.length ? `${stepWords(steps)}. ` : ""}${bottle.sampled?.plan ? `At the manhole: ${dilution(bottle.sampled.plan.dilution_factor)}, ${bottle.sampled.plan.reason}` : "Nothing was planned at the manhole."}`} />`}
+      hint=${`${problem ? `▲ ${problem} ` : ""}${steps?.length ? `${stepWords(steps)}. ` : ""}${bottle.sampled?.plan ? `At the manhole: ${dilution(bottle.sampled.plan.dilution_factor)}, ${bottle.sampled.plan.reason}` : "Nothing was planned at the manhole."}`} />`}
   </div>`;
 }
 
@@ -99,11 +100,14 @@ function PlanForm({ v, set, forget }) {
   const stores = useStores(v);
   const { recipe, curve } = stores;
   const picked = bottles.filter((bottle) => v.picked.includes(bottle.code));
-  const factors = Object.fromEntries(picked.map((bottle) => [bottle.code, v.factors[bottle.code] ?? bottle.sampled?.plan?.dilution_factor ?? 1]));
+  const factors = Object.fromEntries(picked.map((bottle) => [bottle.code, v.factors[bottle.code] ?? firstFactor(bottle)]));
   const tubes = recipe ? tubesOf(recipe, picked, factors, settings?.replicates ?? 3) : [];
+  const checks = tubes.filter((tube) => tube.role === "verification").length;
   const room = (stores.block && one("instrument", stores.block)?.positions) || POSITIONS;
   const { save, problem, busy } = useSaving(async () => {
     if (!picked.length) throw new Error("Choose at least one bottle.");
+    const wrong = picked.map((bottle) => [bottle.code, dilutionFor(bottle, factors[bottle.code]).problem]).filter(([, problem]) => problem);
+    if (wrong.length) throw new Error(wrong.map(([code, problem]) => `${code}: ${problem}`).join(" "));
     if (tubes.length > room) throw new Error(`${tubes.length} tubes do not fit: the block has ${room} positions.`);
     if (!curve) throw new Error("A curve of this recipe is needed: make one under Stores.");
     if (!stores.block || !stores.container) throw new Error("Choose the block and the waste container.");
@@ -129,9 +133,10 @@ function PlanForm({ v, set, forget }) {
         <${Select} label="Block" value=${stores.block} options=${options(stores.blocks)} onChoose=${(id) => set("block", id)} />
         <${Select} label="Waste container" value=${stores.container} options=${options(stores.containers)} onChoose=${(id) => set("container", id)} /></section>
       <section class="card stack"><h2>The rack</h2>
-        <p>${tubes.length} of ${room} positions: ${BLANKS} blanks, ${tubes.filter((tube) => tube.role === "verification").length} verifications of ${checkLevel(recipe)} mg/L, ${picked.length} ${picked.length === 1 ? "sample" : "samples"} in ${settings?.replicates ?? 3} tubes each.</p>
+        <p>${tubes.length} of ${room} positions: ${BLANKS} blanks, ${checks} ${checks === 1 ? "verification" : "verifications"} of ${checkLevel(recipe)} mg/L, ${picked.length} ${picked.length === 1 ? "sample" : "samples"} in ${settings?.replicates ?? 3} tubes each.</p>
         <p class="soft">${plain(tubes.length * recipe.digestion_solution_ml, 1)} mL digestion solution and ${plain(tubes.length * recipe.acid_reagent_ml, 1)} mL acid reagent; order: ${recipe.order.join(", then ")}.</p></section>
-      ${words && html`<section class="card wait"><h2>Reminders</h2><ul>${words.reminders.filter((row) => row.stage === "before tubes").map((row) => html`<li key=${row.id}>${row.words}</li>`)}</ul><a href="/emergency">Emergency and first aid</a></section>`}
+      ${words && html`<section class="card wait"><h2>Reminders</h2><ul>${words.reminders.filter((row) => row.stage === "before tubes").map((row) => html`<li key=${row.id}>${row.words}</li>`)}</ul></section>`}
+      <p><a href="/emergency">Emergency and first aid</a></p>
       <${Problem} words=${problem} />
       <div class="sticky"><button class="main" disabled=${busy}>${busy ? "Saving…" : "Save the plan"}</button></div>`}
     </form><//>`;

@@ -16,6 +16,12 @@ export function stateOf(tube, over) {
   return "to read";
 }
 
+/** The tubes of a sample of the answer: its bottle's, and where the bottle was read at several dilutions those of its own. */
+export function tubesOfSample(run, { sample }) {
+  const tubes = run.tubes.filter((tube) => tube.bottle === sample.split(" ")[0]);
+  return tubes.some((tube) => tube.bottle === sample) ? tubes : tubes.filter((tube) => `${tube.bottle} 1:${tube.dilution.factor}` === sample);
+}
+
 /** The bottles of a run whose result is over range. */
 export function overBottles(run) {
   return new Set((run.answer?.samples ?? []).filter((sample) => sample.status === "over").map((sample) => sample.sample.split(" ")[0]));

@@ -37,23 +37,24 @@ function useArrows(run, position, onPick) {
 
 function Exclude({ run, tube }) {
   const [open, setOpen] = useState(false);
-  const [cause, setCause] = useState(CAUSES[0]);
+  const [cause, setCause] = useState("");
   const [note, setNote] = useState("");
   const { save, problem, busy } = useSaving(async () => {
+    if (!cause) throw new Error("Choose the cause that was seen.");
     await state("tube.excluded", run.id, { position: tube.position, cause, note });
     setOpen(false);
   });
   if (tube.excluded) return html`<p class="above">▲ Left out: ${tube.excluded.cause}. Its reading stays on record.</p>`;
   if (!open) return html`<button type="button" class="quiet" onClick=${() => setOpen(true)}>Leave this tube out</button>`;
   return html`<div class="card stop stack"><p>Only for a cause that was seen. Statistics never drop a tube of three.</p>
-    <${Select} label="Cause" value=${cause} options=${CAUSES.map((words) => [words, words])} onChoose=${setCause} />
+    <${Select} label="Cause" value=${cause} options=${[["", "choose"], ...CAUSES.map((words) => [words, words])]} onChoose=${setCause} />
     <${TextField} label="Note" value=${note} onInput=${setNote} /><${Problem} words=${problem} />
     <div class="row"><button type="button" class="stop" onClick=${save} disabled=${busy}>Leave it out</button><button type="button" onClick=${() => setOpen(false)}>Back</button></div></div>`;
 }
 
 function One({ run, tube, onNext }) {
   const [text, setText] = useState(tube.absorbance?.text ?? "");
-  const [colour, setColour] = useState(tube.colour ?? "orange");
+  const [colour, setColour] = useState(tube.colour ?? null);
   const [reason, setReason] = useState("");
   const again = Boolean(tube.absorbance);
   const changed = !again || text.trim() !== tube.absorbance.text || colour !== tube.colour;
@@ -86,7 +87,8 @@ export function Readings({ run, position, onPick }) {
     await state("readings.finished", run.id, {});
     say("Saved on this tablet.");
   });
-  return html`<div class="stack"><p role="status">${left === 0 ? "All tubes are read." : `${left} of ${run.tubes.length} tubes to read.`}</p>
+  return html`<div class="stack">${run.problem && html`<section class="card stop"><h2>▲ Not calculated</h2><p>${run.problem.error}</p></section>`}
+    <p role="status">${left === 0 ? "All tubes are read." : `${left} of ${run.tubes.length} tubes to read.`}</p>
     ${left === 0 && html`<${Problem} words=${finish.problem} /><button class="main" type="button" onClick=${finish.save} disabled=${finish.busy}>All read: calculate</button>`}
     <${One} key=${tube.position} run=${run} tube=${tube} onNext=${() => { const next = nextUnread(run, tube.position); if (next !== null) onPick(next); }} /></div>`;
 }

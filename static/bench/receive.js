@@ -78,5 +78,6 @@ export function Receive({ given }) {
       <${LongField} label="Note" value=${v.note} onInput=${(text) => set("note", text)} />
       <${Problem} words=${problem} />
       <div class="sticky"><button class="main" disabled=${busy}>${busy ? "Saving…" : "Save the receipt"}</button></div>
+      <p><a href="/emergency">Emergency and first aid</a></p>
     </form><//>`;
 }

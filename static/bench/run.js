@@ -39,7 +39,7 @@ function Next({ run, words, position, onPick }) {
   if (!words) return html`<${Empty} title="The words of safety could not be read">Reload this page; without them no gate can be confirmed.<//>`;
   if (run.state === "planned") {
     const [gate] = openGates(words, run, BEFORE_HEATING);
-    return gate ? html`<${Gate} key=${gate.id} gate=${gate} run=${run} words=${words} />` : html`<${Start} run=${run} />`;
+    return gate ? html`<${Gate} key=${gate.id} gate=${gate} run=${run} words=${words} />` : html`<${Start} run=${run} words=${words} />`;
   }
   if (run.state === "heating") return html`<${Heating} run=${run} />`;
   if (READING.has(run.state)) return html`<${Reading} run=${run} words=${words} position=${position} onPick=${onPick} />`;

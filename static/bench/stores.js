@@ -48,7 +48,7 @@ export function Stores() {
     <${Rows} title="Instruments" what="instrument" rows=${useView(() => all("instrument"))} words=${(row) => `${row.what}${row.positions ? `, ${row.positions} positions` : ""}`} />
     <h2>Curves</h2>${curves.map((curve) => html`<${Curve} key=${curve.id} curve=${curve} />`)}<a class="button" href="/bench/stores/calibration">Enter a calibration</a>
     <${Rows} title="Waste containers" what="container" rows=${useView(() => all("container"))} words=${filled} />
-    <p><a href="/bench">Back to what waits</a></p></div><//>`;
+    <p><a href="/bench">Back to what waits</a> · <a href="/emergency">Emergency and first aid</a></p></div><//>`;
 }
 
 function need(v, fields) {
@@ -70,7 +70,7 @@ function useAdding(key, blank, make) {
 
 function Shell({ title, saving, children }) {
   return html`<${Frame} place="bench" title=${title}><form class="stack" onSubmit=${saving.save} novalidate>${children}
-    <${Problem} words=${saving.problem} /><button class="main" disabled=${saving.busy}>${saving.busy ? "Saving…" : "Save on this tablet"}</button><p><a href="/bench/stores">Stores</a></p></form><//>`;
+    <${Problem} words=${saving.problem} /><button class="main" disabled=${saving.busy}>${saving.busy ? "Saving…" : "Save on this tablet"}</button><p><a href="/bench/stores">Stores</a> · <a href="/emergency">Emergency and first aid</a></p></form><//>`;
 }
 
 function AddLot() {

@@ -28,6 +28,43 @@ export function span(ms) {
   return `${hours ? `${hours}:` : ""}${hours ? pad(Math.floor(s / 60) % 60) : Math.floor(s / 60)}:${pad(s % 60)}`;
 }
 
+/** A time in the title of the page, so that a tab in the background shows it; the title before it comes back. */
+export function useTitle(words) {
+  useEffect(() => {
+    const before = document.title;
+    return () => { document.title = before; };
+  }, []);
+  useEffect(() => { document.title = `${words} · Bench · Weirbook`; }, [words]);
+}
+
+let player = null;
+
+/** Whether this browser can make a sound. */
+export const canSound = () => typeof globalThis.AudioContext === "function";
+
+/** [whether it will sound, how to allow it]: a browser lets a page sound only after a tap on it. */
+export function useSound() {
+  const [on, setOn] = useState(player?.state === "running");
+  const allow = () => {
+    player ??= new AudioContext();
+    player.resume().then(() => { setOn(true); beep(1); }).catch(() => {});
+  };
+  return [on, allow];
+}
+
+function beep(times) {
+  for (let i = 0; player?.state === "running" && i < times; i += 1) {
+    const tone = player.createOscillator();
+    const volume = player.createGain();
+    const from = player.currentTime + 0.5 * i;
+    volume.gain.value = 0.2;
+    tone.frequency.value = 880;
+    tone.connect(volume).connect(player.destination);
+    tone.start(from);
+    tone.stop(from + 0.25);
+  }
+}
+
 /** Tell once, also in the background, that a time is over. */
 export function useAlarm(due, now, words) {
   const [told, setTold] = useState(now >= due);
@@ -35,6 +72,7 @@ export function useAlarm(due, now, words) {
     if (told || now < due) return;
     setTold(true);
     navigator.vibrate?.([300, 150, 300]);
+    beep(6);
     if (globalThis.Notification?.permission === "granted") {
       navigator.serviceWorker?.ready.then((worker) => worker.showNotification(words)).catch(() => {});
     }
