@@ -2,6 +2,7 @@
 // a promise of this module is fulfilled only when that transaction is complete.
 
 import { begin } from "./db.js";
+import { versionOf } from "./kinds.js";
 import { sha256 } from "./sha256.js";
 import { uuid7 } from "./uuid7.js";
 import { entryAdded } from "./view.js";
@@ -27,7 +28,7 @@ function textOf(kind, about, body, { device, last, person, contact, base }) {
     n: last.n + 1,
     prev: last.digest,
     kind,
-    version: 1,
+    version: versionOf(kind),
     about,
     at: withOffset(),
     zone: Intl.DateTimeFormat().resolvedOptions().timeZone,

@@ -11,5 +11,11 @@ const KINDS = new Map(Object.entries({
   "settings.changed": "Settings changed",
 }));
 
+/** The version of a kind's body as this build makes it, where it is no longer the first. */
+const VERSIONS = {};
+
+/** The version that this build states of a kind. */
+export const versionOf = (kind) => VERSIONS[kind] ?? 1;
+
 /** A kind of entry in words. */
 export const kindWords = (kind) => KINDS.get(kind) ?? kind;
