@@ -29,7 +29,6 @@ References
 
 from __future__ import annotations
 
-from collections.abc import Callable
 from dataclasses import dataclass
 from typing import Literal
 
@@ -76,20 +75,32 @@ class Device:
         What it is.
     rating : str
         Its formula in feet and cubic feet a second.
-    cfs : callable
-        The formula.
+    coefficient, exponent : float
+        ``Q = coefficient x width x H**exponent``.
     low_ft, high_ft : float
         The head range in which the formula holds.
+    crest_ft : float or None
+        Length of a rectangular crest; None where the width is in the coefficient.
+    contraction : float
+        What each foot of head takes off the crest.
     submergence : float or None
         Largest ratio of the two heads of a flume for free flow.
     """
 
     name: str
     rating: str
-    cfs: Callable[[float], float]
+    coefficient: float
+    exponent: float
     low_ft: float
     high_ft: float
+    crest_ft: float | None = None
+    contraction: float = 0.0
     submergence: float | None = None
+
+    def cfs(self, head_ft: float) -> float:
+        """Return the rating's flow at a head, without regard to its range."""
+        width = 1.0 if self.crest_ft is None else self.crest_ft - self.contraction * head_ft
+        return float(self.coefficient * width * head_ft**self.exponent)
 
 
 def v_notch_90() -> Device:
@@ -99,7 +110,7 @@ def v_notch_90() -> Device:
     -------
     Device
     """
-    return Device("90 degree V-notch weir", "Q = 2.49 H^2.48", lambda h: 2.49 * h**2.48, 0.2, 1.25)
+    return Device("90 degree V-notch weir", "Q = 2.49 H^2.48", 2.49, 2.48, 0.2, 1.25)
 
 
 def rectangular(
@@ -132,21 +143,27 @@ def rectangular(
         return Device(
             "rectangular weir, contracted at both ends",
             f"Q = 3.33 (L - 0.2 H) H^1.5, L = {length:.4g} ft",
-            lambda h: 3.33 * (length - 0.2 * h) * h**1.5,
-            0.2,
+            3.33,
+            1.5,
+            LOWEST_HEAD_FT,
             high,
+            length,
+            0.2,
         )
     if crest_height is not None:
         high = min(high, 0.4 * _feet("crest_height", crest_height, unit))
     return Device(
         "rectangular weir, suppressed",
         f"Q = 3.33 L H^1.5, L = {length:.4g} ft",
-        lambda h: 3.33 * length * h**1.5,
-        0.2,
+        3.33,
+        1.5,
+        LOWEST_HEAD_FT,
         high,
+        length,
     )
 
 
+LOWEST_HEAD_FT = 0.2
 SMALL_FLUMES: dict[str, tuple[float, float, float, float, float]] = {
     "3 in": (0.992, 1.547, 0.10, 1.5, 0.50),
     "6 in": (2.06, 1.58, 0.10, 1.5, 0.60),
@@ -184,14 +201,15 @@ def parshall(size: str) -> Device:
     """
     if size in SMALL_FLUMES:
         a, n, low, high, submergence = SMALL_FLUMES[size]
-        return Device(f"Parshall flume {size}", f"Q = {a} Ha^{n}", lambda h: a * h**n, low, high, submergence)
+        rating = f"Q = {a} Ha^{n}"
+        return Device(f"Parshall flume {size}", rating, a, n, low, high, submergence=submergence)
     if size not in LARGE_FLUMES:
         known = ", ".join([*SMALL_FLUMES, *LARGE_FLUMES])
         raise InputError("No rating is known for this flume.", {"size": [f"must be one of {known}"]})
     throat, low = LARGE_FLUMES[size]
     power = 1.522 * throat**0.026
     rating = f"Q = 4 W Ha^(1.522 W^0.026), W = {plain(throat)} ft"
-    return Device(f"Parshall flume {size}", rating, lambda h: 4.0 * throat * h**power, low, 2.5, 0.70)
+    return Device(f"Parshall flume {size}", rating, 4.0 * throat, power, low, 2.5, submergence=0.70)
 
 
 def _feet(name: str, value: float, unit: str) -> float:

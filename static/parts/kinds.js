@@ -8,11 +8,13 @@ const KINDS = new Map(Object.entries({
   "entry.settled": "Entry settled", "discharger.registered": "Discharger registered", "point.registered": "Point registered",
   "limit.set": "Limit set", "recipe.adopted": "Recipe adopted", "lot.made": "Lot made", "instrument.added": "Instrument added",
   "container.opened": "Container opened", "calibration.made": "Calibration made", "result.recorded": "Result recorded",
-  "settings.changed": "Settings changed",
+  "settings.changed": "Settings changed", "round.planned": "Round planned", "round.changed": "Round changed", "visit.begun": "Visit begun",
+  "visit.ended": "Visit ended", "gas.tested": "Gas tested", "gas.confirmed": "Confirmed after a gas alarm", "flow.measured": "Flow measured",
+  "sampler.set": "Sampler set", "sample.split": "Sample split", "meter.checked": "Meter checked",
 }));
 
 /** The version of a kind's body as this build makes it, where it is no longer the first. */
-const VERSIONS = {};
+const VERSIONS = { "sample.taken": 2, "custody.handed_over": 2 };
 
 /** The version that this build states of a kind. */
 export const versionOf = (kind) => VERSIONS[kind] ?? 1;

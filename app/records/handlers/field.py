@@ -13,7 +13,7 @@ from zoneinfo import ZoneInfo
 
 from app.compliance import holding
 from app.records.change import Body, Change, Refused
-from app.records.handlers import handles
+from app.records.handlers import handles, rounds
 
 
 def bottle(change: Change, code: str) -> Body:
@@ -75,6 +75,10 @@ def sample_taken(change: Change) -> None:
         )
     if change.get("sample", id_):
         raise Refused("already_stated", "This sample was stated before; a correction is an entry of its own.")
+    _need_whole(change)
+    visit = change.body["visit"] and change.need("visit", change.body["visit"])
+    if visit:
+        rounds.need_safe(change.need("point", visit["point"]), visit)
     collected = datetime.fromisoformat(change.body["collected_at"])
     sample = {
         **change.body,
@@ -82,9 +86,37 @@ def sample_taken(change: Change) -> None:
         "by_name": change.name_of(change.entry.by),
         "recorded_at": change.entry.at,
         "hold_until": holding.hold_until(collected, zone=_zone(change)).isoformat(),
+        "split": None,
+        "doubts": [],
     }
     change.put("sample", id_, sample, parent=change.body["point"], at=change.body["collected_at"])
     put_bottle(change, known | {"sample": id_, "point": change.body["point"]})
+    if visit:
+        samples = [*visit["samples"], id_]
+        change.update("visit", change.body["visit"], visit | {"samples": samples})
+    sampler = change.get("sampler", id_)
+    if sampler:
+        change.update("sampler", id_, sampler | {"state": "picked up"})
+    if change.body["meter"]:
+        rounds.meter_used(change, change.body["meter"], id_, change.body)
+
+
+def _need_whole(change: Change) -> None:
+    """Refuse a composite without its period, and a duplicate of nothing."""
+    body = change.body
+    period = body["composite"]
+    if (body["sample_kind"] == "composite") != (period is not None):
+        raise Refused(
+            "invalid", "A composite needs its period, a grab has none.", {"composite": ["is wrong"]}
+        )
+    if period and datetime.fromisoformat(period["started_at"]) >= datetime.fromisoformat(
+        body["collected_at"]
+    ):
+        raise Refused(
+            "wrong_order", "A composite cannot end before it began.", {"composite": ["began later"]}
+        )
+    if body["purpose"] == "duplicate" and body["of"] is None:
+        raise Refused("invalid", "A duplicate names the sample that it repeats.", {"of": ["is missing"]})
 
 
 @handles("custody.handed_over")
