@@ -29,8 +29,8 @@ References
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-from typing import Literal
+from dataclasses import asdict, dataclass
+from typing import Any, Literal
 
 from app.compliance.exact import need_number, plain
 from app.compliance.units import FLOWS_L_S, LENGTHS_M, VOLUMES_L
@@ -210,6 +210,22 @@ def parshall(size: str) -> Device:
     power = 1.522 * throat**0.026
     rating = f"Q = 4 W Ha^(1.522 W^0.026), W = {plain(throat)} ft"
     return Device(f"Parshall flume {size}", rating, 4.0 * throat, power, low, 2.5, submergence=0.70)
+
+
+def ratings() -> dict[str, Any]:
+    """Return every rating as plain data, for a client that turns heads into flows by itself.
+
+    Returns
+    -------
+    dict
+        ``v_notch_90``; ``rectangular`` without its crest; ``parshall`` by size.
+    """
+    sizes = [*SMALL_FLUMES, *LARGE_FLUMES]
+    return {
+        "v_notch_90": asdict(v_notch_90()),
+        "rectangular": asdict(rectangular(1.0)),
+        "parshall": {size: asdict(parshall(size)) for size in sizes},
+    }
 
 
 def _feet(name: str, value: float, unit: str) -> float:

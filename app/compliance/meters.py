@@ -21,9 +21,9 @@ one (from memory).
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass
+from dataclasses import asdict, dataclass
 from datetime import datetime
-from typing import Literal
+from typing import Any, Literal
 
 from app.compliance.exact import need_number, plain
 from app.errors import InputError
@@ -58,6 +58,11 @@ ACCEPTANCES: dict[str, Acceptance] = {
 }
 BUFFERS_APART_PH = 3.0
 SLOPE_PERCENT = (92.0, 102.0)
+
+
+def acceptances() -> dict[str, dict[str, Any]]:
+    """Return the default acceptances as plain data, for a client that judges a check by itself."""
+    return {name: asdict(rule) for name, rule in ACCEPTANCES.items()}
 
 
 @dataclass(frozen=True)

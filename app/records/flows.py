@@ -42,7 +42,8 @@ def _by_head(body: Body) -> Body:
         raise InputError("This device needs a head.", {"head": ["is missing"]})
     found = asdict(flow.measure(device, head, tail=_length(body["tail"])))
     slip = _length(body["head_error"])
-    error = flow.head_error_percent(device, head, slip) if slip else None
+    rated = bool(slip) and found["status"] == "ok"
+    error = flow.head_error_percent(device, head, slip or 0.0) if rated else None
     return found | {"error_percent": error and list(error), "volume_l": None}
 
 

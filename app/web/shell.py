@@ -13,6 +13,7 @@ from flask import Blueprint, Response, jsonify, send_file
 from app import __version__
 from app.chemistry.recipe import COMMON_PRACTICE_C, COMMON_PRACTICE_HOURS
 from app.chemistry.standard_recipes import STANDARD_RECIPES, StandardRecipe
+from app.compliance import flow, meters
 from app.journal.units import STATIC
 from app.safety.pack import client_pack
 from app.web.context import context
@@ -35,7 +36,7 @@ def shell_files(folder: Path = STATIC) -> list[str]:
 
 def build_of(folder: Path = STATIC) -> str:
     """Return the digest that names this build of the client."""
-    total = hashlib.sha256(_words_text().encode())
+    total = hashlib.sha256(words_text().encode())
     for path in sorted(p for p in folder.rglob("*") if p.suffix in _KINDS):
         total.update(path.relative_to(folder).as_posix().encode())
         total.update(path.read_bytes())
@@ -61,13 +62,15 @@ def manifest() -> Response:
 def words() -> Response:
     """Gates, hazards, emergency lines and published recipes: part of the client, without signing in."""
     headers = {"Cache-Control": "no-cache"}
-    return Response(_words_text(), mimetype="application/json", headers=headers)
+    return Response(words_text(), mimetype="application/json", headers=headers)
 
 
 @cache
-def _words_text() -> str:
+def words_text() -> str:
+    """Return the words, ratings and published recipes that are part of this build of the client."""
     recipes = [_form(one) for one in STANDARD_RECIPES]
-    return json.dumps({"weirbook": __version__, **client_pack(), "recipes": recipes})
+    field = {"ratings": flow.ratings(), "acceptances": meters.acceptances()}
+    return json.dumps({"weirbook": __version__, **client_pack(), **field, "recipes": recipes})
 
 
 def _form(one: StandardRecipe) -> dict[str, str]:

@@ -9,8 +9,10 @@ import { all, one, programme, useView } from "../parts/view.js";
 import { useWords } from "../parts/words.js";
 import { Expected } from "./expected.js";
 import { ACTIVITIES, BLANK, cardOf, draftKey, hazardOf, limitOf, READINGS } from "./point.js";
+import { openVisit, samplerAt } from "./sampler.js";
 
-function Hazards({ point }) {
+/** The dangers of a point with the usual precautions, first on every screen of it. */
+export function Hazards({ point }) {
   const words = useWords();
   if (!point.hazards.length) return null;
   return html`<section class="hazards" aria-label="Dangers at this point">
@@ -77,14 +79,17 @@ export function Card({ id }) {
   }
   if (!values) return null;
   const last = all("sample", id).at(-1);
+  const visit = openVisit(id);
+  const sampler = samplerAt(id);
   return html`<div class="screen stack card-of-point">
     <p class="back"><a href="/field">All points</a></p>
     <${Head} point=${point} />
     <${Hazards} point=${point} />
     <div class="cols"><${Expected} point=${point} values=${values} set=${set} /><${Readings} values=${values} set=${set} /></div>
-    ${point.sample_kind === "composite" && html`<p class="card wait"><strong>This point asks for a composite.</strong> Only grab samples are recorded here for now; a sampler's bottle is kept by its own form.</p>`}
     <section class="card stack"><h2>Limits and past</h2><${Limits} point=${point} /><${Past} point=${point} /></section>
-    <div class="sticky"><button type="button" class="main" onClick=${() => go(`${cardOf(id)}/take`)}>Take the sample</button>
+    <div class="row"><a class="button" href=${visit ? `/field/visit/${visit.id}` : `${cardOf(id)}/arrive`}>${visit ? "Go on with the visit" : "Begin a visit"}</a>
+      ${!sampler && html`<a class="button" href="${cardOf(id)}/sampler">Set a sampler up</a>`}</div>
+    <div class="sticky"><button type="button" class="main" onClick=${() => go(`${cardOf(id)}/take`)}>${sampler ? "Pick the composite up" : "Take the sample"}</button>
       ${last && html`<p class="soft small after">Last sample ${ago(last.recorded_at ?? last.collected_at)}, ${dayAndTime(last.collected_at, programme()?.zone)}</p>`}</div>
   </div>`;
 }

@@ -17,7 +17,8 @@ export const ACTIVITIES = [["production", "Production"], ["cleaning", "Cleaning"
 export const BLANK = {
   bottle: "", time: "", conductivity: "", conductivity_unit: "uS/cm", turbidity: "", turbidity_unit: "NTU", ph: "",
   ph_unit: "pH", temperature: "", temperature_unit: "Cel", activity: null, appearance: "", acid: false, acid_ph: "",
-  cooled: false, note: "", factor: null, reason: "",
+  cooled: false, note: "", factor: null, reason: "", purpose: "sample", of: "", meter: null, kind: "",
+  c_start: "", c_planned: "", c_taken: "", c_missed: "", c_volume: "", c_volume_unit: "L", c_temperature: "", c_seal: "intact", c_paced: "hand", portions: [],
 };
 
 /** The key of a point's draft. */
@@ -29,10 +30,9 @@ export const cardOf = (id) => `/field/point/${encodeURIComponent(id)}`;
 /** A point's whole name, the firm first. */
 export const nameOf = (point) => `${point.discharger_name}, ${point.name}`;
 
-/** The daily maximum in force today, or null. */
-export function limitOf(point) {
-  const today = day(new Date(), programme()?.zone);
-  const inForce = point.limits.filter((limit) => limit.basis === "daily_maximum" && limit.from <= today);
+/** The daily maximum in force on a day (today when none is named), or null. */
+export function limitOf(point, on = day(new Date(), programme()?.zone)) {
+  const inForce = point.limits.filter((limit) => limit.basis === "daily_maximum" && limit.from <= on);
   return inForce.at(-1) ?? null;
 }
 

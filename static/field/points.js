@@ -6,6 +6,7 @@ import { ago, reported } from "../parts/format.js";
 import { Empty } from "../parts/frame.js";
 import { all, one, programme, useView } from "../parts/view.js";
 import { cardOf, matches } from "./point.js";
+import { Today } from "./round.js";
 
 function Last({ point }) {
   const outlook = one("outlook", point.id);
@@ -40,7 +41,8 @@ export function Points({ here }) {
   const found = points.filter((point) => matches(point, text));
   return html`<div class="screen">
     <div class="row spread head"><${here ? "h2" : "h1"}>Points<//>
-      <a class="button" href="/field/samples">My samples</a></div>
+      <span class="row"><a class="button" href="/field/rounds">Rounds</a><a class="button" href="/field/samples">My samples</a></span></div>
+    <${Today} />
     ${points.length > 0 && html`<div class="field search"><label for=${name}>Find a point</label>
       <input id=${name} type="search" autocomplete="off" value=${text} onInput=${(event) => setText(event.target.value)} /></div>`}
     ${points.length === 0 && html`<${NoPoints} />`}

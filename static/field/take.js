@@ -2,20 +2,23 @@
 
 import { html } from "../parts/html.js";
 import { readCode } from "../parts/bottle_code.js";
-import { Check, Choice, LongField, NumberField, TextField, echo, measuredOf, useForm, useSaving } from "../parts/fields.js";
+import { Check, Choice, LongField, NumberField, Select, TextField, echo, measuredOf, useForm, useSaving } from "../parts/fields.js";
 import { dayAndTime, localInput, plain } from "../parts/format.js";
 import { Empty, Problem, go, say } from "../parts/frame.js";
 import { newId, state, withOffset } from "../parts/journal.js";
-import { one, programme, useView } from "../parts/view.js";
+import { all, one, programme, useView } from "../parts/view.js";
+import { useWords } from "../parts/words.js";
 import { freshCode } from "./codes.js";
 import { planOf } from "./expected.js";
 import { useForecast } from "./forecast.js";
+import { gasGate } from "./gas.js";
 import { ACTIVITIES, BLANK, cardOf, draftKey, nameOf, READINGS } from "./point.js";
+import { CompositePart, compositeOf, compositeProblem, openVisit, samplerAt } from "./sampler.js";
 
 const EARLY_MS = 5 * 60000;
 
 /** What is wrong with a form, by field; empty when it can be saved. */
-export function problemsOf(values, now = Date.now()) {
+export function problemsOf(values, sampler = null, now = Date.now()) {
   const wrong = {};
   const { code, problem } = readCode(values.bottle);
   if (!values.bottle.trim()) wrong.bottle = "Scan or type the code on the bottle.";
@@ -28,6 +31,11 @@ export function problemsOf(values, now = Date.now()) {
     if (told.problem) wrong[field] = told.problem;
   }
   if (values.acid && echo(values.acid_ph, "pH").problem) wrong.acid_ph = echo(values.acid_ph, "pH").problem;
+  if (kindOf(values, sampler) === "composite") {
+    const told = compositeProblem(values, sampler);
+    if (told) wrong.composite = told;
+  }
+  if (values.purpose === "duplicate" && !values.of) wrong.of = "Say which sample it repeats.";
   if (values.factor !== null && !values.reason.trim()) wrong.reason = "Say why this dilution: it differs from the proposed one.";
   return wrong;
 }
@@ -47,8 +55,11 @@ function planBody(plan, values, forecast) {
   };
 }
 
+/** Grab or composite: a running sampler is picked up as a composite. */
+const kindOf = (values, sampler) => values.kind || (sampler ? "composite" : "grab");
+
 /** The body of the entry, measured values as typed. */
-export function bodyOf(point, values, plan, forecast) {
+export function bodyOf(point, values, plan, forecast, { visit = null, sampler = null, meter = null } = {}) {
   const field = {};
   for (const [key, , , name] of READINGS) {
     const measured = measuredOf(values[key], values[`${key}_unit`]);
@@ -56,8 +67,13 @@ export function bodyOf(point, values, plan, forecast) {
   }
   return {
     point: point.id,
+    visit: visit?.id ?? null,
+    purpose: values.purpose,
+    of: values.purpose === "duplicate" ? values.of : null,
     bottle: readCode(values.bottle).code,
-    sample_kind: "grab",
+    sample_kind: kindOf(values, sampler),
+    composite: kindOf(values, sampler) === "composite" ? compositeOf(values, sampler) : null,
+    meter: Object.keys(field).length ? meter : null,
     collected_at: withOffset(values.time ? new Date(values.time) : new Date()),
     field,
     activity: values.activity,
@@ -110,22 +126,47 @@ function Bottle({ values, set, wrong }) {
   </section>`;
 }
 
+const PURPOSES = [["sample", "Sample"], ["duplicate", "Field duplicate"], ["field blank", "Field blank"]];
+
+/** What the bottle is for, grab or composite, and which meter gave the readings. */
+function What({ point, values, set, sampler, meters, meter, wrong }) {
+  const others = all("sample", point.id).filter((sample) => sample.purpose !== "field blank").slice(-6).reverse();
+  return html`<section class="card stack"><h2>What it is</h2>
+    <${Choice} label="Bottle of" value=${values.purpose} options=${PURPOSES} onChoose=${(key) => set("purpose", key)} />
+    ${values.purpose === "duplicate" && html`<${Select} label="Repeats" value=${values.of} options=${[["", "choose"], ...others.map((sample) => [sample.id, `${sample.bottle}, ${dayAndTime(sample.collected_at, programme()?.zone)}`])]} onChoose=${(id) => set("of", id)} />`}
+    ${wrong.of && html`<p class="above">▲ ${wrong.of}</p>`}
+    <${Choice} label="Taken as" value=${kindOf(values, sampler)} options=${[["grab", "Grab"], ["composite", "Composite"]]} onChoose=${(key) => set("kind", key)} />
+    ${point.sample_kind === "composite" && kindOf(values, sampler) === "grab" && html`<p class="above">▲ This point asks for a composite; a grab is weak evidence here.</p>`}
+    ${meters.length > 0 && html`<${Select} label="Meter of the readings" value=${meter ?? ""} options=${[["", "none of ours"], ...meters.map((one_) => [one_.id, one_.name])]} onChoose=${(id) => set("meter", id)} />`}</section>`;
+}
+
 function Form({ point, values, set, forget }) {
+  const visit = useView(() => openVisit(point.id));
+  const sampler = useView(() => samplerAt(point.id));
+  const words = useWords();
+  const meters = useView(() => all("instrument")).filter((one_) => one_.what === "meter");
+  const meter = values.meter ?? (meters.length === 1 ? meters[0].id : null);
+  const blocked = visit ? gasGate(visit, point, words).why : [];
   const forecast = useForecast(point, values);
   const plan = planOf(forecast, values);
   const { save, problem, busy } = useSaving(async () => {
-    const found = problemsOf(values);
+    if (blocked.length) throw new Error(`No sample yet: ${blocked.join("; ")}. Enter a new gas reading in the visit.`);
+    const found = problemsOf(values, sampler);
     set("asked", true);
     if (Object.keys(found).length) throw new Error("Not saved yet: see what is marked.");
     const { code } = readCode(values.bottle);
-    await state("sample.taken", newId(), bodyOf(point, values, plan, forecast ?? null));
+    const picked = kindOf(values, sampler) === "composite" ? sampler : null;
+    await state("sample.taken", picked?.id ?? newId(), bodyOf(point, values, plan, forecast ?? null, { visit, sampler: picked, meter: meter || null }));
     await forget();
     say(`Saved on this tablet: ${code}`);
-    go("/field/samples");
+    go(visit ? `/field/visit/${visit.id}` : "/field/samples");
   });
-  const wrong = values.asked ? problemsOf(values) : {};
+  const wrong = values.asked ? problemsOf(values, sampler) : {};
   return html`<form class="stack" onSubmit=${save} novalidate>
     <${Bottle} values=${values} set=${set} wrong=${wrong.bottle} />
+    <${What} ...${{ point, values, set, sampler, meters, meter, wrong }} />
+    ${kindOf(values, sampler) === "composite" && html`<${CompositePart} v=${values} set=${set} sampler=${sampler} wrong=${wrong.composite} />`}
+    ${wrong.composite && html`<p class="above">▲ ${wrong.composite}</p>`}
     <section class="card stack"><h2>When and what</h2>
       <${Moment} values=${values} set=${set} wrong=${wrong.time} />
       <${Choice} label="What goes on at the firm" value=${values.activity} options=${ACTIVITIES} onChoose=${(key) => set("activity", values.activity === key ? null : key)} />

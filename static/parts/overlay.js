@@ -120,14 +120,42 @@ const KINDS = new Map(Object.entries({
   "sample.taken": (layer, { about, at, by }, body) => {
     const until = new Date(new Date(body.collected_at).getTime() + HOLD_DAYS * 86400000).toISOString();
     const stated = { ...body, by, by_name: layer.name(by), recorded_at: at, hold_until: until };
-    const state = { holder: null, received: null, results: [], certificate: null, state: "taken" };
+    const state = { holder: null, received: null, results: [], certificate: null, state: "taken", split: null, doubts: [] };
     layer.put("sample", about, { ...stated, ...state }, { parent: body.point, at: body.collected_at });
     putBottle(layer, body.bottle, { sample: about, point: body.point });
+    if (body.visit) layer.update("visit", body.visit, (visit) => ({ samples: [...visit.samples, about] }));
+    layer.update("sampler", about, () => ({ state: "picked up" }));
   },
   "custody.handed_over": (layer, _entry, body) => body.bottles.forEach((code) => putBottle(layer, code, { holder: body.to })),
   "bottle.received": (layer, { at, by }, body) => putBottle(layer, body.bottle, {
     received: { ...body, at, by, by_name: layer.name(by) }, holder: "laboratory",
   }),
+  "round.planned": (layer, { about, at, by }, body) => layer.put("round", about, {
+    ...body, planned_by: layer.name(by), planned_at: at, changed: null, visits: {},
+  }, { at: body.day }),
+  "round.changed": (layer, { about, at, by }, body) => layer.update("round", about, () => ({ ...body, changed: { by: layer.name(by), at } })),
+  "visit.begun": (layer, { about, by }, body) => {
+    const nothing = { gas: [], gas_confirmed: null, flows: [], samples: [], sampler: null, outcome: null, ended: null };
+    layer.put("visit", about, { ...body, by, by_name: layer.name(by), ...nothing }, { parent: body.point, at: body.arrived_at });
+    if (body.round && body.stop) layer.update("round", body.round, (round) => ({ visits: { ...round.visits, [body.stop]: about } }));
+  },
+  "gas.tested": (layer, { about, by }, body) => layer.update("visit", about, (visit) => ({
+    gas: [...visit.gas, { ...body, by: layer.name(by) }], gas_confirmed: null,
+  })),
+  "gas.confirmed": (layer, { about, at, by }, body) => layer.update("visit", about, () => ({ gas_confirmed: { ...body, by: layer.name(by), at } })),
+  "flow.measured": (layer, { about, by }, body) => layer.update("visit", about, (visit) => ({ flows: [...visit.flows, { ...body, by: layer.name(by) }] })),
+  "visit.ended": (layer, { about, at, by }, body) => layer.update("visit", about, () => ({
+    outcome: body.outcome, ended: { ...body, by: layer.name(by), at },
+  })),
+  "sampler.set": (layer, { about, by }, body) => {
+    layer.put("sampler", about, { ...body, by, by_name: layer.name(by), state: "running" }, { parent: body.point, at: body.started_at });
+    if (body.visit) layer.update("visit", body.visit, () => ({ sampler: about }));
+  },
+  "sample.split": (layer, { about, at, by }, body) => layer.update("sample", about, () => ({ split: { ...body, by: layer.name(by), at } })),
+  "meter.checked": (layer, { about, by }, body) => {
+    const meter = layer.get("meter", about) ?? { checks: [], samples: [] };
+    layer.put("meter", about, { ...meter, checks: [...meter.checks, { ...body, by: layer.name(by) }] });
+  },
   "run.planned": (layer, { about, at, by }, body) => {
     layer.put("run", about, {
       ...body, state: "planned", tubes: [...body.tubes].sort((a, b) => a.position - b.position).map(newTube), gates: {},

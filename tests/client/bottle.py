@@ -8,6 +8,7 @@ from itertools import count
 from typing import Any
 
 from app.journal.entry import digest
+from app.journal.kinds import table
 from app.safety.gates import GATES
 
 CODE = "2YGD99"
@@ -29,6 +30,18 @@ RECIPE = {
     "temperature_c": "150",
     "minutes": "120",
     "order": ["digestion solution", "acid reagent", "sample"],
+}
+SIGNED = {"name": "L. Marsden", "strokes": "M1 1L2 2"}
+PERIOD: dict[str, Any] = {
+    "started_at": "2026-11-01T10:15:00-06:00",
+    "paced_by": "time",
+    "planned": 96,
+    "taken": 95,
+    "missed": "",
+    "volume": {"text": "9", "unit": "L"},
+    "temperature": None,
+    "seal": "intact",
+    "portions": [],
 }
 STEPS = [{"pipette_ml": 20.0, "flask_ml": 100.0}]
 DILUTION = {"factor": 5.0, "steps": STEPS, "relative_u": 0.002, "reason": ""}
@@ -62,11 +75,43 @@ def _setting_up() -> Iterator[tuple[str, str, dict[str, Any]]]:
     yield "calibration.made", "k1", {**made, "valid_until": "2027-01-01", "standards": standards}
 
 
+def _visiting() -> Iterator[tuple[str, str, dict[str, Any]]]:
+    yield "instrument.added", "i3", {"name": "Field meter", "what": "meter"}
+    check = {"what": "calibration", "quantity": "pH", "at": "2026-11-02T07:00:00-06:00", "note": ""}
+    points = [{"reference": "4.01", "read": "4,0", "lot": ""}, {"reference": "7", "read": "7", "lot": ""}]
+    yield "meter.checked", "i3", {**check, "points": points, "slope_percent": "98", "passed": None}
+    stop = {"id": "stop-1", "point": "p1", "sample_kind": "composite", "bottles": 1, "note": ""}
+    other = stop | {"id": "stop-2"}
+    yield "round.planned", "o1", {"name": "N", "day": "2026-11-02", "inspector": None, "stops": [stop]}
+    yield "round.changed", "o1", {"stops": [other, stop]}
+    begun = {"round": "o1", "stop": "stop-1", "point": "p1", "arrived_at": "2026-11-02T09:00:00-06:00"}
+    there = {"introduced": True, "present": [], "activity": "idle", "production": "", "weather": "dry"}
+    yield "visit.begun", "v1", begun | there
+    gas = {"at": "2026-11-02T09:01:00-06:00", "meter": "", "oxygen_percent": "20,9", "lel_percent": "0"}
+    yield "gas.tested", "v1", gas | {"h2s_ppm": "14", "co_ppm": "0"}
+    yield "gas.tested", "v1", gas | {"h2s_ppm": "0", "co_ppm": "0"}
+    yield "gas.confirmed", "v1", {"note": "aired"}
+    flow: dict[str, Any] = {"at": "2026-11-02T09:10:00-06:00", "note": ""}
+    flow |= dict.fromkeys(("head_error", "tail", "volume", "seconds", "register_start", "register_end"))
+    flow |= {"device": {"type": "v-notch 90", "size": None, "crest": None, "crest_height": None}}
+    head = {"text": "0,5", "unit": "ft"}
+    yield "flow.measured", "v1", flow | {"head": head, "count": None, "meter": None}
+    sampler = {"point": "p1", "visit": "v1", "started_at": PERIOD["started_at"], "paced_by": "time"}
+    sampler |= dict.fromkeys(("every_volume", "expected_volume", "aliquot", "bottle_volume", "temperature"))
+    sampler |= dict.fromkeys(("intake", "tubing", "seal", "lock"), "")
+    yield "sampler.set", "s1", sampler | {"every_minutes": "15", "planned": 96, "cooling": "ice"}
+
+
 def _sampling() -> Iterator[tuple[str, str, dict[str, Any]]]:
     sample = {
         "point": "p1",
+        "visit": "v1",
+        "purpose": "sample",
+        "of": None,
         "bottle": CODE,
-        "sample_kind": "grab",
+        "sample_kind": "composite",
+        "composite": PERIOD,
+        "meter": "i3",
         "collected_at": "2026-11-02T10:15:00-06:00",
         "field": {"conductivity_us_cm": {"text": "1,9", "unit": "mS/cm"}},
         "activity": "production",
@@ -76,7 +121,12 @@ def _sampling() -> Iterator[tuple[str, str, dict[str, Any]]]:
         "note": "",
     }
     yield "sample.taken", "s1", sample
-    yield "custody.handed_over", "h1", {"bottles": [CODE], "to": "Courier", "temperature": None, "note": ""}
+    split = {"to": "L. Marsden", "container": "", "receipt": "refused", "signature": None, "note": ""}
+    yield "sample.split", "s1", split
+    left = {"left_at": "2026-11-02T11:00:00-06:00", "reason": "", "told": "", "remarks": "none"}
+    yield "visit.ended", "v1", {"outcome": "sampled", **left, "signature": SIGNED, "declined": False}
+    over = {"bottles": [CODE], "to": "Courier", "to_kind": "person", "seal": "", "given": SIGNED}
+    yield "custody.handed_over", "h1", over | {"taken": None, "temperature": None, "note": ""}
     receipt = {
         "bottle": CODE,
         "temperature": {"text": "4", "unit": "Cel"},
@@ -111,7 +161,7 @@ def _running() -> Iterator[tuple[str, str, dict[str, Any]]]:
 
 def statements() -> list[tuple[str, str, dict[str, Any]]]:
     """Return (kind, about, body) of everything, in order."""
-    return [*_setting_up(), *_sampling(), *_running()]
+    return [*_setting_up(), *_visiting(), *_sampling(), *_running()]
 
 
 def texts(person: str) -> list[str]:
@@ -128,7 +178,7 @@ def texts(person: str) -> list[str]:
             "n": n,
             "prev": previous,
             "kind": kind,
-            "version": 1,
+            "version": table()[kind].version,
             "about": about,
             "at": f"2026-11-03T12:00:{n:02d}-06:00",
             "zone": "America/Chicago",

@@ -23,8 +23,18 @@ ONLY_THE_SERVER = {
     "recipe": {"derived"},
     "calibration": {"fitted"},
     "sample": {"hold_until"},
+    "meter": {"samples"},
+}
+# What a flow and a check amount to is worked out beside them on the tablet, and stated by the server.
+WORKED_OUT = {
+    "visit": ("flows", {"status", "l_s", "rating", "words", "error_percent", "volume_l", "meter_percent"}),
+    "meter": ("checks", {"ok", "words"}),
 }
 TYPES = (
+    "round",
+    "visit",
+    "sampler",
+    "meter",
     "discharger",
     "point",
     "recipe",
@@ -73,6 +83,9 @@ def compared(records: list[dict[str, Any]]) -> dict[str, Any]:
         if record["type"] in TYPES:
             hidden = ONLY_THE_SERVER.get(record["type"], set())
             body = {name: value for name, value in record["body"].items() if name not in hidden}
+            rows, extra = WORKED_OUT.get(record["type"], ("", set()))
+            if rows:
+                body[rows] = [{k: v for k, v in row.items() if k not in extra} for row in body[rows]]
             found[f"{record['type']} {record['id']}"] = {"parent": record["parent"], "body": body}
     return found
 
