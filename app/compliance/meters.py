@@ -159,7 +159,8 @@ def _electrode(quantity: str, points: Sequence[Point], slope: float | None, cali
         return []
     found = []
     buffers = [point.reference for point in points]
-    if calibration and max(buffers) - min(buffers) < BUFFERS_APART_PH:
+    # Buffers named 4 and 7 stand at 4.01 and 7.00: their distance is judged to a tenth.
+    if calibration and round(max(buffers) - min(buffers), 1) < BUFFERS_APART_PH:
         found.append(f"the buffers lie less than {plain(BUFFERS_APART_PH)} pH apart")
     if slope is not None and not SLOPE_PERCENT[0] <= slope <= SLOPE_PERCENT[1]:
         low, high = SLOPE_PERCENT

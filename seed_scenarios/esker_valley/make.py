@@ -279,7 +279,7 @@ def story_of(points: dict[str, Body], codes: list[str]) -> list[Body]:
     heat(story, -1.25, "run-13")
     for i, (name, factor) in enumerate((("hollin-b", 5), ("marl-2", 20), ("sable-a", 1))):
         sample(story, -6 + 1.2 * i, points[name], codes[9 + i], factor, "white foam" if i == 0 else "")
-        story.told[-1]["body"] |= {"visit": f"visit-{name}", "meter": "field-meter"}
+        story.told[-1]["body"] |= {"visit": f"visit-{name}", "meter": "meter-4"}
     hand_over(story, -2.4, "hand-3", codes[9:10], "4480", "4.4")
     sample(story, -0.6, points["wend-b"], codes[9], 5, "label read in the rain")
     story.told[-1]["about"] = "sample-twice"
@@ -317,7 +317,7 @@ def round_of_today(story: Story) -> None:
     check: Body = {"what": "calibration", "at": "@-7.2", "slope_percent": "98.6", "passed": None, "note": ""}
     buffers = [{"reference": a, "read": b, "lot": "B-7"} for a, b in (("4.01", "4.02"), ("7.00", "7.00"))]
     check |= {"quantity": "pH", "points": buffers}
-    story.tell(-7.2, "teague", "meter.checked", "field-meter", check)
+    story.tell(-7.2, "teague", "meter.checked", "meter-4", check)
     stops = [
         {"id": f"stop-{id_}", "point": id_, "sample_kind": "grab", "bottles": 1, "note": ""} for id_ in STOPS
     ]

@@ -99,15 +99,19 @@ function FlowForm({ visit, point, words, done }) {
     <${Problem} words=${problem} /><button disabled=${busy}>Save the flow</button></form>`;
 }
 
+/** The flows of a visit. */
+export function Flows({ visit, words }) {
+  if (!visit.flows.length) return null;
+  return html`<ul class="plain past">${visit.flows.map((flow) => {
+    const found = flow.status ? flow : words && flowOf(flow, words.ratings);
+    return html`<li key=${flow.at}>${clock(flow.at, programme()?.zone)}, ${TYPES.find(([key]) => key === flow.device.type)?.[1]}: ${found ? html`<${FlowLine} flow=${found} />` : ""}</li>`;
+  })}</ul>`;
+}
+
 /** The flow part of a visit. */
 export function Flow({ visit, point, words }) {
   const [open, setOpen] = useState(false);
-  const zone = programme()?.zone;
-  return html`<section class="card stack"><h2>Flow</h2>
-    ${visit.flows.length > 0 && html`<ul class="plain past">${visit.flows.map((flow) => {
-      const found = flow.status ? flow : words && flowOf(flow, words.ratings);
-      return html`<li key=${flow.at}>${clock(flow.at, zone)}, ${TYPES.find(([key]) => key === flow.device.type)?.[1]}: ${found ? html`<${FlowLine} flow=${found} />` : ""}</li>`;
-    })}</ul>`}
+  return html`<section class="card stack"><h2>Flow</h2><${Flows} visit=${visit} words=${words} />
     ${open ? html`<${FlowForm} key=${visit.flows.length} ...${{ visit, point, words }} done=${() => setOpen(false)} />` : html`<button type="button" onClick=${() => setOpen(true)}>${visit.flows.length ? "Another flow" : "Measure the flow"}</button>`}
   </section>`;
 }

@@ -50,21 +50,26 @@ function Confirm({ visit }) {
     <${Problem} words=${problem} /><button disabled=${busy}>I confirm: sampling from outside goes on</button></form>`;
 }
 
+/** The gas readings of a visit, each with what it means. */
+export function GasReadings({ visit, words }) {
+  const zone = programme()?.zone;
+  return html`${visit.gas.length > 0 && html`<ul class="plain past">${visit.gas.map((reading) => {
+      const alarms = words ? alarmsOf(reading, words.gas) : [];
+      return html`<li key=${reading.at}>${clock(reading.at, zone)}: O₂ ${reading.oxygen_percent ?? "–"} %, LEL ${reading.lel_percent ?? "–"} %, H₂S ${reading.h2s_ppm ?? "–"} ppm, CO ${reading.co_ppm ?? "–"} ppm
+        ${alarms.length ? html`<strong class="above"> ▲ alarm</strong>` : html`<span> ○ below every alarm point</span>`}</li>`;
+    })}</ul>`}
+    ${visit.gas_confirmed && html`<p class="soft">Confirmed by ${visit.gas_confirmed.by}: ${visit.gas_confirmed.note}</p>`}`;
+}
+
 /** The gas part of a visit. */
 export function Gas({ visit, point, words }) {
   const gate = gasGate(visit, point, words);
   const needed = gate.why.length > 0 && !gate.confirm;
   const [open, setOpen] = useState(false);
-  const zone = programme()?.zone;
   return html`<section class="card stack ${gate.why.length ? "stop" : ""}"><h2>Gas, from outside</h2>
     ${gate.why.length > 0 && html`<p><strong>▲ No sample yet: ${gate.why.join("; ")}.</strong></p>`}
     ${words && html`<p class="small">${words.no_entry} Test before the lid is off: oxygen, then combustible, then toxic gas. Leave at an alarm, upwind, and call.</p>`}
-    ${visit.gas.length > 0 && html`<ul class="plain past">${visit.gas.map((reading) => {
-      const alarms = words ? alarmsOf(reading, words.gas) : [];
-      return html`<li key=${reading.at}>${clock(reading.at, zone)}: O₂ ${reading.oxygen_percent ?? "–"} %, LEL ${reading.lel_percent ?? "–"} %, H₂S ${reading.h2s_ppm ?? "–"} ppm, CO ${reading.co_ppm ?? "–"} ppm
-        ${alarms.length ? html`<strong class="above"> ▲ alarm</strong>` : html`<span> ○ below every alarm point</span>`}</li>`;
-    })}</ul>`}
-    ${visit.gas_confirmed && html`<p class="soft">Confirmed by ${visit.gas_confirmed.by}: ${visit.gas_confirmed.note}</p>`}
+    <${GasReadings} visit=${visit} words=${words} />
     ${gate.confirm && html`<${Confirm} visit=${visit} />`}
     ${needed || open ? html`<${Test} key=${visit.gas.length} visit=${visit} done=${() => setOpen(false)} />` : html`<button type="button" onClick=${() => setOpen(true)}>${visit.gas.length ? "Another gas reading" : "Enter a gas reading"}</button>`}
   </section>`;

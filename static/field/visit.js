@@ -9,8 +9,8 @@ import { Sign, Signed, UNSIGNED, signatureOf } from "../parts/sign.js";
 import { all, one, programme, useView } from "../parts/view.js";
 import { useWords } from "../parts/words.js";
 import { Hazards } from "./card.js";
-import { Flow } from "./flow_form.js";
-import { Gas, gasGate } from "./gas.js";
+import { Flow, Flows } from "./flow_form.js";
+import { Gas, GasReadings, gasGate } from "./gas.js";
 import { ACTIVITIES, cardOf, limitOf, nameOf } from "./point.js";
 import { openVisit, samplerAt } from "./sampler.js";
 
@@ -59,14 +59,19 @@ export function Arrive({ id, stop, round }) {
     <${Problem} words=${problem} /><div class="sticky"><button class="main" disabled=${busy}>${busy ? "Saving…" : "I am here"}</button></div></form></div>`;
 }
 
+function SampleList({ visit }) {
+  const samples = all("sample", visit.point).filter((sample) => sample.visit === visit.id);
+  if (!samples.length) return null;
+  return html`<ul class="plain past">${samples.map((sample) => html`<li key=${sample.id} class="row spread"><span><strong class="code">${sample.bottle}</strong> ${sample.purpose === "sample" ? sample.sample_kind : sample.purpose}${sample.split ? `; split, receipt ${sample.split.receipt}` : ""}</span>
+      <span class="row">${!sample.split && html`<a class="button" href="/field/split/${sample.id}">Split</a>`}<${Where} about=${sample.id} /></span></li>`)}</ul>`;
+}
+
 function Samples({ visit, point, words }) {
-  const samples = all("sample", point.id).filter((sample) => sample.visit === visit.id);
   const sampler = samplerAt(point.id);
   const blocked = gasGate(visit, point, words).why.length > 0;
   const take = `${cardOf(point.id)}/take`;
   return html`<section class="card stack"><h2>Samples</h2>
-    ${samples.length > 0 && html`<ul class="plain past">${samples.map((sample) => html`<li key=${sample.id} class="row spread"><span><strong class="code">${sample.bottle}</strong> ${sample.purpose === "sample" ? sample.sample_kind : sample.purpose}${sample.split ? `; split, receipt ${sample.split.receipt}` : ""}</span>
-      <span class="row">${!sample.split && html`<a class="button" href="/field/split/${sample.id}">Split</a>`}<${Where} about=${sample.id} /></span></li>`)}</ul>`}
+    <${SampleList} visit=${visit} />
     ${sampler && html`<p>◐ A sampler runs here${sampler.planned && `: ${sampler.planned} aliquots planned`}${sampler.seal && `, seal ${sampler.seal}`}.</p>`}
     ${blocked ? html`<p class="above">▲ The gas readings do not allow a sample: see above.</p>` : html`<div class="row"><a class="button main" href=${take}>${sampler ? "Pick the composite up" : "Take a sample"}</a>
       ${!sampler && html`<a class="button" href="${cardOf(point.id)}/sampler">Set a sampler up</a>`}</div>`}
@@ -102,11 +107,14 @@ function Leave({ visit, point }) {
     <${Problem} words=${problem} /><button class="main" disabled=${busy}>${busy ? "Saving…" : "End the visit"}</button></form>`;
 }
 
-function Ended({ visit }) {
+function Ended({ visit, words }) {
   const { ended } = visit;
   return html`<section class="card stack"><h2>Ended: ${visit.outcome}</h2><p>${clock(visit.arrived_at, programme()?.zone)} to ${clock(ended.left_at, programme()?.zone)}, ${ended.by}.</p>
     ${ended.reason && html`<p>${ended.reason}</p>`}${ended.told && html`<p class="soft">Told: ${ended.told}</p>`}${ended.remarks && html`<p>“${ended.remarks}”</p>`}
-    ${ended.declined ? html`<p class="soft">They declined to sign.</p>` : html`<${Signed} signature=${ended.signature} />`}</section>`;
+    ${ended.declined ? html`<p class="soft">They declined to sign.</p>` : html`<${Signed} signature=${ended.signature} />`}</section>
+    ${visit.gas.length > 0 && html`<section class="card"><h2>Gas</h2><${GasReadings} visit=${visit} words=${words} /></section>`}
+    ${visit.flows.length > 0 && html`<section class="card"><h2>Flow</h2><${Flows} visit=${visit} words=${words} /></section>`}
+    <${SampleList} visit=${visit} />`;
 }
 
 /** The screen of one visit. */
@@ -121,7 +129,7 @@ export function Visit({ id }) {
       <p class="row"><span class="tag">${outcomeWords(visit)}</span><span class="tag">since ${clock(visit.arrived_at, programme()?.zone)}</span>${limit && html`<span class="tag">limit ${plain(limit.value)} mg/L</span>`}<${Where} about=${visit.id} /></p></header>
     <${Hazards} point=${point} />
     ${visit.present.length > 0 && html`<p>With ${visit.present.map((one_) => [one_.name, one_.title].filter(Boolean).join(", ")).join("; ")}.${visit.production && ` “${visit.production}”`}</p>`}
-    ${visit.ended ? html`<${Ended} visit=${visit} />` : html`<${Gas} ...${{ visit, point, words }} /><${Flow} ...${{ visit, point, words }} /><${Samples} ...${{ visit, point, words }} /><${Leave} visit=${visit} point=${point} />`}
+    ${visit.ended ? html`<${Ended} visit=${visit} words=${words} />` : html`<${Gas} ...${{ visit, point, words }} /><${Flow} ...${{ visit, point, words }} /><${Samples} ...${{ visit, point, words }} /><${Leave} visit=${visit} point=${point} />`}
     <p><a href="/emergency">Emergency and first aid</a></p></div>`;
 }
 

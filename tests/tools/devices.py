@@ -267,3 +267,34 @@ def whole_path(person: str, code: str = CODES[0], run: str = "run-1") -> list[st
         *closed(device, run),
         device.make("result.reviewed", f"{run}:{code}", {"decision": "accepted", "reason": ""}),
     ]
+
+
+def visiting(person: str) -> list[str]:
+    """Return a round with one stop, its visit going on after a gas alarm, a flow and a split sample."""
+    d = Device(person)
+    at = "2031-05-29T08:00:00-06:00"
+    stop = {"id": "stop-1", "point": "outlet-b", "sample_kind": "grab", "bottles": 1, "note": ""}
+    begun = {"round": "round-1", "stop": "stop-1", "point": "outlet-b", "arrived_at": at, "introduced": True}
+    present = {"present": [{"name": "L. Marsden", "title": "shift lead", "phone": ""}], "activity": None}
+    gas = {"at": at, "meter": "", "oxygen_percent": "20.9", "lel_percent": "0", "co_ppm": "0"}
+    flow: Body = dict.fromkeys(("head_error", "tail", "volume", "seconds", "register_start", "register_end"))
+    flow |= {
+        "at": at,
+        "head": measured("0.5", "ft"),
+        "count": None,
+        "meter": measured("230", "gpm"),
+        "note": "",
+    }
+    flow["device"] = {"type": "v-notch 90", "size": None, "crest": None, "crest_height": None}
+    check: Body = {"what": "check", "quantity": "pH", "at": at, "slope_percent": None, "passed": None}
+    check |= {"points": [{"reference": "7", "read": "7.2", "lot": ""}], "note": ""}
+    plan = {"name": "North round", "day": "2031-05-29", "inspector": None, "stops": [stop]}
+    return [
+        d.make("instrument.added", "field-meter", {"name": "Field meter 3", "what": "meter"}),
+        d.make("meter.checked", "field-meter", check),
+        d.make("round.planned", "round-1", plan),
+        d.make("visit.begun", "visit-1", begun | present | {"production": "", "weather": "dry"}),
+        d.make("gas.tested", "visit-1", gas | {"h2s_ppm": "12"}),
+        d.make("gas.tested", "visit-1", gas | {"h2s_ppm": "1"}),
+        d.make("flow.measured", "visit-1", flow),
+    ]
