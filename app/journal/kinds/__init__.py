@@ -22,7 +22,7 @@ INSPECTOR, ANALYST, COORDINATOR, ADMINISTRATOR = "inspector", "analyst", "coordi
 ROLES = (INSPECTOR, ANALYST, COORDINATOR, ADMINISTRATOR)
 SERVER = "server"
 
-_MODULES = ("programme", "field", "bench", "review")
+_MODULES = ("programme", "field", "bench", "review", "interferences", "studies")
 
 
 class Body(Schema):

@@ -15,7 +15,7 @@ from app.records.change import Change
 
 Handler = Callable[[Change], None]
 
-_MODULES = ("programme", "field", "stores", "runs", "review")
+_MODULES = ("programme", "field", "stores", "runs", "review", "interferences", "studies")
 _handlers: dict[str, Handler] = {}
 
 
