@@ -15,6 +15,7 @@ from __future__ import annotations
 import math
 from collections.abc import Sequence
 from dataclasses import dataclass
+from typing import Literal
 
 from scipy.special import chdtri
 
@@ -112,6 +113,78 @@ def _from_blanks(blanks: Sequence[float | None]) -> float | None:
     if len(numbers) < len(blanks):
         return max(numbers)
     return max(math.fsum(numbers) / len(numbers), 0.0) + t_99(len(numbers)) * _sd(numbers)
+
+
+@dataclass(frozen=True)
+class Workings:
+    """How a detection limit came about, for the reader who does the sum again.
+
+    Parameters
+    ----------
+    spikes, blanks : int
+        Numbers of results.
+    spikes_mean, spikes_sd : float
+        mg/L.
+    spikes_dof : int
+        One less than their number.
+    spikes_t : float
+        One-sided 99 % point.
+    blanks_rule : {"none", "highest", "mean"}
+        No blank gave a number; some did, the highest counts; all did.
+    blanks_with_number : int
+        Of them.
+    blanks_mean, blanks_sd : float or None
+        mg/L, where all gave a number.
+    blanks_dof : int or None
+        One less than their number, there.
+    blanks_t : float or None
+        One-sided 99 % point, there.
+    """
+
+    spikes: int
+    blanks: int
+    spikes_mean: float
+    spikes_sd: float
+    spikes_dof: int
+    spikes_t: float
+    blanks_rule: Literal["none", "highest", "mean"]
+    blanks_with_number: int
+    blanks_mean: float | None
+    blanks_sd: float | None
+    blanks_dof: int | None
+    blanks_t: float | None
+
+
+def workings(spikes: Sequence[float], blanks: Sequence[float | None]) -> Workings:
+    """Return which rules a detection limit was found by, with their t and degrees of freedom.
+
+    Parameters
+    ----------
+    spikes : sequence of float
+        As :func:`detection_limit` took them.
+    blanks : sequence of float or None
+        As :func:`detection_limit` took them.
+
+    Returns
+    -------
+    Workings
+    """
+    numbers, n = [b for b in blanks if b is not None], len(spikes)
+    whole = bool(numbers) and len(numbers) == len(blanks)
+    return Workings(
+        n,
+        len(blanks),
+        math.fsum(spikes) / n,
+        _sd(spikes),
+        n - 1,
+        t_99(n),
+        "mean" if whole else "highest" if numbers else "none",
+        len(numbers),
+        math.fsum(numbers) / len(numbers) if whole else None,
+        _sd(numbers) if whole else None,
+        len(numbers) - 1 if whole else None,
+        t_99(len(numbers)) if whole else None,
+    )
 
 
 def minimum_level(mdl: float) -> float:

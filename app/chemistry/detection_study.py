@@ -12,7 +12,8 @@ the rule's text). Dates are arguments; nothing here knows what day it is.
 from __future__ import annotations
 
 import calendar
-from collections.abc import Sequence
+import math
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 from datetime import date
 from typing import Literal
@@ -25,6 +26,7 @@ FEWEST_DATES = 3
 RECOMPUTE_MONTHS = 13
 DATA_MONTHS = 24
 SPIKES_PER_QUARTER = 2
+EACH_INSTRUMENT = 2
 MAY_STAND = (0.5, 2.0)
 MOST_BLANKS_ABOVE = 0.03
 MOST_SPIKES_WITHOUT_NUMBER = 0.05
@@ -42,27 +44,39 @@ class StudyResult:
         Its name.
     kind : {"spike", "blank"}
         What was digested.
+    instrument : str
+        What read it.
+    mg_l : float or None
+        What it gave; None for a tube without a number.
     """
 
     on: date
     batch: str
     kind: Literal["spike", "blank"]
+    instrument: str = ""
+    mg_l: float | None = 1.0
 
 
-def study_gaps(results: Sequence[StudyResult]) -> tuple[str, ...]:
+def study_gaps(
+    results: Sequence[StudyResult], instruments: Mapping[str, str] | None = None
+) -> tuple[str, ...]:
     """Say what an initial study still lacks.
 
     Parameters
     ----------
     results : sequence of StudyResult
         Done so far.
+    instruments : mapping of str to str, optional
+        Identity and name of the instruments that one limit shall serve. Where
+        they are several, each needs two spikes and two blanks on different
+        dates.
 
     Returns
     -------
     tuple of str
         Empty when numbers, batches and dates suffice.
     """
-    words = []
+    words = [*_spikes_without_number(results)]
     for kind, fewest in (("spike", FEWEST_SPIKES), ("blank", FEWEST_BLANKS)):
         mine = [r for r in results if r.kind == kind]
         if len(mine) < fewest:
@@ -71,7 +85,56 @@ def study_gaps(results: Sequence[StudyResult]) -> tuple[str, ...]:
             words.append(f"{kind}s in at least three batches")
         if len({r.on for r in mine}) < FEWEST_DATES:
             words.append(f"{kind}s on at least three dates")
+        words += _instruments_left(mine, kind, instruments or {})
     return tuple(words)
+
+
+def _spikes_without_number(results: Sequence[StudyResult]) -> list[str]:
+    lost = sum(1 for r in results if r.kind == "spike" and (r.mg_l is None or r.mg_l <= 0))
+    if not lost:
+        return []
+    return [f"spikes without a positive result: {lost}; every one must give one, so spike higher, all anew"]
+
+
+def _instruments_left(mine: Sequence[StudyResult], kind: str, instruments: Mapping[str, str]) -> list[str]:
+    if len(instruments) < 2:
+        return []
+    days = {id_: {r.on for r in mine if r.instrument == id_} for id_ in instruments}
+    return [
+        f"{kind}s on {instruments[id_]}: {len(days[id_])} of {EACH_INSTRUMENT} dates"
+        for id_ in instruments
+        if len(days[id_]) < EACH_INSTRUMENT
+    ]
+
+
+def counting(results: Sequence[StudyResult], on: date) -> tuple[StudyResult, ...]:
+    """Return the results whose day lies within the months that a calculation takes its data from."""
+    return tuple(r for r in results if data_from(on) <= r.on <= on)
+
+
+def level_fits(estimate: float, level: float) -> bool:
+    """Tell whether a spike lies at two to ten times the estimated limit."""
+    return 2.0 * estimate <= level * (1 + 1e-9) and level <= 10.0 * estimate * (1 + 1e-9)
+
+
+def blank_alone(absorbances: Sequence[float], index: int) -> float:
+    """Return a blank's absorbance above the mean of the other blanks of its run.
+
+    Parameters
+    ----------
+    absorbances : sequence of float
+        Of the run's digested blanks, at least two.
+    index : int
+        The one that is asked for.
+
+    Returns
+    -------
+    float
+        Against the mean of all it would look quieter than a blank is, since it
+        is in that mean itself.
+    """
+    others = [a for i, a in enumerate(absorbances) if i != index]
+    return absorbances[index] - math.fsum(others) / len(others)
 
 
 @dataclass(frozen=True)

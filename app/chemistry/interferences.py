@@ -28,6 +28,8 @@ from app.chemistry.atoms import ATOMIC_MASS, OXYGEN
 from app.chemistry.problems import Problems
 
 MG_O2_PER_MEQ = OXYGEN / 4.0
+Sign = Literal["=", "<", ">"]
+_SIGN_WORDS = {"=": "", "<": "At most ", ">": "Over "}
 
 
 @dataclass(frozen=True)
@@ -157,6 +159,7 @@ def chloride_gate(
     dilution_factor: float = 1.0,
     chloride: float | None = None,
     conductivity_us_cm: float | None = None,
+    sign: Sign = "=",
 ) -> ChlorideGate:
     """Judge chloride after dilution.
 
@@ -170,6 +173,8 @@ def chloride_gate(
         Measured in the undiluted sample, mg/L.
     conductivity_us_cm : float, optional
         Of the undiluted sample; used when chloride was not measured.
+    sign : {"=", "<", ">"}
+        What a strip says of ``chloride``: about so much, less, or more.
 
     Returns
     -------
@@ -187,7 +192,9 @@ def chloride_gate(
         wrong.number("chloride", chloride, least=0)
     wrong.stop("Chloride cannot be judged from this.")
     if chloride is not None:
-        return _recorded(limit, dilution_factor, chloride)
+        if (open_ended := _open_ended(limit, dilution_factor, chloride, sign)) is not None:
+            return open_ended
+        return _recorded(limit, dilution_factor, chloride, _SIGN_WORDS[sign])
     bound = None if conductivity_us_cm is None else chloride_bound(conductivity_us_cm)
     if bound is not None and bound / dilution_factor <= limit:
         after = bound / dilution_factor
@@ -202,21 +209,73 @@ def chloride_gate(
     return ChlorideGate("unknown", after_bound, limit, "unknown", 1.0, words)
 
 
-def _recorded(limit: float, factor: float, chloride: float) -> ChlorideGate:
+def _open_ended(limit: float, factor: float, chloride: float, sign: Sign) -> ChlorideGate | None:
+    """Return the gate where a strip's bound leaves it open which side of the limit chloride is on."""
+    after = chloride / factor
+    if sign == "=" or (sign == "<") == (after <= limit):
+        return None
+    words = (
+        f"The strip says only that the tube holds {'less' if sign == '<' else 'more'} than {after:.0f} mg/L "
+        f"chloride; the limit is {limit:.0f}: measure it nearer."
+    )
+    return ChlorideGate("recorded", after, limit, "unknown", 1.0, words)
+
+
+def _recorded(limit: float, factor: float, chloride: float, lead: str) -> ChlorideGate:
     after = chloride / factor
     if after > limit:
         needed = chloride / limit if limit > 0 else None
         remedy = f"dilute at least {needed:.3g} times, or this" if needed else "this"
         words = (
-            f"{after:.0f} mg/L chloride in the tube is more than the {limit:.0f} mg/L that the mercury "
+            f"{lead}{after:.0f} mg/L chloride in the tube is more than the {limit:.0f} mg/L that the mercury "
             f"masks: {remedy} method does not determine the sample."
         )
         return ChlorideGate("recorded", after, limit, "closed", needed, words)
     if after > CHLORIDE_FLAG_MG_L:
-        words = f"{after:.0f} mg/L chloride in the tube is masked; the result carries a chloride flag."
+        words = f"{lead}{after:.0f} mg/L chloride in the tube is masked; the result carries a flag for it."
         return ChlorideGate("recorded", after, limit, "flagged", 1.0, words)
-    words = f"{after:.0f} mg/L chloride in the tube is within the limit of {limit:.0f} mg/L."
+    words = f"{lead}{after:.0f} mg/L chloride in the tube is within the limit of {limit:.0f} mg/L."
     return ChlorideGate("recorded", after, limit, "open", 1.0, words)
+
+
+@dataclass(frozen=True)
+class Qualifier:
+    """A letter on a result, what it means and why it stands there.
+
+    Parameters
+    ----------
+    letter, meaning, note : str
+        The letters are our own.
+    """
+
+    letter: str
+    meaning: str
+    note: str
+
+
+_CHLORIDE_QUALIFIERS = {
+    "flagged": ("C", "chloride over 1000 mg/L in the tube, masked by mercury"),
+    "closed": ("CX", "more chloride in the tube than its mercury masks: the result may be too high"),
+    "unknown": ("CU", "chloride in the tube not known"),
+}
+
+
+def chloride_qualifier(gate: ChlorideGate) -> Qualifier | None:
+    """Return the letter that a result carries for its chloride, or None where the gate was open.
+
+    Parameters
+    ----------
+    gate : ChlorideGate
+        At the dilution that was digested.
+
+    Returns
+    -------
+    Qualifier or None
+    """
+    if gate.verdict == "open":
+        return None
+    letter, meaning = _CHLORIDE_QUALIFIERS[gate.verdict]
+    return Qualifier(letter, meaning, gate.words)
 
 
 def chloride_at_most(chloride: float) -> float:

@@ -99,6 +99,11 @@ def effective_dof(u: float, components: Iterable[Component]) -> float | None:
     return 1.0 / total
 
 
+def whole_dof(dof: float) -> int:
+    """Return degrees of freedom as the factor takes them: to three decimals, truncated, at least 1."""
+    return max(1, math.floor(round(dof, 3)))
+
+
 def coverage_factor(dof: float | None) -> float:
     """Return the factor for 95 % at some degrees of freedom.
 
@@ -110,12 +115,11 @@ def coverage_factor(dof: float | None) -> float:
     Returns
     -------
     float
-        Student's t at 97.5 % for the degrees of freedom rounded to three
-        decimals, truncated, at least 1.
+        Student's t at 97.5 % for :func:`whole_dof`.
     """
     if dof is None:
         return NORMAL_95
-    return t_quantile(max(1, math.floor(round(dof, 3))), 0.95)
+    return t_quantile(whole_dof(dof), 0.95)
 
 
 def combine(components: Sequence[Component]) -> Budget:

@@ -14,15 +14,15 @@ from collections.abc import Callable, Iterator
 from typing import Any
 
 from app.errors import WeirbookError
-from app.records import laboratory, outlooks
+from app.records import interferences, laboratory, outlooks, studies
 from app.records.change import Change, Stating
 
 Due = tuple[int, str]
 
-DERIVE_RECIPE, FIT_CURVE, CALCULATE_RUN, LEARN, LOOK_AHEAD = range(5)
-AT_ONCE = (DERIVE_RECIPE, FIT_CURVE, CALCULATE_RUN)
+DERIVE_RECIPE, FIT_CURVE, CALCULATE_RUN, TAKE_TUBE, COMPUTE_LIMIT, QUALIFY, LEARN, LOOK_AHEAD = range(8)
+AT_ONCE = (DERIVE_RECIPE, FIT_CURVE, CALCULATE_RUN, TAKE_TUBE, COMPUTE_LIMIT, QUALIFY)
 ALL = (*AT_ONCE, LEARN, LOOK_AHEAD)
-NAMES = ("derive", "fit", "calculate", "learn", "look ahead")
+NAMES = ("derive", "fit", "calculate", "take", "detection limit", "qualify", "learn", "look ahead")
 
 log = logging.getLogger("weirbook")
 
@@ -30,6 +30,9 @@ _REACTIONS: dict[int, Callable[[Stating, str], None]] = {
     DERIVE_RECIPE: laboratory.derive_recipe,
     FIT_CURVE: laboratory.fit_curve,
     CALCULATE_RUN: laboratory.calculate_run,
+    TAKE_TUBE: studies.take_tube,
+    COMPUTE_LIMIT: studies.compute_limit,
+    QUALIFY: interferences.qualify,
     LEARN: outlooks.learn_again,
     LOOK_AHEAD: outlooks.look_ahead,
 }
@@ -44,9 +47,16 @@ def due(change: Change) -> Iterator[Due]:
         yield FIT_CURVE, about
     elif kind == "readings.finished" or (kind == "tube.excluded" and _calculated(change)):
         yield CALCULATE_RUN, about
+    elif kind == "study.result" and change.body["run"] is not None:
+        yield TAKE_TUBE, f"{about} {change.body['row']}"
+    elif kind == "study.finished":
+        yield COMPUTE_LIMIT, about
+    elif kind in ("bottle.measured", "sample.taken"):
+        yield from ((QUALIFY, id_) for id_ in interferences.of_bottle(change, change.body["bottle"]))
     elif kind in ("point.registered", "result.recorded", "result.reviewed", "run.calculated"):
         yield LEARN, "programme"
         yield from ((LOOK_AHEAD, point) for point in _points(change))
+        yield from ((QUALIFY, one["id"]) for one in change.body.get("results", []))
 
 
 def failure(what: Due, error: Exception) -> dict[str, Any]:

@@ -12,6 +12,7 @@ from collections.abc import Callable
 from dataclasses import dataclass
 from functools import cache
 from importlib import import_module
+from pkgutil import iter_modules
 from typing import Any
 
 from marshmallow import RAISE, Schema, ValidationError
@@ -21,8 +22,6 @@ from app.errors import InputError, flatten
 INSPECTOR, ANALYST, COORDINATOR, ADMINISTRATOR = "inspector", "analyst", "coordinator", "administrator"
 ROLES = (INSPECTOR, ANALYST, COORDINATOR, ADMINISTRATOR)
 SERVER = "server"
-
-_MODULES = ("programme", "field", "rounds", "bench", "review")
 
 
 class Body(Schema):
@@ -83,8 +82,8 @@ def table() -> dict[str, Kind]:
 
 @cache
 def _load() -> None:
-    for module in _MODULES:
-        import_module(f"app.journal.kinds.{module}")
+    for module in iter_modules(__path__):
+        import_module(f"{__name__}.{module.name}")
 
 
 def newest(name: str, version: int, body: dict[str, Any]) -> dict[str, Any]:

@@ -42,6 +42,7 @@ class Readings(Body):
     turbidity_ntu = Measured("turbidity", low=0, high=1_000_000, bounds=True)
     ph = Measured("pH", low=-1, high=15)
     temperature_c = Measured("temperature", low=-5, high=100)
+    chloride_mg_l = Measured("concentration", low=0, high=200_000, bounds=True)
 
 
 class Preservation(Body):

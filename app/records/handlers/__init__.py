@@ -10,12 +10,12 @@ from __future__ import annotations
 from collections.abc import Callable
 from functools import cache
 from importlib import import_module
+from pkgutil import iter_modules
 
 from app.records.change import Change
 
 Handler = Callable[[Change], None]
 
-_MODULES = ("programme", "field", "rounds", "stores", "runs", "review")
 _handlers: dict[str, Handler] = {}
 
 
@@ -37,5 +37,5 @@ def table() -> dict[str, Handler]:
 
 @cache
 def _load() -> None:
-    for module in _MODULES:
-        import_module(f"app.records.handlers.{module}")
+    for module in iter_modules(__path__):
+        import_module(f"{__name__}.{module.name}")
