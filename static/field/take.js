@@ -132,7 +132,7 @@ const PURPOSES = [["sample", "Sample"], ["duplicate", "Field duplicate"], ["fiel
 function What({ point, values, set, sampler, meters, meter, wrong }) {
   const others = all("sample", point.id).filter((sample) => sample.purpose !== "field blank").slice(-6).reverse();
   return html`<section class="card stack"><h2>What it is</h2>
-    <${Choice} label="Bottle of" value=${values.purpose} options=${PURPOSES} onChoose=${(key) => set("purpose", key)} />
+    <${Choice} label="Purpose" value=${values.purpose} options=${PURPOSES} onChoose=${(key) => set("purpose", key)} />
     ${values.purpose === "duplicate" && html`<${Select} label="Repeats" value=${values.of} options=${[["", "choose"], ...others.map((sample) => [sample.id, `${sample.bottle}, ${dayAndTime(sample.collected_at, programme()?.zone)}`])]} onChoose=${(id) => set("of", id)} />`}
     ${wrong.of && html`<p class="above">▲ ${wrong.of}</p>`}
     <${Choice} label="Taken as" value=${kindOf(values, sampler)} options=${[["grab", "Grab"], ["composite", "Composite"]]} onChoose=${(key) => set("kind", key)} />
