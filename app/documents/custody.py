@@ -7,9 +7,12 @@ on where the tablet stops. Fields: common practice for chain of custody.
 from __future__ import annotations
 
 from dataclasses import dataclass
+from typing import Any
 
 from app.documents.letters import held_together, printable
-from app.documents.typeset import paper_named, typeset
+from app.documents.palette import PRINT
+from app.documents.svg import Svg
+from app.documents.typeset import paper_named, picture, typeset
 from app.documents.words import NOT_RECORDED, instant, listed, moment, said
 from app.errors import InputError
 
@@ -33,7 +36,7 @@ class CustodyBottle:
 
 @dataclass(frozen=True)
 class Transfer:
-    """One hand-over that is on record; temperature as text with unit."""
+    """One hand-over that is on record; temperature as text with unit, signatures as SVG paths."""
 
     given_by: str
     taken_by: str
@@ -41,6 +44,8 @@ class Transfer:
     temperature: str = ""
     seals: str = ""
     note: str = ""
+    given_strokes: str = ""
+    taken_strokes: str = ""
 
 
 @dataclass(frozen=True)
@@ -76,11 +81,21 @@ def _bottle_row(bottle: CustodyBottle, zone: str) -> list[str]:
     ]
 
 
-def _transfer_row(transfer: Transfer, zone: str) -> list[str]:
+def _signed(name: str, strokes: str) -> dict[str, Any]:
+    """Return a name with its signature, if it was written on glass."""
+    words = printable(name)
+    if not strokes:
+        return {"words": words, "picture": None}
+    drawn = Svg(320, 110, f"Signature of {words}", "Written on glass", PRINT.font)
+    drawn.add("path", d=strokes, fill="none", stroke=PRINT.ink, stroke_width=3, stroke_linecap="round")
+    return {"words": words, "picture": picture(str(drawn))}
+
+
+def _transfer_row(transfer: Transfer, zone: str) -> list[Any]:
     return [
-        printable(transfer.given_by),
+        _signed(transfer.given_by, transfer.given_strokes),
         moment(transfer.at, zone),
-        printable(transfer.taken_by),
+        _signed(transfer.taken_by, transfer.taken_strokes),
         held_together(transfer.temperature) or NOT_RECORDED,
         printable(transfer.seals) or NOT_RECORDED,
         printable(transfer.note),

@@ -174,7 +174,10 @@ def custody(given: dict[str, Any], hand_over_id: str) -> Response:
         taken_by=over["to"],
         at=over["at"],
         temperature=f"{temperature['text']} °C" if temperature else "",
+        seals=f"seal or lock {over['seal']}" if over["seal"] else "",
         note=over["note"],
+        given_strokes=(over["given"] or {}).get("strokes", ""),
+        taken_strokes=(over["taken"] or {}).get("strokes", ""),
     )
     data = CustodyData(
         id=hand_over_id,

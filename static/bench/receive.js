@@ -2,14 +2,15 @@
 
 import { html } from "../parts/html.js";
 import { readCode } from "../parts/bottle_code.js";
+import { CodeField } from "../parts/code_field.js";
 import { Check, Choice, LongField, NumberField, TextField, measuredOf, useForm, useSaving } from "../parts/fields.js";
-import { dayAndTime } from "../parts/format.js";
+import { dayAndTime, left } from "../parts/format.js";
 import { Frame, Problem, go, say } from "../parts/frame.js";
 import { state } from "../parts/journal.js";
 import { read } from "../parts/measured.js";
 import { one, programme, useView } from "../parts/view.js";
 
-const BLANK = { code: "", temperature: "", ph: "", seal: "intact", container: "sound", agrees: true, decision: "", extra: "", note: "" };
+const BLANK = { code: "", temperature: "", ph: "", seal: "intact", container: "sound", agrees: true, decision: "", extra: "", told: "", note: "" };
 
 /** What speaks against accepting, in words; the person decides. */
 export function findings(v, sample, now = Date.now()) {
@@ -51,7 +52,7 @@ export function Receive({ given }) {
     if (decision !== "accepted" && !reasons.length) throw new Error("Give the reason for this decision.");
     await state("bottle.received", code, {
       bottle: code, temperature: measuredOf(v.temperature, "Cel"), ph: measuredOf(v.ph, "pH"), seal: v.seal, container: v.container,
-      label_agrees: v.agrees, decision, reasons, note: v.note,
+      label_agrees: v.agrees, decision, reasons, told: v.told.trim(), note: v.note,
     });
     await forget().catch(() => {});
     say(`Saved on this tablet: ${code} ${decision}.`);
@@ -60,9 +61,9 @@ export function Receive({ given }) {
   if (!v) return html`<${Frame} place="bench" title="Receive a bottle"><//>`;
   return html`<${Frame} place="bench" title="Receive a bottle">
     <form class="stack" onSubmit=${save} novalidate>
-      <section class="card stack"><${TextField} label="Bottle" class="code" value=${v.code} onInput=${(text) => set("code", text)} maxlength="12" autocomplete="off" autocapitalize="characters"
+      <section class="card stack"><${CodeField} label="Bottle" value=${v.code} onInput=${(text) => set("code", text)}
           wrong=${v.code.length >= 6 && wrong ? wrong : ""} hint=${code ? `Read as ${code}.` : "The six characters on its label."} />
-        ${code && (point ? html`<p><strong>${point.discharger_name}, ${point.name}</strong><br />taken ${dayAndTime(sample.collected_at, zone)} by ${sample.by_name}</p>`
+        ${code && (point ? html`<p><strong>${point.discharger_name}, ${point.name}</strong><br />taken ${dayAndTime(sample.collected_at, zone)} by ${sample.by_name}<br />analysis to start: ${left(sample.hold_until)}</p>`
           : html`<p class="soft">The entry of this sample has not arrived yet. Receive the bottle all the same: they meet when it does.</p>`)}</section>
       <section class="card stack">
         <${NumberField} label="Temperature on receipt" unit="Cel" value=${v.temperature} onInput=${(text) => set("temperature", text)} />
@@ -74,6 +75,7 @@ export function Receive({ given }) {
         ${found.length > 0 && html`<ul>${found.map((words) => html`<li key=${words}>${words}</li>`)}</ul>`}
         <${Choice} label="Decision" value=${decision} options=${["accepted", "qualified", "on hold", "rejected"]} onChoose=${(one_) => set("decision", one_)} />
         <${TextField} label="Further reason" value=${v.extra} onInput=${(text) => set("extra", text)} />
+        ${decision !== "accepted" && html`<${TextField} label="Who was told" value=${v.told} maxlength="200" onInput=${(text) => set("told", text)} />`}
         <p class="soft small">At most 6 °C, pH below 2, 28 days from the end of collection (40 CFR 136.3, Table II). The decision stays with the result.</p></section>
       <${LongField} label="Note" value=${v.note} onInput=${(text) => set("note", text)} />
       <${Problem} words=${problem} />

@@ -17,7 +17,7 @@ export const ACTIVITIES = [["production", "Production"], ["cleaning", "Cleaning"
 export const BLANK = {
   bottle: "", time: "", conductivity: "", conductivity_unit: "uS/cm", turbidity: "", turbidity_unit: "NTU", ph: "",
   ph_unit: "pH", temperature: "", temperature_unit: "Cel", activity: null, appearance: "", acid: false, acid_ph: "",
-  cooled: false, note: "", factor: null, reason: "", purpose: "sample", of: "", meter: null, kind: "",
+  cooled: false, note: "", factor: null, reason: "", purpose: "sample", of: "", meter: null, kind: "", kept_at: "",
   c_start: "", c_planned: "", c_taken: "", c_missed: "", c_volume: "", c_volume_unit: "L", c_temperature: "", c_seal: "intact", c_paced: "hand", portions: [],
 };
 

@@ -2,6 +2,7 @@
 
 import { html } from "../parts/html.js";
 import { readCode } from "../parts/bottle_code.js";
+import { CodeField } from "../parts/code_field.js";
 import { Check, Choice, LongField, NumberField, Select, TextField, echo, measuredOf, useForm, useSaving } from "../parts/fields.js";
 import { dayAndTime, localInput, plain } from "../parts/format.js";
 import { Empty, Problem, go, say } from "../parts/frame.js";
@@ -55,6 +56,9 @@ function planBody(plan, values, forecast) {
   };
 }
 
+/** The moment of preserving: typed, or the saving itself; null when nothing was done. */
+const preservedAt = ({ acid, cooled, kept_at }) => (acid || cooled ? withOffset(kept_at ? new Date(kept_at) : new Date()) : null);
+
 /** Grab or composite: a running sampler is picked up as a composite. */
 const kindOf = (values, sampler) => values.kind || (sampler ? "composite" : "grab");
 
@@ -78,7 +82,7 @@ export function bodyOf(point, values, plan, forecast, { visit = null, sampler = 
     field,
     activity: values.activity,
     appearance: values.appearance.trim(),
-    preservation: { acid: values.acid, ph: values.acid ? measuredOf(values.acid_ph, "pH") : null, cooled: values.cooled },
+    preservation: { acid: values.acid, ph: values.acid ? measuredOf(values.acid_ph, "pH") : null, cooled: values.cooled, at: preservedAt(values) },
     plan: planBody(plan, values, forecast),
     note: values.note.trim(),
   };
@@ -106,6 +110,7 @@ function Kept({ values, set, wrong }) {
     ${values.acid && html`<div class="stack"><p class="card wait"><strong>▲ Acid.</strong> Goggles and gloves; acid slowly into the sample,
       bottle held away from you; water at hand. The safety data sheet and your local rules decide.</p>
       <${NumberField} label="pH after acid" value=${values.acid_ph} unit="pH" wrong=${wrong} onInput=${(text) => set("acid_ph", text)} hint="For example < 2 from a strip. Leave it empty if not measured." /></div>`}
+    ${(values.acid || values.cooled) && html`<${TextField} label="Preserved at" type="datetime-local" value=${values.kept_at} onInput=${(text) => set("kept_at", text)} hint="empty: the moment you save" />`}
     <p class="soft small">For COD: at most 6 °C and sulfuric acid to below pH 2 within 15 minutes of taking it; then 28 days (40 CFR 136.3, Table II).</p>
   </section>`;
 }
@@ -119,9 +124,7 @@ function Bottle({ values, set, wrong }) {
   };
   const told = code === null ? "The six characters on its label; spaces do not matter."
     : code === values.drawn ? `Write ${code} on the bottle now, large, with a waterproof pen.` : `Read as ${code}. The check character agrees.`;
-  return html`<section class="card stack"><${TextField} label="Bottle" class="code" value=${values.bottle} wrong=${wrong} maxlength="12"
-      autocomplete="off" autocapitalize="characters" spellcheck="false" enterkeyhint="next"
-      hint=${told} onInput=${(text) => set("bottle", text)} />
+  return html`<section class="card stack"><${CodeField} label="Bottle" value=${values.bottle} wrong=${wrong} hint=${told} onInput=${(text) => set("bottle", text)} />
     ${!values.bottle && html`<button type="button" class="quiet" onClick=${draw}>No printed label: give me a code to write on it</button>`}
   </section>`;
 }

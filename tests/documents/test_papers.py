@@ -131,6 +131,15 @@ def test_a_label_shows_what_is_known_already(text_of: Callable[[bytes], str]) ->
     assert "Hollin Vale Creamery, outlet B" in shown and "taken by" in shown
 
 
+def test_a_signature_on_glass_stands_beside_its_name(text_of: Callable[[bytes], str]) -> None:
+    plain = CUSTODY.transfers[0]
+    strokes = "M10 40L22 18L30 42L44 20M50 40L70 38"
+    signed = replace(CUSTODY, transfers=(replace(plain, given_strokes=strokes),))
+    unsigned = replace(CUSTODY, transfers=(plain,))
+    assert plain.given_by in text_of(render_custody(signed))
+    assert len(render_custody(signed)) > len(render_custody(unsigned)) + 100
+
+
 def test_the_custody_form_has_both_halves_of_every_hand_over(text_of: Callable[[bytes], str]) -> None:
     shown = text_of(PAPERS["custody"]("a4"))
     for words in (

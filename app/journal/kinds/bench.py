@@ -107,6 +107,7 @@ class BottleReceived(Body):
         required=True, validate=validate.OneOf(["accepted", "qualified", "on hold", "rejected"])
     )
     reasons = fields.List(Text(longest=300), required=True)
+    told = Text(blank=True)
     note = Text(required=True, blank=True, longest=2000)
 
 

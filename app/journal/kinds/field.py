@@ -51,6 +51,7 @@ class Preservation(Body):
     acid = fields.Boolean(required=True, truthy={True}, falsy={False})
     ph = Measured("pH", low=-1, high=15, bounds=True, required=True, allow_none=True)
     cooled = fields.Boolean(required=True, truthy={True}, falsy={False})
+    at = When(allow_none=True)
 
 
 class Step(Body):
