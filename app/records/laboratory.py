@@ -52,7 +52,8 @@ def recipe_input(recipe: Body) -> Body:
 def derive_recipe(writing: Stating, id_: str) -> None:
     """State what follows from a recipe."""
     recipe = writing.get("recipe", id_) or {}
-    derived = verbs.find("recipe")(recipe_input(recipe))
+    given = recipe_input(recipe) | {"working_range": [recipe["working_low"], recipe["working_high"]]}
+    derived = verbs.find("recipe")(given)
     writing.state("recipe.derived", id_, {"software": SOFTWARE, "derived": derived})
 
 

@@ -21,6 +21,7 @@ MODULES: dict[str, str] = {
     "fit": "chemistry",
     "calculate": "chemistry",
     "detection-limit": "chemistry",
+    "preparation": "preparation",
     "plan": "forecast",
     "learn": "forecast",
     "backtest": "forecast",

@@ -158,6 +158,34 @@ class RecipeAndRangeInput(RecipeInput):
     working_range = Numbers(length=2, allow_none=True)
 
 
+class PurityInput(Strict):
+    """Mass fractions on the bottles."""
+
+    dichromate = Number(load_default=1.0)
+    mercury_sulfate = Number(load_default=1.0)
+    silver_sulfate = Number(load_default=1.0)
+    phthalate = Number(load_default=1.0)
+
+
+class StockInput(Strict):
+    """A stock of known COD."""
+
+    cod = Number(required=True)
+    volume_ml = Number(required=True)
+
+
+class PreparationInput(Strict):
+    """``preparation``."""
+
+    recipe = one(RecipeInput, required=True)
+    digestion_solution_ml = Number(load_default=0.0)
+    acid_reagent_ml = Number(load_default=0.0)
+    digestion_acid_ml_per_l = Number(load_default=0.0)
+    purity = one(PurityInput, load_default=None, allow_none=True)
+    stock = one(StockInput, load_default=None, allow_none=True)
+    levels = Numbers(load_default=())
+
+
 class StandardInput(Strict):
     """One standard."""
 

@@ -11,7 +11,7 @@ from app import __version__
 from app.journal.store import Store
 from app.journal.units import STATIC
 from app.records.ledger import Ledger
-from app.web import certificates, papers, programme, security, sessions, shell, sync
+from app.web import certificates, papers, programme, security, sessions, shell, store_papers, sync
 from app.web.context import Context
 from app.web.limits import Attempts
 
@@ -56,7 +56,7 @@ def create_app(
     )
     security.install(app)
     api = security.OneBodyApi(app)
-    for module in (sessions, programme, sync, certificates, papers):
+    for module in (sessions, programme, sync, certificates, papers, store_papers):
         api.register_blueprint(module.blueprint)
     app.register_blueprint(certificates.public)
     app.register_blueprint(shell.blueprint)

@@ -43,23 +43,27 @@ class LabelsSchema(PaperSchema):
     count = fields.Integer(load_default=21, validate=validate.Range(min=1, max=210))
 
 
-def _now() -> str:
+def now_text() -> str:
+    """Return the present as papers carry it."""
     return datetime.now(UTC).isoformat(timespec="seconds")
 
 
-def _pdf(data: bytes, name: str) -> Response:
+def pdf(data: bytes, name: str) -> Response:
+    """Answer with a paper."""
     headers = {"Content-Disposition": f'inline; filename="{name}.pdf"'}
     return Response(data, mimetype="application/pdf", headers=headers)
 
 
-def _need(connection: sqlite3.Connection, type_: str, id_: str) -> change.Body:
+def record(connection: sqlite3.Connection, type_: str, id_: str) -> change.Body:
+    """Return a record's body, or say that there is none."""
     body = change.get(connection, type_, id_)
     if body is None:
         raise NotFound(f"There is no such {type_.replace('_', ' ')} here.")
     return body
 
 
-def _programme(connection: sqlite3.Connection) -> change.Body:
+def programme_of(connection: sqlite3.Connection) -> change.Body:
+    """Return the programme."""
     return change.find(connection, "programme")[0][1]
 
 
@@ -81,8 +85,8 @@ def labels(given: dict[str, Any]) -> Response:
     """A sheet of bottle labels with codes that are free."""
     connection = context().store.read()
     made = tuple(Label(code) for code in fresh_codes(connection, given["count"]))
-    name = _programme(connection)["name"]
-    return _pdf(render_labels(made, name, _now(), given["paper"]), "labels")
+    name = programme_of(connection)["name"]
+    return pdf(render_labels(made, name, now_text(), given["paper"]), "labels")
 
 
 def _run_tube(tube: change.Body) -> RunTube:
@@ -103,11 +107,11 @@ def _run_tube(tube: change.Body) -> RunTube:
 def run_sheet(given: dict[str, Any], run_id: str) -> Response:
     """The sheet of a run: rack, gates, room for readings by pen."""
     connection = context().store.read()
-    run, programme = _need(connection, "run", run_id), _programme(connection)
-    recipe = _need(connection, "recipe", run["recipe"])
+    run, programme = record(connection, "run", run_id), programme_of(connection)
+    recipe = record(connection, "recipe", run["recipe"])
     asked = gates.run_gates(facts_of(recipe))
     names = {
-        name: _need(connection, type_, run[name])["name"]
+        name: record(connection, type_, run[name])["name"]
         for name, type_ in (
             ("lot", "lot"),
             ("instrument", "instrument"),
@@ -120,7 +124,7 @@ def run_sheet(given: dict[str, Any], run_id: str) -> Response:
         programme=programme["name"],
         laboratory=programme["laboratory"],
         zone=programme["zone"],
-        made_at=_now(),
+        made_at=now_text(),
         planned_by=run["planned_by"],
         recipe=recipe["name"],
         source=recipe["source"],
@@ -128,7 +132,7 @@ def run_sheet(given: dict[str, Any], run_id: str) -> Response:
         photometer=names["instrument"],
         wavelength_nm=plain(recipe["wavelength_nm"]),
         block=names["block"],
-        calibration=f"valid until {_need(connection, 'calibration', run['calibration'])['valid_until']}",
+        calibration=f"valid until {record(connection, 'calibration', run['calibration'])['valid_until']}",
         container=names["container"],
         minutes=round(recipe["minutes"]),
         temperature_c=plain(recipe["temperature_c"]),
@@ -138,11 +142,11 @@ def run_sheet(given: dict[str, Any], run_id: str) -> Response:
         cautions=tuple(gate.caution for gate in asked),
         example=programme["example"],
     )
-    return _pdf(render_run_sheet(data, given["paper"]), "run-sheet")
+    return pdf(render_run_sheet(data, given["paper"]), "run-sheet")
 
 
 def _custody_bottle(connection: sqlite3.Connection, code: str) -> CustodyBottle:
-    bottle = _need(connection, "bottle", code)
+    bottle = record(connection, "bottle", code)
     sample = (bottle["sample"] and change.get(connection, "sample", bottle["sample"])) or {}
     point = (bottle["point"] and change.get(connection, "point", bottle["point"])) or {}
     kept = sample.get("preservation", {})
@@ -166,7 +170,7 @@ def _custody_bottle(connection: sqlite3.Connection, code: str) -> CustodyBottle:
 def custody(given: dict[str, Any], hand_over_id: str) -> Response:
     """The custody form of a hand-over, with room for the next ones."""
     connection = context().store.read()
-    over, programme = _need(connection, "hand_over", hand_over_id), _programme(connection)
+    over, programme = record(connection, "hand_over", hand_over_id), programme_of(connection)
     person = change.get(connection, "person", over["by"]) or {"name": over["by"]}
     temperature = over["temperature"]
     transfer = Transfer(
@@ -184,12 +188,12 @@ def custody(given: dict[str, Any], hand_over_id: str) -> Response:
         programme=programme["name"],
         laboratory=programme["laboratory"],
         zone=programme["zone"],
-        made_at=_now(),
+        made_at=now_text(),
         bottles=tuple(_custody_bottle(connection, code) for code in over["bottles"]),
         transfers=(transfer,),
         example=programme["example"],
     )
-    return _pdf(render_custody(data, given["paper"]), "custody")
+    return pdf(render_custody(data, given["paper"]), "custody")
 
 
 def _codes_of(held: change.Body) -> tuple[str, ...]:
@@ -215,7 +219,7 @@ def _codes_of(held: change.Body) -> tuple[str, ...]:
 def waste_label(given: dict[str, Any], container_id: str) -> Response:
     """The label of a waste container; local rules decide what it must carry."""
     connection = context().store.read()
-    held, programme = _need(connection, "container", container_id), _programme(connection)
+    held, programme = record(connection, "container", container_id), programme_of(connection)
     metals = (("mercury", "mercury_mg"), ("chromium", "chromium_mg"), ("silver", "silver_mg"))
     data = WasteLabelData(
         container=held["name"],
@@ -225,11 +229,11 @@ def waste_label(given: dict[str, Any], container_id: str) -> Response:
         address=programme["settings"].get("address", ""),
         phone="",
         zone=programme["zone"],
-        made_at=_now(),
+        made_at=now_text(),
         started_on=held["opened_at"][:10],
         codes=_codes_of(held),
         amounts=tuple((metal, f"{held[name] / 1000:.2f} g") for metal, name in metals),
         filled=f"{held['filled_ml']:.0f} of {plain(held['capacity_ml'])} mL",
         example=programme["example"],
     )
-    return _pdf(render_waste_label(data, given["paper"]), "waste-label")
+    return pdf(render_waste_label(data, given["paper"]), "waste-label")

@@ -12,7 +12,7 @@ from flask import Blueprint, Response, jsonify, send_file
 
 from app import __version__
 from app.chemistry.recipe import COMMON_PRACTICE_C, COMMON_PRACTICE_HOURS
-from app.chemistry.standard_recipes import STANDARD_RECIPES, StandardRecipe
+from app.chemistry.standard_recipes import STANDARD_RECIPES, TUBES_ML, StandardRecipe
 from app.compliance import flow, meters
 from app.journal.units import STATIC
 from app.safety.pack import client_pack
@@ -70,7 +70,8 @@ def words_text() -> str:
     """Return the words, ratings and published recipes that are part of this build of the client."""
     recipes = [_form(one) for one in STANDARD_RECIPES]
     field = {"ratings": flow.ratings(), "acceptances": meters.acceptances()}
-    return json.dumps({"weirbook": __version__, **client_pack(), **field, "recipes": recipes})
+    bench = {"recipes": recipes, "tubes": {name: list(ml) for name, ml in TUBES_ML.items()}}
+    return json.dumps({"weirbook": __version__, **client_pack(), **field, **bench})
 
 
 def _form(one: StandardRecipe) -> dict[str, str]:
@@ -83,6 +84,7 @@ def _form(one: StandardRecipe) -> dict[str, str]:
         "temperature_c": f"{COMMON_PRACTICE_C:g}",
         "minutes": f"{60 * COMMON_PRACTICE_HOURS:g}",
     }
+    practice["digestion_acid_ml_per_l"] = f"{one.digestion_acid_ml_per_l:g}"
     return {"name": one.name, "source": one.source} | numbers | told | practice
 
 

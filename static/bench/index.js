@@ -4,6 +4,7 @@ import { html } from "../parts/html.js";
 import { Home } from "./home.js";
 import { Plan } from "./plan.js";
 import { Receive } from "./receive.js";
+import { RecipePage } from "./recipes.js";
 import { Run } from "./run.js";
 import { AddCalibration } from "./calibration.js";
 import { AddThing, Stores } from "./stores.js";
@@ -16,6 +17,7 @@ export function bench([what, id]) {
   if (what === "receive") return html`<${Receive} given=${id} />`;
   if (what === "plan") return html`<${Plan} />`;
   if (what === "run") return html`<${Run} key=${id} id=${id} />`;
+  if (what === "recipe" && id) return html`<${RecipePage} key=${id} id=${id} />`;
   if (what === "stores" && id === "calibration") return html`<${AddCalibration} />`;
   if (what === "stores" && id) return html`<${AddThing} key=${id} what=${id} />`;
   if (what === "stores") return html`<${Stores} />`;

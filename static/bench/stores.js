@@ -9,16 +9,7 @@ import { read } from "../parts/measured.js";
 import { all, one, programme, useView } from "../parts/view.js";
 import { useWords } from "../parts/words.js";
 import { CurveChart, Findings } from "./curve.js";
-import { RECIPE_FIELDS } from "./recipes.js";
-
-function Recipe({ recipe }) {
-  const d = recipe.derived;
-  return html`<section class="card stack"><div class="row spread"><h3>${recipe.name}</h3>${recipe.local && html`<${Where} about=${recipe.id} />`}</div>
-    <p class="soft">${recipe.source}. ${plain(recipe.working_low)} to ${plain(recipe.working_high)} mg/L in the tube at ${plain(recipe.wavelength_nm)} nm.</p>
-    ${d ? html`<dl class="facts"><dt>Oxidant capacity</dt><dd>${plain(d.oxidant_capacity, 1)} mg/L</dd><dt>Chloride limit</dt><dd>${plain(d.chloride_limit)} mg/L in the tube's sample</dd>
-      <dt>In each tube</dt><dd>${plain(d.per_tube_mg.mercury, 1)} mg mercury, ${plain(d.per_tube_mg.chromium, 2)} mg chromium, ${plain(d.per_tube_mg.silver, 1)} mg silver</dd><dt>Order</dt><dd>${recipe.order.join(", then ")}</dd></dl>
-      ${d.warnings.map((words) => html`<p class="above" key=${words}>▲ ${words}</p>`)}` : html`<p class="soft">What follows from it is computed when the server is reached.</p>`}</section>`;
-}
+import { AddRecipe, RecipeRow } from "./recipes.js";
 
 function Curve({ curve }) {
   const f = curve.fitted;
@@ -30,9 +21,11 @@ function Curve({ curve }) {
 }
 
 function Rows({ title, rows, words, what }) {
-  return html`<h2>${title}</h2>${rows.length ? html`<ul class="plain list">${rows.map((row) => html`<li class="item" key=${row.id}><strong>${row.name}</strong><div class="soft">${words(row)}</div>${what === "container" && !row.local && html`<a href="/api/papers/container/${encodeURIComponent(row.id)}.pdf" target="_blank">Waste label to print</a>`}</li>`)}</ul>` : html`<${Empty} title="None yet">Add the first one.<//>`}
+  return html`<h2>${title}</h2>${rows.length ? html`<ul class="plain list">${rows.map((row) => html`<li class="item" key=${row.id}><strong>${row.name}</strong><div class="soft">${words(row)}</div>${what === "container" && !row.local && html`<a href="/api/papers/container/${encodeURIComponent(row.id)}.pdf" target="_blank">Waste label to print</a>`}${what === "lot" && !row.local && html`<a href="/api/papers/lot/${encodeURIComponent(row.id)}.pdf" target="_blank">Reagent labels to print</a>`}</li>`)}</ul>` : html`<${Empty} title="None yet">Add the first one.<//>`}
     <a class="button" href="/bench/stores/${what}">Add</a>`;
 }
+
+const lotWords = (row) => `${one("recipe", row.recipe)?.name}, ${row.origin} ${row.made_on}, expires ${row.expires_on}${row.standardised_on ? `; standardised ${row.standardised_on}${row.standardised ? `: ${row.standardised}` : ""}` : "; not standardised"}`;
 
 const filled = (row) => `${plain(row.filled_ml)} of ${plain(row.capacity_ml)} mL (${Math.round((100 * row.filled_ml) / row.capacity_ml)} %): ${plain(row.mercury_mg / 1000, 2)} g mercury, ${plain(row.chromium_mg / 1000, 2)} g chromium, ${plain(row.silver_mg / 1000, 2)} g silver`;
 
@@ -42,9 +35,9 @@ export function Stores() {
   const curves = useView(() => all("calibration")).reverse();
   return html`<${Frame} place="bench" title="Stores"><div class="stack">
     <p><a class="button" href="/api/papers/labels.pdf" target="_blank">Bottle labels to print</a> <span class="soft small">a sheet of codes that are free</span></p>
-    <h2>Recipes</h2>${recipes.length ? recipes.map((recipe) => html`<${Recipe} key=${recipe.id} recipe=${recipe} />`) : html`<${Empty} title="No recipe yet">Everything a tube can do follows from it.<//>`}
+    <h2>Recipes</h2>${recipes.length ? html`<ul class="plain list">${recipes.map((recipe) => html`<${RecipeRow} key=${recipe.id} recipe=${recipe} />`)}</ul>` : html`<${Empty} title="No recipe yet">Everything a tube can do follows from it.<//>`}
     <a class="button" href="/bench/stores/recipe">Adopt a recipe</a>
-    <${Rows} title="Reagent lots" what="lot" rows=${useView(() => all("lot"))} words=${(row) => `${one("recipe", row.recipe)?.name}, made ${row.made_on}, expires ${row.expires_on}`} />
+    <${Rows} title="Reagent lots" what="lot" rows=${useView(() => all("lot"))} words=${lotWords} />
     <${Rows} title="Instruments" what="instrument" rows=${useView(() => all("instrument"))} words=${(row) => `${row.what}${row.positions ? `, ${row.positions} positions` : ""}`} />
     <h2>Curves</h2>${curves.map((curve) => html`<${Curve} key=${curve.id} curve=${curve} />`)}<a class="button" href="/bench/stores/calibration">Enter a calibration</a>
     <${Rows} title="Waste containers" what="container" rows=${useView(() => all("container"))} words=${filled} />
@@ -76,16 +69,19 @@ function Shell({ title, saving, children }) {
 function AddLot() {
   const recipes = useView(() => all("recipe"));
   const today = day(new Date(), programme()?.zone);
-  const { v, set, saving } = useAdding("lot", { recipe: "", name: "", made_on: today, expires_on: "" }, (given) => {
+  const { v, set, saving } = useAdding("lot", { recipe: "", origin: "made", name: "", made_on: today, expires_on: "", standardised_on: "", standardised: "" }, (given) => {
     need(given, [["name", "Name"], ["made_on", "Made on"], ["expires_on", "Expires on"]]);
-    return ["lot.made", { ...given, recipe: given.recipe || recipes[0]?.id }];
+    return ["lot.made", { ...given, recipe: given.recipe || recipes[0]?.id, standardised_on: given.standardised_on || null }];
   });
   if (!v) return null;
   return html`<${Shell} title="A reagent lot" saving=${saving}>
     <${Select} label="Recipe" value=${v.recipe || recipes[0]?.id} options=${recipes.map((row) => [row.id, row.name])} onChoose=${(id) => set("recipe", id)} />
+    <${Choice} label="The lot was" value=${v.origin} options=${["made", "bought"]} onChoose=${(origin) => set("origin", origin)} />
     <${TextField} label="Name on the bottle" value=${v.name} onInput=${(text) => set("name", text)} />
     <${TextField} label="Made on" type="date" value=${v.made_on} onInput=${(text) => set("made_on", text)} />
-    <${TextField} label="Expires on" type="date" value=${v.expires_on} onInput=${(text) => set("expires_on", text)} /><//>`;
+    <${TextField} label="Expires on" type="date" value=${v.expires_on} onInput=${(text) => set("expires_on", text)} />
+    <${TextField} label="Standardised on" type="date" value=${v.standardised_on} onInput=${(text) => set("standardised_on", text)} hint="may stay empty" />
+    <${TextField} label="With what, and what came out" value=${v.standardised} maxlength="300" onInput=${(text) => set("standardised", text)} /><//>`;
 }
 
 function AddInstrument() {
@@ -112,32 +108,6 @@ function AddContainer() {
     <p class="card wait">Acid COD digest only: acid-resistant, closed, labelled with its contents and hazards. Keep bases, cyanide, sulfide, metals and organics away. State and local rules decide on labels, amounts and days.</p>
     <${TextField} label="Name" value=${v.name} onInput=${(text) => set("name", text)} />
     <${TextField} label="Capacity, mL" inputmode="decimal" value=${v.capacity_ml} onInput=${(text) => set("capacity_ml", text)} /><//>`;
-}
-
-const EMPTY_RECIPE = { name: "", source: "", form: "", order: "sample, digestion solution, acid reagent", ...Object.fromEntries(RECIPE_FIELDS.map(([name]) => [name, ""])) };
-
-function AddRecipe() {
-  const forms = useWords()?.recipes ?? [];
-  const { v, set, saving } = useAdding("recipe", EMPTY_RECIPE, (given) => {
-    need(given, [["name", "Name"], ["source", "Source"], ...RECIPE_FIELDS]);
-    const wrong = RECIPE_FIELDS.filter(([name]) => read(given[name]).problem).map(([, label]) => label);
-    if (wrong.length) throw new Error(`Not a number: ${wrong.join(", ")}.`);
-    const numbers = Object.fromEntries(RECIPE_FIELDS.map(([name]) => [name, given[name]]));
-    const order = given.order.split(",").map((text) => text.trim()).filter(Boolean);
-    return ["recipe.adopted", { name: given.name.trim(), source: given.source.trim(), order, ...numbers }];
-  });
-  if (!v) return null;
-  const take = (name) => {
-    set("form", name);
-    Object.entries(forms.find((form) => form.name === name) ?? {}).forEach(([key, text]) => set(key, text));
-  };
-  return html`<${Shell} title="Adopt a recipe" saving=${saving}>
-    <${Select} label="Begin from a published form" value=${v.form} options=${[["", "none: type every number"], ...forms.map((form) => [form.name, form.name])]} onChoose=${take}
-      hint="What the method does not state stays blank. Check the amounts against the method's own text and your lot." />
-    <${TextField} label="Name" value=${v.name} onInput=${(text) => set("name", text)} />
-    <${LongField} label="Source" value=${v.source} onInput=${(text) => set("source", text)} />
-    ${RECIPE_FIELDS.map(([name, label]) => html`<${TextField} key=${name} label=${label} inputmode="decimal" value=${v[name]} onInput=${(text) => set(name, text)} />`)}
-    <${TextField} label="Order of addition, separated by commas" value=${v.order} onInput=${(text) => set("order", text)} hint="texts differ; it is shown at the gate from here" /><//>`;
 }
 
 const ADD = { lot: AddLot, instrument: AddInstrument, container: AddContainer, recipe: AddRecipe };

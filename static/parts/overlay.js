@@ -106,9 +106,10 @@ const KINDS = new Map(Object.entries({
   }),
   "recipe.adopted": (layer, { about }, body) => {
     const numbers = Object.fromEntries(RECIPE_NUMBERS.map((name) => [name, number(body[name])]));
-    layer.put("recipe", about, { ...body, ...numbers, derived: null });
+    const acid = body.digestion_acid_ml_per_l ?? null;
+    layer.put("recipe", about, { ...body, ...numbers, digestion_acid_ml_per_l: acid === null ? null : number(acid), tube: body.tube ?? "", derived: null });
   },
-  "lot.made": (layer, { about }, body) => layer.put("lot", about, body, { parent: body.recipe, at: body.made_on }),
+  "lot.made": (layer, { about }, body) => layer.put("lot", about, { origin: "made", standardised_on: null, standardised: "", ...body }, { parent: body.recipe, at: body.made_on }),
   "instrument.added": (layer, { about }, body) => layer.put("instrument", about, { positions: null, ...body }),
   "container.opened": (layer, { about, at }, body) => layer.put("container", about, {
     name: body.name, capacity_ml: number(body.capacity_ml), filled_ml: 0, mercury_mg: 0, chromium_mg: 0, silver_mg: 0,

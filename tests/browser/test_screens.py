@@ -31,6 +31,8 @@ SCREENS = (
     "/bench",
     "/bench/receive",
     "/bench/stores",
+    "/bench/stores/recipe",
+    "/bench/recipe/high",
     "/bench/plan",
     "/bench/run/run-1",
     "/review",

@@ -58,3 +58,23 @@ def test_an_empty_container_has_a_label_without_codes(
     words = text_of(browser.get("/api/papers/container/waste.pdf").get_data(), tmp_path)
     assert "Container 12" in words
     assert "D009" not in words
+
+
+def test_a_preparation_sheet_is_told_and_printed(browser: Browser, device: Device, tmp_path: Path) -> None:
+    browser.push(devices.whole_path(device.by))
+    query = "digestion_ml=1000&acid_ml=500&stock=1000&levels=0,100&dichromate=0.99"
+    told = browser.get(f"/api/papers/preparation/high?{query}").get_json()
+    assert told["weigh"][0]["substance"].startswith("potassium dichromate")
+    assert told["weigh"][0]["amount"] == pytest.approx(10.216 / 0.99)
+    assert [one["cod"] for one in told["standards"]] == [0, 100]
+    words = text_of(browser.get(f"/api/papers/preparation/high.pdf?{query}").get_data(), tmp_path)
+    assert "10.319 g" in words
+    assert browser.get("/api/papers/preparation/high?levels=1,x&stock=10").status_code == 422
+    assert browser.get("/api/papers/preparation/nothing").status_code == 404
+
+
+def test_a_lot_has_its_labels(browser: Browser, device: Device, tmp_path: Path) -> None:
+    browser.push(devices.whole_path(device.by))
+    words = text_of(browser.get("/api/papers/lot/lot-1.pdf").get_data(), tmp_path)
+    for told in ("D-31-014", "Digestion solution", "Acid reagent", "Fatal if swallowed"):
+        assert told in words

@@ -27,6 +27,9 @@ class RecipeAdopted(Body):
     temperature_c = Number(low=50, high=200, required=True)
     minutes = Number(low=1, high=600, required=True)
     order = fields.List(Text(), required=True)
+    digestion_acid_ml_per_l = Number(low=0, high=1000, allow_none=True)
+    tube = Text(blank=True, longest=60)
+    stated = Text(blank=True, longest=300)
 
 
 @kind("recipe.derived", SERVER)
@@ -45,6 +48,9 @@ class LotMade(Body):
     name = Text(required=True)
     made_on = Day(required=True)
     expires_on = Day(required=True)
+    origin = fields.String(validate=validate.OneOf(["made", "bought"]))
+    standardised_on = Day(allow_none=True)
+    standardised = Text(blank=True, longest=300)
 
 
 @kind("instrument.added", ANALYST, ADMINISTRATOR)

@@ -31,7 +31,13 @@ def recipe_adopted(change: Change) -> None:
     body = change.body | numbers
     if body["working_low"] >= body["working_high"]:
         raise Refused("wrong_range", "The working range's lower end must lie under its top.")
+    body |= {"digestion_acid_ml_per_l": _acid(change.body), "tube": change.body.get("tube", "")}
     change.put("recipe", change.entry.about, body | {"derived": None})
+
+
+def _acid(body: dict[str, Any]) -> float | None:
+    text = body.get("digestion_acid_ml_per_l")
+    return None if text is None else measured.read(text).value
 
 
 @handles("recipe.derived")
@@ -47,9 +53,9 @@ def lot_made(change: Change) -> None:
     change.need("recipe", change.body["recipe"])
     if date.fromisoformat(change.body["expires_on"]) < date.fromisoformat(change.body["made_on"]):
         raise Refused("wrong_dates", "A lot cannot expire before it was made.")
-    change.put(
-        "lot", change.entry.about, change.body, parent=change.body["recipe"], at=change.body["made_on"]
-    )
+    unsaid: dict[str, Any] = {"origin": "made", "standardised_on": None, "standardised": ""}
+    body = unsaid | change.body
+    change.put("lot", change.entry.about, body, parent=body["recipe"], at=body["made_on"])
 
 
 @handles("instrument.added")
