@@ -108,6 +108,7 @@ class Result:
 
     ``reported`` is e.g. "2210", "< 100" or "> 900"; ``expanded_u`` is in the
     same unit and None where none is given; ``dof`` None means infinite.
+    ``detection_limit`` says in words which one was in force, and its day.
     """
 
     status: Literal["ok", "below", "over"]
@@ -118,6 +119,7 @@ class Result:
     confidence_percent: str = "95"
     reporting_level: str = ""
     tubes_used: int = 0
+    detection_limit: str = ""
     quantity: str = "Chemical oxygen demand, total"
     unit: str = "mg/L"
 
@@ -258,6 +260,23 @@ class Component:
 
 
 @dataclass(frozen=True)
+class Correction:
+    """A measured species and what it takes, in mg/L as texts; never chloride."""
+
+    name: str
+    measured: str
+    oxygen_demand: str
+
+
+@dataclass(frozen=True)
+class Corrected:
+    """The value with measured species taken out, beside the reported one, for information."""
+
+    value: str
+    corrections: tuple[Correction, ...]
+
+
+@dataclass(frozen=True)
 class Check:
     """One check of the run: what was asked, what was found, whether it holds.
 
@@ -323,6 +342,7 @@ class CertificateData:
     components: tuple[Component, ...] = ()
     checks: tuple[Check, ...] = ()
     tubes: tuple[Tube, ...] = ()
+    corrected: Corrected | None = None
     example: bool = False
     schema: str = SCHEMA
 

@@ -60,6 +60,21 @@ def _input(writing: Stating, result: Body) -> Body:
     }
 
 
+def over_limit(change: Change, run: Body) -> list[str]:
+    """Return the samples of a rack whose chloride after dilution is known to be over the recipe's limit."""
+    limit = ((change.get("recipe", run["recipe"]) or {}).get("derived") or {}).get("chloride_limit", 0.0)
+    tubes = {(t["bottle"], t["dilution"]["factor"]) for t in run["tubes"] if t["bottle"] and t["dilution"]}
+    found = []
+    for code, factor in sorted(tubes):
+        known = change.get("bottle", code) or {}
+        sample: Body = (known.get("sample") and change.get("sample", known["sample"])) or {}
+        chloride = chloride_known(change.get("interferents", code) or {}, sample.get("field") or {})
+        if chloride:
+            gate = chloride_gate(limit, factor, chloride["mg_l"], sign=chloride["sign"])
+            found += [f"{code}: {gate.words}"] if gate.verdict == "closed" else []
+    return found
+
+
 def _gate(given: Body) -> ChlorideGate:
     known = given["chloride"] or {"mg_l": None, "sign": "="}
     return chloride_gate(

@@ -10,6 +10,7 @@ import { useWords } from "../parts/words.js";
 import { stepWords } from "../field/glassware.js";
 import { dilutionOf } from "./dilutions.js";
 import { waitingBottles } from "./home.js";
+import { ChlorideLine, gateOf } from "./measure.js";
 
 const BLANKS = 3;
 const BRACKET = 10; // verification after at most ten analyses and at the end: EPA 410.4 rev 2.0, 9.3.4
@@ -50,7 +51,7 @@ export function tubesOf(recipe, bottles, factors, replicates) {
   return tubes.map((tube, i) => ({ position: i + 1, ...tube }));
 }
 
-function Bottle({ bottle, v, set, factors }) {
+function Bottle({ bottle, v, set, factors, recipe }) {
   const picked = v.picked.includes(bottle.code);
   const factor = v.factors[bottle.code] ?? firstFactor(bottle);
   const name = bottle.place ? `${bottle.place.discharger_name}, ${bottle.place.name}` : "sample not here yet";
@@ -60,7 +61,8 @@ function Bottle({ bottle, v, set, factors }) {
     <${Check} label=${html`<strong>${bottle.code}</strong> ${name} (${bottle.again?.why ?? bottle.state})`} checked=${picked}
       onChange=${(on) => set("picked", on ? [...v.picked, bottle.code] : v.picked.filter((code) => code !== bottle.code))} />
     ${picked && html`<${Select} label="Dilution of ${bottle.code}" value=${String(factor)} options=${options} onChoose=${(text) => set("factors", { ...v.factors, [bottle.code]: Number(text) })}
-      hint=${`${problem ? `▲ ${problem} ` : ""}${steps?.length ? `${stepWords(steps)}. ` : ""}${bottle.sampled?.plan ? `At the manhole: ${dilution(bottle.sampled.plan.dilution_factor)}, ${bottle.sampled.plan.reason}` : "Nothing was planned at the manhole."}`} />`}
+      hint=${`${problem ? `▲ ${problem} ` : ""}${steps?.length ? `${stepWords(steps)}. ` : ""}${bottle.sampled?.plan ? `At the manhole: ${dilution(bottle.sampled.plan.dilution_factor)}, ${bottle.sampled.plan.reason}` : "Nothing was planned at the manhole."}`} />
+      <${ChlorideLine} code=${bottle.code} factor=${factor} recipe=${recipe} />`}
   </div>`;
 }
 
@@ -107,6 +109,7 @@ function PlanForm({ v, set, forget }) {
   const { save, problem, busy } = useSaving(async () => {
     if (!picked.length) throw new Error("Choose at least one bottle.");
     const wrong = picked.map((bottle) => [bottle.code, dilutionFor(bottle, factors[bottle.code]).problem]).filter(([, problem]) => problem);
+    picked.map(({ code }) => [code, gateOf(code, factors[code], recipe)]).filter(([, gate]) => gate.verdict === "closed").forEach(([code, gate]) => wrong.push([code, gate.words]));
     if (wrong.length) throw new Error(wrong.map(([code, problem]) => `${code}: ${problem}`).join(" "));
     if (tubes.length > room) throw new Error(`${tubes.length} tubes do not fit: the block has ${room} positions.`);
     if (!curve) throw new Error("A curve of this recipe is needed: make one under Stores.");
@@ -124,7 +127,7 @@ function PlanForm({ v, set, forget }) {
     <form class="stack" onSubmit=${save}>
       ${!recipe ? html`<${Empty} title="No recipe yet">Adopt one under <a href="/bench/stores">Stores</a>.<//>` : html`
       <section class="card stack"><h2>Bottles</h2>
-        ${bottles.length ? bottles.map((bottle) => html`<${Bottle} key=${bottle.code} bottle=${bottle} v=${v} set=${set} factors=${settings?.dilutions ?? [1]} />`)
+        ${bottles.length ? bottles.map((bottle) => html`<${Bottle} key=${bottle.code} bottle=${bottle} v=${v} set=${set} factors=${settings?.dilutions ?? [1]} recipe=${recipe} />`)
           : html`<${Empty} title="No bottle waits"><a href="/bench/receive">Receive one</a> first.<//>`}</section>
       <section class="card stack"><h2>With</h2>
         <${TextField} label="Name of the run" value=${v.name} onInput=${(name) => set("name", name)} placeholder=${`Run of ${day(new Date(), programme()?.zone)}`} />

@@ -34,7 +34,7 @@ function fieldOf(values) {
   const found = {};
   for (const [key, , , name] of READINGS) {
     const text = values[key];
-    if (!text?.trim() || read(text).sign !== "=") continue;
+    if (!UNITS[name] || !text?.trim() || read(text).sign !== "=") continue;
     const number = valueOf({ text, unit: values[`${key}_unit`] }, UNITS[name], units());
     if (number !== null) found[name] = number;
   }
@@ -85,7 +85,7 @@ export function ask(twin, { outlook, recipes, settings, limit, values, now }) {
   const predictive = twin.expected(outlook.pack, { days: now / DAY_MS, field, activity: values.activity });
   const dilutions = settings?.dilutions ?? [1];
   const planned = twin.plan(predictive, {
-    ranges: rangesOf(recipes), dilutions, decision_limit: limit, replicates: settings?.replicates ?? 3,
+    ranges: rangesOf(recipes), dilutions, chloride: read(values.chloride ?? "").value ?? null, decision_limit: limit, replicates: settings?.replicates ?? 3,
   });
   return {
     predictive, median: predictive.quantile(0.5), low: predictive.quantile(0.05), high: predictive.quantile(0.95),

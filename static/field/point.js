@@ -9,6 +9,7 @@ export const READINGS = [
   ["turbidity", "Turbidity", ["NTU", "FNU"], "turbidity_ntu"],
   ["ph", "pH", ["pH"], "ph"],
   ["temperature", "Temperature of the water", ["Cel", "degF"], "temperature_c"],
+  ["chloride", "Chloride strip", ["mg/L"], "chloride_mg_l"],
 ];
 
 export const ACTIVITIES = [["production", "Production"], ["cleaning", "Cleaning"], ["idle", "Idle"]];
@@ -16,7 +17,7 @@ export const ACTIVITIES = [["production", "Production"], ["cleaning", "Cleaning"
 /** An empty form for a sample; the card and the form share its draft. */
 export const BLANK = {
   bottle: "", time: "", conductivity: "", conductivity_unit: "uS/cm", turbidity: "", turbidity_unit: "NTU", ph: "",
-  ph_unit: "pH", temperature: "", temperature_unit: "Cel", activity: null, appearance: "", acid: false, acid_ph: "",
+  ph_unit: "pH", temperature: "", temperature_unit: "Cel", chloride: "", chloride_unit: "mg/L", activity: null, appearance: "", acid: false, acid_ph: "",
   cooled: false, note: "", factor: null, reason: "", purpose: "sample", of: "", meter: null, kind: "", kept_at: "",
   c_start: "", c_planned: "", c_taken: "", c_missed: "", c_volume: "", c_volume_unit: "L", c_temperature: "", c_seal: "intact", c_paced: "hand", portions: [],
 };
