@@ -125,5 +125,5 @@ def test_the_paper_names_qualifiers_and_the_corrected_value_beside_the_reported_
     inside = embedded_data(pdf)
     assert inside["result"]["reported"] == result["shown"]
     assert [one["name"] for one in inside["corrected"]["corrections"]] == ["nitrite"]
-    assert "carries" in words
-    assert "effective degrees of freedom" in words
+    assert "Bias carries" in words
+    assert "coverage factor 1.96 from the normal distribution" in words
