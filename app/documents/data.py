@@ -17,6 +17,7 @@ import typing
 from dataclasses import asdict, dataclass
 from typing import Literal
 
+from app.documents.corrected import Corrected
 from app.documents.plain import build
 from app.errors import Fields, InputError
 
@@ -257,23 +258,6 @@ class Component:
     share_percent: str
     dof: str = ""
     explained: str = ""
-
-
-@dataclass(frozen=True)
-class Correction:
-    """A measured species and what it takes, in mg/L as texts; never chloride."""
-
-    name: str
-    measured: str
-    oxygen_demand: str
-
-
-@dataclass(frozen=True)
-class Corrected:
-    """The value with measured species taken out, beside the reported one, for information."""
-
-    value: str
-    corrections: tuple[Correction, ...]
 
 
 @dataclass(frozen=True)

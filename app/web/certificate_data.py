@@ -9,6 +9,7 @@ from typing import Any
 from app.chemistry import rounding
 from app.chemistry.uncertainty import coverage_factor, whole_dof
 from app.documents import data as paper
+from app.documents.corrected import Corrected, Correction
 from app.errors import InputError
 from app.journal.units import table
 from app.records.change import Body
@@ -138,14 +139,14 @@ def _detection_limit(limit: Body | None) -> str:
     return f"{after}, {limit['shown']} mg/L in the tube, calculated {limit['computed_on']}"
 
 
-def _corrected(found: Body | None) -> paper.Corrected | None:
+def _corrected(found: Body | None) -> Corrected | None:
     """Return the value beside the reported one, its texts as the server rounded them."""
     if found is None:
         return None
-    return paper.Corrected(
+    return Corrected(
         found["shown"],
         tuple(
-            paper.Correction(one["name"], f"{one['given']['text']} {one['given_as']}", one["shown"])
+            Correction(one["name"], f"{one['given']['text']} {one['given_as']}", one["shown"])
             for one in found["corrections"]
         ),
     )
