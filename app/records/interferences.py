@@ -7,7 +7,7 @@ the run reaches its results and no number of theirs is touched.
 from __future__ import annotations
 
 from collections.abc import Iterator
-from dataclasses import asdict
+from dataclasses import asdict, replace
 from typing import Any
 
 from app.chemistry import rounding
@@ -56,6 +56,7 @@ def _input(writing: Stating, result: Body) -> Body:
         "chloride": chloride_known(species, field),
         "conductivity_us_cm": measured.value(field.get("conductivity_us_cm"), "uS/cm"),
         "species": {name: species[name]["given"] for name in CORRECTABLE if name in species},
+        "gate_note": ((run.get("gates") or {}).get("chloride_within_limit") or {}).get("note", ""),
         "detection_limit": in_force(writing, run),
     }
 
@@ -142,6 +143,8 @@ def qualify(writing: Stating, id_: str) -> None:
     given = _input(writing, result)
     gate, (corrected, words), (limit, of_limit) = _gate(given), _corrected(given), _limit(given)
     letter = chloride_qualifier(gate)
+    if letter and gate.verdict == "closed" and given["gate_note"]:
+        letter = replace(letter, note=f"{letter.note} Digested all the same: {given['gate_note']}")
     body = {
         "software": SOFTWARE,
         "inputs_digest": inputs_digest(given),

@@ -129,3 +129,35 @@ def test_a_study_to_its_limit_and_a_result_with_what_stands_beside_it(page: Page
     assert "nitrite 12 mg N/L taken out: 2200 mg/L" in words
     assert "16 mg/L after dilution" in words
     assert f"coverage factor {factor}" in words
+
+
+def test_chloride_over_what_the_mercury_masks_stops_the_plan_and_asks_at_the_gate(page: Page) -> None:
+    person = page.context.request.get("/api/state").json()["person"]["id"]
+    bench = devices.Device(person)
+    strip = {"chloride_mg_l": devices.measured("9000", "mg/L")}
+    texts = [devices.sample(bench, "s", CODE, field=strip), devices.received(bench, CODE)]
+    told.push(page.context.request, texts)
+    page.goto("/bench/plan")
+    page.get_by_label(re.compile(CODE)).first.check(timeout=PATIENT_MS)
+    page.get_by_label(f"Dilution of {CODE}").select_option("2")
+    expect(page.get_by_text("4500 mg/L chloride in the tube is more than the 1998 mg/L")).to_be_visible()
+    page.get_by_role("button", name="Save the plan").click()
+    expect(page.get_by_role("alert")).to_contain_text("dilute at least 4.5 times")
+    page.get_by_label(f"Dilution of {CODE}").select_option("5")
+    expect(page.get_by_text("1800 mg/L chloride in the tube is masked")).to_be_visible()
+    page.get_by_role("button", name="Save the plan").click()
+    page.wait_for_url("**/bench/run/**")
+
+    told.push(page.context.request, [devices.beside(bench, CODE, chloride="> 20000")])
+    page.reload()
+    page.get_by_role("button", name="Confirm: Hood on").click()
+    gate = page.get_by_role("button", name="Confirm: Chloride within the limit")
+    expect(page.get_by_text("Over 4000 mg/L chloride in the tube")).to_be_visible(timeout=PATIENT_MS)
+    gate.click()
+    expect(page.get_by_role("alert")).to_contain_text("say why it is digested all the same")
+    page.get_by_label("Why it is digested all the same").fill("twice the mercury(II) sulfate")
+    gate.click()
+    expect(gate).to_have_count(0)
+    expect(page.get_by_text("Everything is on the server.")).to_be_attached(timeout=PATIENT_MS)
+    (run,) = (body for (kind, _), body in _records(page).items() if kind == "run")
+    assert run["gates"]["chloride_within_limit"]["note"] == "twice the mercury(II) sulfate"
