@@ -7,7 +7,7 @@ import { dilution, plain, reported } from "../parts/format.js";
 import { Problem, say } from "../parts/frame.js";
 import { state } from "../parts/journal.js";
 import { all, one } from "../parts/view.js";
-import { stepWords, stepsOf } from "../field/glassware.js";
+import { stepWords, stepsOf } from "../parts/glassware.js";
 import { tubesOfSample } from "./rack.js";
 
 const COUNTS = ["no", "the one", "both", "all three", "all four", "all five"];
