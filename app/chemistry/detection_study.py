@@ -58,9 +58,9 @@ class StudyResult:
 
 
 def study_gaps(
-    results: Sequence[StudyResult], instruments: Mapping[str, str] | None = None
+    results: Sequence[StudyResult], instruments: Mapping[str, str] | None = None, initial: bool = True
 ) -> tuple[str, ...]:
-    """Say what an initial study still lacks.
+    """Say what a study still lacks.
 
     Parameters
     ----------
@@ -70,13 +70,16 @@ def study_gaps(
         Identity and name of the instruments that one limit shall serve. Where
         they are several, each needs two spikes and two blanks on different
         dates.
+    initial : bool
+        In an initial study every spike must give a positive number; later on
+        one in twenty may fail to.
 
     Returns
     -------
     tuple of str
         Empty when numbers, batches and dates suffice.
     """
-    words = [*_spikes_without_number(results)]
+    words = [*_spikes_without_number(results, initial)]
     for kind, fewest in (("spike", FEWEST_SPIKES), ("blank", FEWEST_BLANKS)):
         mine = [r for r in results if r.kind == kind]
         if len(mine) < fewest:
@@ -89,9 +92,10 @@ def study_gaps(
     return tuple(words)
 
 
-def _spikes_without_number(results: Sequence[StudyResult]) -> list[str]:
-    lost = sum(1 for r in results if r.kind == "spike" and (r.mg_l is None or r.mg_l <= 0))
-    if not lost:
+def _spikes_without_number(results: Sequence[StudyResult], initial: bool) -> list[str]:
+    spikes = [r.mg_l for r in results if r.kind == "spike"]
+    lost = sum(1 for s in spikes if s is None or s <= 0)
+    if not lost or not (initial or spike_too_low(spikes)):
         return []
     return [f"spikes without a positive result: {lost}; every one must give one, so spike higher, all anew"]
 

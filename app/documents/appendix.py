@@ -88,7 +88,8 @@ def _budget(data: CertificateData) -> list[Part]:
         return []
     words = (
         "Standard uncertainties in mg/L of the sample and their share of the variance. They are combined as "
-        "the root of the sum of squares; the degrees of freedom by Welch and Satterthwaite."
+        "the root of the sum of squares; the degrees of freedom by Welch and Satterthwaite. "
+        f"{_carried(data)}"
     )
     rows = [
         [
@@ -110,6 +111,35 @@ def _budget(data: CertificateData) -> list[Part]:
             right=[1, 2, 3],
             **{"picture-width": 72},
         )
+    ]
+
+
+def _carried(data: CertificateData) -> str:
+    most, result = max(data.components, key=lambda one: one.share), data.result
+    words = f"{printable(most.name).capitalize()} carries {held_together(f'{most.share_percent} %')} of it"
+    if result.coverage_factor is None:
+        return f"{words}."
+    dof = f"{result.dof} effective degrees of freedom" if result.dof else "the normal distribution"
+    return f"{words}; coverage factor {held_together(result.coverage_factor)} from {dof}."
+
+
+def _corrected(data: CertificateData) -> list[Part]:
+    if data.corrected is None:
+        return []
+    words = (
+        "Inorganic species that take dichromate by stoichiometry, as they were measured. The corrected value "
+        "is for information and carries no uncertainty of its own; limits are held against the reported "
+        "one. Chloride is never subtracted."
+    )
+    rows = [["Reported", "", held_together(data.result.reported)]]
+    rows += [
+        [printable(one.name), held_together(one.measured), f"\u2212{held_together(one.oxygen_demand)}"]
+        for one in data.corrected.corrections
+    ]
+    rows.append(["Corrected, for information", "", held_together(data.corrected.value)])
+    header = ["What", "Measured", "COD, mg/L"]
+    return [
+        _part("Corrected value", words, header=header, rows=rows, right=[1, 2], stretch=False),
     ]
 
 
@@ -158,6 +188,13 @@ def appendix(data: CertificateData) -> list[Part]:
     """Return the parts of the appendix that the data hold, in the order of the work."""
     return [
         part
-        for parts in (_tubes(data), _calibration(data), _budget(data), _checks(data), _strip(data))
+        for parts in (
+            _tubes(data),
+            _calibration(data),
+            _budget(data),
+            _corrected(data),
+            _checks(data),
+            _strip(data),
+        )
         for part in parts
     ]

@@ -147,6 +147,7 @@ def _method_rows(data: CertificateData) -> Rows:
         ["Range in the tube", span],
         ["Dilution", dilution_words(data.dilution)],
         ["Reporting level", _reporting_level(result)],
+        *([["Detection limit", printable(result.detection_limit)]] if result.detection_limit else []),
         ["Analysed", _analysed(data)],
         ["Analysed by", said(method.analysed_by)],
         ["Run", said(method.run)],
@@ -215,7 +216,22 @@ def _result_view(data: CertificateData) -> dict[str, Any]:
         "unit": held_together(result.unit),
         "letters": [held_together(q.letter) for q in data.qualifiers],
         "coverage": coverage,
+        "beside": _corrected_words(data),
     }
+
+
+def _corrected_words(data: CertificateData) -> list[str]:
+    """Return the corrected value as it stands beside the reported one, which stays the result."""
+    if data.corrected is None:
+        return []
+    taken = " and ".join(
+        f"{printable(one.name)} {held_together(one.measured)}" for one in data.corrected.corrections
+    )
+    value = number_with_unit(data.corrected.value, data.result.unit)
+    return [
+        f"For information, with measured {taken} taken out: {value}. "
+        "The reported result is the uncorrected one."
+    ]
 
 
 def _authorised_rows(data: CertificateData) -> Rows:

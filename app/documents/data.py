@@ -17,6 +17,7 @@ import typing
 from dataclasses import asdict, dataclass
 from typing import Literal
 
+from app.documents.corrected import Corrected
 from app.documents.plain import build
 from app.errors import Fields, InputError
 
@@ -108,6 +109,7 @@ class Result:
 
     ``reported`` is e.g. "2210", "< 100" or "> 900"; ``expanded_u`` is in the
     same unit and None where none is given; ``dof`` None means infinite.
+    ``detection_limit`` says in words which one was in force, and its day.
     """
 
     status: Literal["ok", "below", "over"]
@@ -118,6 +120,7 @@ class Result:
     confidence_percent: str = "95"
     reporting_level: str = ""
     tubes_used: int = 0
+    detection_limit: str = ""
     quantity: str = "Chemical oxygen demand, total"
     unit: str = "mg/L"
 
@@ -323,6 +326,7 @@ class CertificateData:
     components: tuple[Component, ...] = ()
     checks: tuple[Check, ...] = ()
     tubes: tuple[Tube, ...] = ()
+    corrected: Corrected | None = None
     example: bool = False
     schema: str = SCHEMA
 

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import types
 import typing
-from dataclasses import fields, is_dataclass
+from dataclasses import MISSING, fields, is_dataclass
 from typing import Any, Literal
 
 from app.errors import Fields
@@ -17,7 +17,8 @@ def build(kind: Any, value: Any, path: str, wrong: Fields) -> Any:
     ----------
     kind : type
         A dataclass, ``tuple[...]``, ``X | None``, a ``Literal``, or a plain type; a
-        float may come as a whole number.
+        float may come as a whole number, and a field with a default may be absent: data
+        written before it was known have none.
     value : object
         Plain JSON.
     path : str
@@ -55,6 +56,8 @@ def build(kind: Any, value: Any, path: str, wrong: Fields) -> Any:
 def _build_dataclass(kind: Any, value: dict[str, Any], path: str, wrong: Fields) -> Any:
     hints = typing.get_type_hints(kind)
     names = {f.name for f in fields(kind)}
+    later = {f.name: f.default for f in fields(kind) if f.default is not MISSING}
+    value = {n: list(d) if isinstance(d, tuple) else d for n, d in later.items()} | value
     for name in sorted(names ^ set(value)):
         where = f"{path}.{name}" if path else name
         wrong.setdefault(where, []).append("is missing" if name in names else "is not known")

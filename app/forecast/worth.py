@@ -42,11 +42,16 @@ class Worth:
         Of :data:`app.forecast.observations.READINGS`.
     p_in_range_now, p_in_range_expected : float
         Without it, and on average with it.
+    low, high : float
+        The range that nine in ten samples lie in if the meter shows what is
+        usual here, mg/L.
     """
 
     field: str
     p_in_range_now: float
     p_in_range_expected: float
+    low: float
+    high: float
 
 
 def _shown(known: Posterior, now: Now, place: int) -> tuple[np.ndarray, np.ndarray, np.ndarray]:
@@ -105,7 +110,9 @@ def worth_measuring(
         mean, scale = moments(known, *_shown(known, now, place))
         low, high = special.stdtr(known.dof, (bounds[:, None] - mean[:, None]) / scale[:, None])
         chance = float(SHARES @ (high - low).max(axis=1))
-        found.append(Worth(name, planned.choice.p_in_range, chance))
+        usual = len(NODES) // 2
+        ends = np.exp(mean[usual] + scale[usual] * special.stdtrit(known.dof, [0.05, 0.95]))
+        found.append(Worth(name, planned.choice.p_in_range, chance, *ends.tolist()))
     gains = [one for one in found if one.p_in_range_expected - one.p_in_range_now >= LEAST_GAIN]
     return tuple(sorted(gains, key=lambda one: -one.p_in_range_expected))
 

@@ -7,7 +7,7 @@ the run reaches its results and no number of theirs is touched.
 from __future__ import annotations
 
 from collections.abc import Iterator
-from dataclasses import asdict
+from dataclasses import asdict, replace
 from typing import Any
 
 from app.chemistry import rounding
@@ -56,8 +56,24 @@ def _input(writing: Stating, result: Body) -> Body:
         "chloride": chloride_known(species, field),
         "conductivity_us_cm": measured.value(field.get("conductivity_us_cm"), "uS/cm"),
         "species": {name: species[name]["given"] for name in CORRECTABLE if name in species},
+        "gate_note": ((run.get("gates") or {}).get("chloride_within_limit") or {}).get("note", ""),
         "detection_limit": in_force(writing, run),
     }
+
+
+def over_limit(change: Change, run: Body) -> list[str]:
+    """Return the samples of a rack whose chloride after dilution is known to be over the recipe's limit."""
+    limit = ((change.get("recipe", run["recipe"]) or {}).get("derived") or {}).get("chloride_limit", 0.0)
+    tubes = {(t["bottle"], t["dilution"]["factor"]) for t in run["tubes"] if t["bottle"] and t["dilution"]}
+    found = []
+    for code, factor in sorted(tubes):
+        known = change.get("bottle", code) or {}
+        sample: Body = (known.get("sample") and change.get("sample", known["sample"])) or {}
+        chloride = chloride_known(change.get("interferents", code) or {}, sample.get("field") or {})
+        if chloride:
+            gate = chloride_gate(limit, factor, chloride["mg_l"], sign=chloride["sign"])
+            found += [f"{code}: {gate.words}"] if gate.verdict == "closed" else []
+    return found
 
 
 def _gate(given: Body) -> ChlorideGate:
@@ -127,6 +143,8 @@ def qualify(writing: Stating, id_: str) -> None:
     given = _input(writing, result)
     gate, (corrected, words), (limit, of_limit) = _gate(given), _corrected(given), _limit(given)
     letter = chloride_qualifier(gate)
+    if letter and gate.verdict == "closed" and given["gate_note"]:
+        letter = replace(letter, note=f"{letter.note} Digested all the same: {given['gate_note']}")
     body = {
         "software": SOFTWARE,
         "inputs_digest": inputs_digest(given),

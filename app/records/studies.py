@@ -17,7 +17,6 @@ from app.chemistry.detection_study import (
     data_from,
     may_stand,
     months_later,
-    spike_too_low,
     study_gaps,
 )
 from app.errors import WeirbookError
@@ -44,7 +43,7 @@ def gaps(study: Body, instruments: Mapping[str, str], day: str) -> list[str]:
     """Return what a study still lacks, in words; tubes that wait for their number first."""
     waits = sum(1 for row in study["rows"] if row["waits"])
     words = [f"tubes of runs whose number is not known yet: {waits}"] if waits else []
-    return words + list(study_gaps(counted(study, day), instruments))
+    return words + list(study_gaps(counted(study, day), instruments, not study["limits"]))
 
 
 def objection(run: Body, position: int | None, tube: str, level_mg_l: float) -> str:
@@ -99,7 +98,7 @@ def compute_limit(writing: Stating, id_: str) -> None:
     study = writing.get("study", id_) or {}
     day = study["finished"]["at"][:10]
     rows = counted(study, day)
-    spikes = [row.mg_l for row in rows if row.kind == "spike" and row.mg_l is not None]
+    spikes = [row.mg_l for row in rows if row.kind == "spike" and row.mg_l is not None and row.mg_l > 0]
     blanks = [row.mg_l for row in rows if row.kind == "blank"]
     given: Body = {"spikes": spikes, "blanks": blanks}
     answer = verbs.find("detection-limit")(given)
@@ -111,8 +110,6 @@ def compute_limit(writing: Stating, id_: str) -> None:
     recipe = writing.get("recipe", study["recipe"]) or {}
     words = [*_workings_words(workings(spikes, blanks), answer, spikes, blanks)]
     words += _level_words(mg_l, recipe) + _standing_words(before, allowed, stood)
-    if spike_too_low([row.mg_l for row in rows if row.kind == "spike"]):
-        words.append("More than 5 % of the spikes gave no positive result: raise the spike.")
     body = {
         "software": SOFTWARE,
         "inputs_digest": inputs_digest(given),

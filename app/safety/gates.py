@@ -297,31 +297,6 @@ def missing(
     return found
 
 
-def chloride_objection(chloride_mg_l: float | None, dilution_factor: float, limit_mg_l: float) -> str:
-    """Say why the chloride of one sample keeps its tube out of a run.
-
-    Parameters
-    ----------
-    chloride_mg_l : float or None
-        Chloride of the undiluted sample; None when it is not known.
-    dilution_factor : float
-        1 for undiluted.
-    limit_mg_l : float
-        Of the recipe.
-
-    Returns
-    -------
-    str
-        Empty when the chloride after dilution is at or under the limit.
-    """
-    if chloride_mg_l is None:
-        return "the chloride is not known: state it, or that none above the limit is expected"
-    if chloride_mg_l <= limit_mg_l * dilution_factor * (1 + ROUNDING):
-        return ""
-    after = chloride_mg_l / dilution_factor
-    return f"{after:.0f} mg/L chloride after dilution is above this recipe's limit of {limit_mg_l:.0f} mg/L"
-
-
 def ready_to_read(heating_ended: datetime, facts: RunFacts) -> datetime:
     """Return the first moment at which tubes may be opened or read.
 

@@ -7,8 +7,9 @@ from decimal import Decimal
 from typing import Any
 
 from app.chemistry import rounding
-from app.chemistry.uncertainty import coverage_factor
+from app.chemistry.uncertainty import coverage_factor, whole_dof
 from app.documents import data as paper
+from app.documents.corrected import Corrected, Correction
 from app.errors import InputError
 from app.journal.units import table
 from app.records.change import Body
@@ -21,6 +22,7 @@ _FIELD = {
     "turbidity_ntu": "turbidity",
     "ph": "pH",
     "temperature_c": "temperature",
+    "chloride_mg_l": "chloride by strip",
 }
 
 
@@ -117,6 +119,7 @@ def _result(result: Body, used: int) -> paper.Result:
         reported=result["shown"],
         reporting_level=plain(result["reporting_level"]),
         tubes_used=used,
+        detection_limit=_detection_limit(result.get("detection_limit")),
     )
     if result["status"] != "ok" or result["shown_u"] is None:
         return given
@@ -125,7 +128,27 @@ def _result(result: Body, used: int) -> paper.Result:
         given,
         expanded_u=result["shown_u"],
         coverage_factor=f"{coverage_factor(dof):.2f}",
-        dof=None if dof is None else str(int(dof)),
+        dof=None if dof is None else str(whole_dof(dof)),
+    )
+
+
+def _detection_limit(limit: Body | None) -> str:
+    if limit is None:
+        return ""
+    after = f"{limit['shown_after']} mg/L after dilution"
+    return f"{after}, {limit['shown']} mg/L in the tube, calculated {limit['computed_on']}"
+
+
+def _corrected(found: Body | None) -> Corrected | None:
+    """Return the value beside the reported one, its texts as the server rounded them."""
+    if found is None:
+        return None
+    return Corrected(
+        found["shown"],
+        tuple(
+            Correction(one["name"], f"{one['given']['text']} {one['given_as']}", one["shown"])
+            for one in found["corrections"]
+        ),
     )
 
 
@@ -247,6 +270,8 @@ def gather(
         "components": components_of(result, _dof(writing, run)),
         "checks": _checks(run),
         "tubes": _tubes(run, result["bottle"]),
+        "qualifiers": tuple(paper.Qualifier(**one) for one in result.get("qualifiers", [])),
+        "corrected": _corrected(result.get("corrected")),
     }
     return paper.CertificateData(
         number=number,

@@ -14,6 +14,8 @@ import random
 from pathlib import Path
 from typing import Any
 
+import laboratory
+
 HERE = Path(__file__).resolve().parent
 DAYS = 730
 SLOPE, INTERCEPT, BLANK = 3.803e-4, 2.5e-4, 0.011
@@ -250,40 +252,6 @@ def close(story: Story, hours: float, run: str, over: str) -> None:
     story.tell(hours + 0.1, "calloway", "run.closed", run, {"decisions": [decision]})
 
 
-# A study's results in mg/L by day: spikes of 10 mg/L in reagent water, and method blanks.
-STUDY: dict[int, tuple[tuple[str, ...], tuple[str | None, ...]]] = {
-    -66: (("9.6", "10.9", "8.9"), ("0.4", None, "-0.9")),
-    -65: (("11.2", "9.8"), ("1.1", "0.2")),
-    -59: (("10.5", "8.8"), (None, "0.7")),
-}
-
-
-def study(story: Story) -> None:
-    """Tell a finished detection limit study, and a blank of a later run that goes into it."""
-    body: Body = {"name": "High range, first study", "recipe": "high-range", "instruments": ["photometer-2"]}
-    body |= {"estimate": measured("4", "mg/L"), "level": measured("10", "mg/L"), "note": ""}
-    days = [f"@day{day}" for day in STUDY]
-    story.tell(-67 * 24, "fenwright", "study.planned", "study-1", body | {"days": days})
-    for batch, (day, tubes) in enumerate(STUDY.items(), start=1):
-        told = {"on": f"@day{day}", "batch": f"Run {batch}", "instrument": "photometer-2"}
-        for tube, texts in zip(("spike", "blank"), tubes, strict=True):
-            for i, text in enumerate(texts):
-                row = told | {"row": f"{tube}-{batch}-{i}", "tube": tube, "run": None, "position": None}
-                row |= {"result": measured(text, "mg/L") if text else None, "left_out": "", "reason": ""}
-                story.tell(24 * day + 9 + i / 100, "fenwright", "study.result", "study-1", row)
-    story.tell(-58 * 24, "fenwright", "study.finished", "study-1", {"keep": False, "note": ""})
-    row = {"row": "blank-run-12", "tube": "blank", "on": "@day-6", "batch": "Run 12, high range"}
-    row |= {"instrument": "photometer-2", "result": None, "run": "run-12", "position": 2}
-    story.tell(-119, "fenwright", "study.result", "study-1", row | {"left_out": "", "reason": ""})
-
-
-def measure(story: Story, hours: float, code: str, how: str, **species: str) -> None:
-    """Tell what was measured beside the COD of a bottle, in mg/L."""
-    given = {name: measured(text, "mg/L") for name, text in species.items()}
-    body = {"bottle": code, "species": given, "how": how, "note": ""}
-    story.tell(hours, "calloway", "bottle.measured", code, body)
-
-
 def story_of(points: dict[str, Body], codes: list[str]) -> list[Body]:
     """Return the last days, from a closed run to this morning's bottles."""
     story = Story()
@@ -296,9 +264,8 @@ def story_of(points: dict[str, Body], codes: list[str]) -> list[Body]:
     hand_over(story, -141, "hand-1", codes[:6], "4471", "3.4")
     for i in range(6):
         receive(story, -140.5 + i / 20, codes[i], warm=i == 4)
-    study(story)
-    measure(story, -139, codes[2], "strip, and nitrite by photometer", chloride="640", nitrite="3.2")
-    measure(story, -138.9, codes[5], "chloride strip", chloride="1150")
+    for one in (*laboratory.study(), *laboratory.measured(codes)):
+        story.tell(*one)
     bottles = {codes[i]: factors[name] for i, name in enumerate(first)}
     tubes = planned(story, -124, "run-12", "Run 12, high range", bottles, 2)
     heat(story, -123.5, "run-12")

@@ -1,8 +1,7 @@
 // The dilution of a bottle as a run records it: one choice of glassware for what is shown, what is done and its uncertainty.
 
 import { dilution } from "../parts/format.js";
-import { stepsOf } from "../field/glassware.js";
-import { factorOf, relativeU } from "./glassware.js";
+import { factorOf, relativeU, stepsOf } from "../parts/glassware.js";
 
 const makes = (steps, factor) => steps.length > 0 && Math.abs(factorOf(steps) / factor - 1) < 1e-6;
 
@@ -12,10 +11,12 @@ const makes = (steps, factor) => steps.length > 0 && Math.abs(factorOf(steps) / 
  * @param {number} factor
  * @param {{dilution_factor: number, steps: object[], reason: string}|null} plan
  * @param {string} chosen why, where the plan is not followed
+ * @param {{solids: boolean, volume_ml: number|null}} sample what its transfers depend on
  */
-export function dilutionOf(factor, plan, chosen = "chosen at the bench") {
+export function dilutionOf(factor, plan, chosen = "chosen at the bench", sample = {}) {
   const planned = plan?.dilution_factor === factor;
-  const own = planned && makes(plan.steps, factor) ? plan.steps : stepsOf(factor);
+  const fits = (plan?.steps[0]?.pipette_ml ?? 0) <= (sample.volume_ml ?? Infinity);
+  const own = planned && fits && makes(plan.steps, factor) ? plan.steps : stepsOf(factor, sample);
   const steps = (own ?? []).map(({ pipette_ml, flask_ml }) => ({ pipette_ml, flask_ml }));
   const relative_u = own ? relativeU(steps) : null;
   if (relative_u === null) {

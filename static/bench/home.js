@@ -1,11 +1,12 @@
 // What waits at the bench: runs first, then bottles by the time they have left.
 
 import { html } from "../parts/html.js";
-import { clock, dilution, left } from "../parts/format.js";
+import { clock, day, dilution, left } from "../parts/format.js";
 import { Empty, Frame, Where } from "../parts/frame.js";
 import { all, one, programme, useView } from "../parts/view.js";
 import { useWords } from "../parts/words.js";
 import { again } from "./again.js";
+import { dueList } from "./duties.js";
 import { heatedAt, span, useNow } from "./timer.js";
 
 const OPEN = new Set(["planned", "heating", "cooling", "reading", "calculated"]);
@@ -48,6 +49,14 @@ function BottleRow({ bottle }) {
     ${bottle.sampled && html`<span class="under"><span>${dilutionWords(bottle)}</span><span>analysis to start: ${left(bottle.sampled.hold_until)}</span></span>`}</a>`;
 }
 
+const SOON_MS = 14 * 86400000;
+
+function DueSoon({ zone }) {
+  const [first] = useView(() => dueList(day(new Date(), zone)));
+  if (!first || first.due > day(new Date(Date.now() + SOON_MS), zone)) return null;
+  return html`<p class="card wait">◇ Detection limit, by <strong>${first.due}</strong>: ${first.what}. <a href="/bench/studies">All that is due</a></p>`;
+}
+
 /** The first screen of the Bench. */
 export function Home() {
   useWords(); // the words of the gates are on the tablet before the network is lost
@@ -58,7 +67,8 @@ export function Home() {
   const done = runs.filter((run) => !OPEN.has(run.state)).slice(0, 6);
   return html`<${Frame} place="bench" title="What waits" about=${settings?.laboratory}>
     <div class="stack">
-      <div class="row"><a class="button" href="/bench/receive">Receive a bottle</a><a class="button" href="/bench/plan">Plan a run</a><a class="button" href="/bench/stores">Stores</a></div>
+      <div class="row"><a class="button" href="/bench/receive">Receive a bottle</a><a class="button" href="/bench/plan">Plan a run</a><a class="button" href="/bench/stores">Stores</a><a class="button" href="/bench/measure">Chloride and others</a><a class="button" href="/bench/studies">Detection limits</a></div>
+      <${DueSoon} zone=${settings?.zone} />
       <h2>Runs</h2>
       ${open.length ? html`<nav class="list" aria-label="Open runs">${open.map((run) => html`<${RunRow} key=${run.id} run=${run} zone=${settings?.zone} />`)}</nav>`
         : html`<${Empty} title="No run is open">Plan one when bottles were received.<//>`}

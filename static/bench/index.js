@@ -2,12 +2,15 @@
 
 import { html } from "../parts/html.js";
 import { Home } from "./home.js";
+import { Measure } from "./measure.js";
 import { Plan } from "./plan.js";
 import { Receive } from "./receive.js";
 import { RecipePage } from "./recipes.js";
 import { Run } from "./run.js";
 import { AddCalibration } from "./calibration.js";
 import { AddThing, Stores } from "./stores.js";
+import { PlanStudy, Studies } from "./studies.js";
+import { Study } from "./study.js";
 
 /**
  * The screen of a path below /bench.
@@ -16,6 +19,9 @@ import { AddThing, Stores } from "./stores.js";
 export function bench([what, id]) {
   if (what === "receive") return html`<${Receive} given=${id} />`;
   if (what === "plan") return html`<${Plan} />`;
+  if (what === "measure") return html`<${Measure} key=${id} given=${id} />`;
+  if (what === "studies") return id === "new" ? html`<${PlanStudy} />` : html`<${Studies} />`;
+  if (what === "study") return html`<${Study} key=${id} id=${id} />`;
   if (what === "run") return html`<${Run} key=${id} id=${id} />`;
   if (what === "recipe" && id) return html`<${RecipePage} key=${id} id=${id} />`;
   if (what === "stores" && id === "calibration") return html`<${AddCalibration} />`;

@@ -1,12 +1,13 @@
 // What the run gave: each sample in a big number, checks in words, what to decide, the waste, the end.
 
+import { Beside, Budget, sharesOf } from "../parts/beside.js";
 import { html } from "../parts/html.js";
 import { Choice, TextField, useForm, useSaving } from "../parts/fields.js";
 import { dilution, plain, reported } from "../parts/format.js";
 import { Problem, say } from "../parts/frame.js";
 import { state } from "../parts/journal.js";
 import { all, one } from "../parts/view.js";
-import { stepWords, stepsOf } from "../field/glassware.js";
+import { stepWords, stepsOf } from "../parts/glassware.js";
 import { tubesOfSample } from "./rack.js";
 
 const COUNTS = ["no", "the one", "both", "all three", "all four", "all five"];
@@ -43,6 +44,7 @@ function Sample({ sample, run }) {
     ${stop ? html`<h2>▲ ${sample.sample} ${sample.status === "over" ? "is over range" : "disagrees"}</h2>`
       : html`<p class="tight"><span class="big">${reported(result?.shown ?? String(sample.reported?.cod ?? ""))}</span> ${result?.shown_u ? html`<span class="plus">± ${reported(result.shown_u)}</span>` : ""} <span class="unit">mg/L</span></p>`}
     <p>${TOLD.get(sample.status)(sample, run)} ${above ? html`<span class="above">▲ ${above.why}</span>` : result?.verdicts?.[0]?.why ?? ""}</p>
+    <${Beside} result=${result} />${sharesOf(result) && html`<details><summary>Where the uncertainty comes from</summary><${Budget} result=${result} /></details>`}
     <${Advice} advice=${sample.advice} /></section>`;
 }
 

@@ -5,11 +5,14 @@ import { Check, Select, TextField, useForm, useSaving } from "../parts/fields.js
 import { day, dilution, plain } from "../parts/format.js";
 import { Empty, Frame, Problem, go, say } from "../parts/frame.js";
 import { newId, state } from "../parts/journal.js";
+import { read } from "../parts/measured.js";
 import { all, one, programme, useView } from "../parts/view.js";
 import { useWords } from "../parts/words.js";
-import { stepWords } from "../field/glassware.js";
+import { stepWords } from "../parts/glassware.js";
 import { dilutionOf } from "./dilutions.js";
 import { waitingBottles } from "./home.js";
+import { ChlorideLine, gateOf } from "./measure.js";
+import { Outlook, firstFactor } from "./outlook.js";
 
 const BLANKS = 3;
 const BRACKET = 10; // verification after at most ten analyses and at the end: EPA 410.4 rev 2.0, 9.3.4
@@ -26,10 +29,7 @@ export function curvesFor(recipe, today) {
 export const checkLevel = (recipe) => (recipe.working_high >= 500 ? "500" : String(Math.round(recipe.working_high / 2)));
 
 /** The dilution that a bottle would be digested at, or what is wrong with it. */
-const dilutionFor = (bottle, factor) => dilutionOf(factor, bottle.sampled?.plan ?? null, bottle.again?.why ?? "chosen at the bench");
-
-/** The dilution that a bottle begins with: advised by its last run, else planned at the manhole. */
-const firstFactor = (bottle) => bottle.again?.factor ?? bottle.sampled?.plan?.dilution_factor ?? 1;
+const dilutionFor = (bottle, factor) => dilutionOf(factor, bottle.sampled?.plan ?? null, bottle.again?.why ?? "chosen at the bench", { solids: bottle.sampled?.solids, volume_ml: bottle.volume_ml });
 
 /** The tubes of a run, placed by themselves: blanks, each sample's replicates, verifications around every ten. */
 export function tubesOf(recipe, bottles, factors, replicates) {
@@ -50,9 +50,9 @@ export function tubesOf(recipe, bottles, factors, replicates) {
   return tubes.map((tube, i) => ({ position: i + 1, ...tube }));
 }
 
-function Bottle({ bottle, v, set, factors }) {
+function Bottle({ bottle, v, set, factors, recipe }) {
   const picked = v.picked.includes(bottle.code);
-  const factor = v.factors[bottle.code] ?? firstFactor(bottle);
+  const factor = v.factors[bottle.code] ?? firstFactor(bottle, recipe);
   const name = bottle.place ? `${bottle.place.discharger_name}, ${bottle.place.name}` : "sample not here yet";
   const options = [...new Set([...factors, factor])].sort((a, b) => a - b).map((f) => [String(f), dilution(f)]);
   const { steps, problem } = dilutionFor(bottle, factor);
@@ -60,7 +60,10 @@ function Bottle({ bottle, v, set, factors }) {
     <${Check} label=${html`<strong>${bottle.code}</strong> ${name} (${bottle.again?.why ?? bottle.state})`} checked=${picked}
       onChange=${(on) => set("picked", on ? [...v.picked, bottle.code] : v.picked.filter((code) => code !== bottle.code))} />
     ${picked && html`<${Select} label="Dilution of ${bottle.code}" value=${String(factor)} options=${options} onChoose=${(text) => set("factors", { ...v.factors, [bottle.code]: Number(text) })}
-      hint=${`${problem ? `▲ ${problem} ` : ""}${steps?.length ? `${stepWords(steps)}. ` : ""}${bottle.sampled?.plan ? `At the manhole: ${dilution(bottle.sampled.plan.dilution_factor)}, ${bottle.sampled.plan.reason}` : "Nothing was planned at the manhole."}`} />`}
+      hint=${`${problem ? `▲ ${problem} ` : ""}${steps?.length ? `${stepWords(steps)}. ` : ""}${bottle.sampled?.plan ? `At the manhole: ${dilution(bottle.sampled.plan.dilution_factor)}, ${bottle.sampled.plan.reason}` : "Nothing was planned at the manhole."}`} />
+      <${TextField} label="Sample left in ${bottle.code}, mL" inputmode="decimal" value=${v.volumes[bottle.code] ?? ""} onInput=${(text) => set("volumes", { ...v.volumes, [bottle.code]: text })} hint="Empty: not judged." />
+      <${Outlook} bottle=${bottle} factor=${factor} recipe=${recipe} />
+      <${ChlorideLine} code=${bottle.code} factor=${factor} recipe=${recipe} />`}
   </div>`;
 }
 
@@ -68,7 +71,7 @@ function options(rows, name = "name") {
   return [["", "choose"], ...rows.map((row) => [row.id, row[name]])];
 }
 
-const BLANK = { name: "", recipe: "", lot: "", instrument: "", block: "", calibration: "", container: "", picked: [], factors: {} };
+const BLANK = { name: "", recipe: "", lot: "", instrument: "", block: "", calibration: "", container: "", picked: [], factors: {}, volumes: {} };
 
 /** The only one of its kind is chosen by itself. */
 const chosen = (given, rows) => given || (rows.length === 1 ? rows[0].id : "");
@@ -96,17 +99,18 @@ export function Plan() {
 function PlanForm({ v, set, forget }) {
   const words = useWords();
   const settings = useView(programme)?.settings;
-  const bottles = useView(waitingBottles);
+  const bottles = useView(waitingBottles).map((bottle) => ({ ...bottle, volume_ml: read(v.volumes[bottle.code] ?? "").value ?? null }));
   const stores = useStores(v);
   const { recipe, curve } = stores;
   const picked = bottles.filter((bottle) => v.picked.includes(bottle.code));
-  const factors = Object.fromEntries(picked.map((bottle) => [bottle.code, v.factors[bottle.code] ?? firstFactor(bottle)]));
+  const factors = Object.fromEntries(picked.map((bottle) => [bottle.code, v.factors[bottle.code] ?? firstFactor(bottle, recipe)]));
   const tubes = recipe ? tubesOf(recipe, picked, factors, settings?.replicates ?? 3) : [];
   const checks = tubes.filter((tube) => tube.role === "verification").length;
   const room = (stores.block && one("instrument", stores.block)?.positions) || POSITIONS;
   const { save, problem, busy } = useSaving(async () => {
     if (!picked.length) throw new Error("Choose at least one bottle.");
     const wrong = picked.map((bottle) => [bottle.code, dilutionFor(bottle, factors[bottle.code]).problem]).filter(([, problem]) => problem);
+    picked.map(({ code }) => [code, gateOf(code, factors[code], recipe)]).filter(([, gate]) => gate.verdict === "closed").forEach(([code, gate]) => wrong.push([code, gate.words]));
     if (wrong.length) throw new Error(wrong.map(([code, problem]) => `${code}: ${problem}`).join(" "));
     if (tubes.length > room) throw new Error(`${tubes.length} tubes do not fit: the block has ${room} positions.`);
     if (!curve) throw new Error("A curve of this recipe is needed: make one under Stores.");
@@ -124,7 +128,7 @@ function PlanForm({ v, set, forget }) {
     <form class="stack" onSubmit=${save}>
       ${!recipe ? html`<${Empty} title="No recipe yet">Adopt one under <a href="/bench/stores">Stores</a>.<//>` : html`
       <section class="card stack"><h2>Bottles</h2>
-        ${bottles.length ? bottles.map((bottle) => html`<${Bottle} key=${bottle.code} bottle=${bottle} v=${v} set=${set} factors=${settings?.dilutions ?? [1]} />`)
+        ${bottles.length ? bottles.map((bottle) => html`<${Bottle} key=${bottle.code} bottle=${bottle} v=${v} set=${set} factors=${settings?.dilutions ?? [1]} recipe=${recipe} />`)
           : html`<${Empty} title="No bottle waits"><a href="/bench/receive">Receive one</a> first.<//>`}</section>
       <section class="card stack"><h2>With</h2>
         <${TextField} label="Name of the run" value=${v.name} onInput=${(name) => set("name", name)} placeholder=${`Run of ${day(new Date(), programme()?.zone)}`} />

@@ -8,7 +8,7 @@ import { shown } from "../parts/units.js";
 import { all, one, programme, useView } from "../parts/view.js";
 import { useWords } from "../parts/words.js";
 import { Expected } from "./expected.js";
-import { ACTIVITIES, BLANK, cardOf, draftKey, hazardOf, limitOf, READINGS } from "./point.js";
+import { ACTIVITIES, BLANK, cardOf, draftKey, hazardOf, limitOf, READINGS, Solids } from "./point.js";
 import { openVisit, samplerAt } from "./sampler.js";
 
 /** The dangers of a point with the usual precautions, first on every screen of it. */
@@ -41,6 +41,7 @@ function Readings({ values, set }) {
     ${READINGS.map(([field, label, units]) => html`<${Reading} key=${field} ...${{ field, label, units, values, set }} />`)}
     <${Choice} label="What goes on at the firm" value=${values.activity} options=${ACTIVITIES}
       onChoose=${(key) => set("activity", values.activity === key ? null : key)} />
+    <${Solids} ...${{ values, set }} />
   </section>`;
 }
 

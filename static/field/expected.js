@@ -2,33 +2,25 @@
 
 import { html, useState } from "../parts/html.js";
 import { Choice, TextField } from "../parts/fields.js";
-import { percent, plain, rough } from "../parts/format.js";
+import { around, bringWords, costWords, forecastOf, plansOf } from "../parts/ask.js";
+import { dilution, percent, plain, rough } from "../parts/format.js";
+import { stepWords, stepsOf } from "../parts/glassware.js";
 import { Strip } from "../parts/strip.js";
 import { Tube, colourName } from "../parts/tube.js";
-import { programme } from "../parts/view.js";
-import { useForecast } from "./forecast.js";
-import { stepWords, stepsOf } from "./glassware.js";
-import { limitOf } from "./point.js";
+import { programme, useView } from "../parts/view.js";
+import { fieldOf, limitOf } from "./point.js";
 
-/** The plans of the proposed recipe, or of the first one when none is proposed. */
-function plansOf(forecast) {
-  const recipe = forecast?.choice?.recipe ?? forecast?.plans[0]?.recipe;
-  return (forecast?.plans ?? []).filter((plan) => plan.recipe === recipe);
+/** What to expect at a point with what was typed there; null without an outlook. */
+export function useForecast(point, values) {
+  const { activity, solids } = values;
+  return useView(() => forecastOf(point, { field: fieldOf(values), activity, solids }));
 }
 
 /** The plan that counts: what the person chose, or else what the forecast chose. */
 export function planOf(forecast, values) {
   if (values.factor === null) return forecast?.choice ?? null;
-  const known = plansOf(forecast).find((plan) => plan.factor === values.factor);
-  return known ?? { recipe: null, factor: values.factor, steps: stepsOf(values.factor) ?? [], share: null };
-}
-
-/** The chosen plan between its neighbours: three bars tell why this one. */
-function around(forecast, plan) {
-  const same = plansOf(forecast).sort((a, b) => a.factor - b.factor);
-  const at = Math.max(0, same.findIndex((one) => one.factor === plan.factor));
-  const first = Math.min(Math.max(0, at - 1), Math.max(0, same.length - 3));
-  return same.slice(first, first + 3).map((one) => ({ ...one, chosen: one.factor === plan.factor }));
+  const known = forecast && plansOf(forecast).find((plan) => plan.factor === values.factor);
+  return known || { recipe: null, factor: values.factor, steps: stepsOf(values.factor, values) ?? [], share: null, objections: [] };
 }
 
 function Figure({ forecast, plan }) {
@@ -43,10 +35,11 @@ function Figure({ forecast, plan }) {
 
 function Dilution({ plan, forecast, chosen }) {
   const steps = plan.steps.length ? `${stepWords(plan.steps)}. ` : "";
-  const range = forecast?.severalRanges && plan.name ? ` Recipe: ${plan.name}.` : "";
+  const range = forecast?.severalRanges && plan.name ? `Recipe: ${plan.name}. ` : "";
   const chance = plan.share === null ? "" : `${percent(plan.share)} in range. `;
   return html`<p class="dilute"><strong>${plan.factor === 1 ? "Do not dilute." : `Dilute 1:${plain(plan.factor)}.`}</strong> ${" "}
-    ${chosen ? html`Your choice. ${chance}` : `${forecast.why} `}<span class="soft">${steps}${range}</span></p>`;
+      ${chosen ? html`Your choice. ${chance}` : `${forecast.why} `}<span class="soft">${steps}${range}</span></p>
+    ${plan.objections.map((words) => html`<p class="above" key=${words}>▲ ${dilution(plan.factor)}: ${words}.</p>`)}`;
 }
 
 function Another({ forecast, values, set }) {
@@ -57,7 +50,7 @@ function Another({ forecast, values, set }) {
   }
   const factors = forecast?.factors ?? programme()?.settings.dilutions ?? [1];
   const options = factors.map((factor) => {
-    const share = plansOf(forecast).find((plan) => plan.factor === factor)?.share;
+    const share = forecast && plansOf(forecast).find((plan) => plan.factor === factor)?.share;
     const name = factor === 1 ? "none" : `1:${plain(factor)}`;
     return [factor, share === undefined || share === null ? name : html`<span>${name}</span> <span class="soft">${percent(share)}</span>`];
   });
@@ -76,7 +69,6 @@ function Another({ forecast, values, set }) {
 /** The card with the expectation, the strip and the dilution. */
 export function Expected({ point, values, set }) {
   const forecast = useForecast(point, values);
-  if (forecast === undefined) return html`<section class="card"><p class="soft">Looking up what to expect…</p></section>`;
   const plan = planOf(forecast, values);
   if (!forecast) {
     return html`<section class="card stack"><h2>No expectation yet</h2>
@@ -84,12 +76,16 @@ export function Expected({ point, values, set }) {
       ${plan && html`<${Dilution} plan=${plan} chosen=${true} />`}
       <${Another} forecast=${null} values=${values} set=${set} /></section>`;
   }
+  const soft = [...(plan?.needed_ml ? [`${costWords(plan)} ${bringWords(plan)}`] : []), ...forecast.reasons, ...forecast.notes];
   return html`<section class="card stack" aria-label="Expectation">
     <${Figure} forecast=${forecast} plan=${plan} />
-    <${Strip} predictive=${forecast.predictive} bars=${plan ? around(forecast, plan) : []} limit=${limitOf(point)?.value ?? null} />
+    <${Strip} predictive=${forecast.predictive} bars=${plan ? around(plansOf(forecast), plan.factor) : []} limit=${limitOf(point)?.value ?? null} />
     ${plan && html`<${Dilution} plan=${plan} forecast=${forecast} chosen=${values.factor !== null} />`}
     ${!plan && html`<p class="above">▲ No dilution at hand fits. ${forecast.why}</p>`}
-    ${forecast.notes.map((words) => html`<p class="soft" key=${words}>${words}</p>`)}
+    ${forecast.worth && html`<p class="dilute worth" role="status">${forecast.worth}</p>`}
+    ${forecast.alarms.map((words) => html`<p class="above" role="status" key=${words}>▲ ${words}</p>`)}
+    ${soft.map((words) => html`<p class="soft" key=${words}>${words}</p>`)}
     <${Another} forecast=${forecast} values=${values} set=${set} />
+    <p><a href=${`/review/trust/${encodeURIComponent(point.id)}`}>How far to trust this</a></p>
   </section>`;
 }

@@ -10,10 +10,9 @@ import { newId, state, withOffset } from "../parts/journal.js";
 import { all, one, programme, useView } from "../parts/view.js";
 import { useWords } from "../parts/words.js";
 import { freshCode } from "./codes.js";
-import { planOf } from "./expected.js";
-import { useForecast } from "./forecast.js";
+import { planOf, useForecast } from "./expected.js";
 import { gasGate } from "./gas.js";
-import { ACTIVITIES, BLANK, cardOf, draftKey, nameOf, READINGS } from "./point.js";
+import { ACTIVITIES, BLANK, cardOf, draftKey, fieldOf, nameOf, READINGS, Solids } from "./point.js";
 import { CompositePart, compositeOf, compositeProblem, openVisit, samplerAt } from "./sampler.js";
 
 const EARLY_MS = 5 * 60000;
@@ -64,11 +63,7 @@ const kindOf = (values, sampler) => values.kind || (sampler ? "composite" : "gra
 
 /** The body of the entry, measured values as typed. */
 export function bodyOf(point, values, plan, forecast, { visit = null, sampler = null, meter = null } = {}) {
-  const field = {};
-  for (const [key, , , name] of READINGS) {
-    const measured = measuredOf(values[key], values[`${key}_unit`]);
-    if (measured) field[name] = measured;
-  }
+  const field = fieldOf(values);
   return {
     point: point.id,
     visit: visit?.id ?? null,
@@ -81,6 +76,7 @@ export function bodyOf(point, values, plan, forecast, { visit = null, sampler = 
     collected_at: withOffset(values.time ? new Date(values.time) : new Date()),
     field,
     activity: values.activity,
+    ...(values.solids && { solids: true }),
     appearance: values.appearance.trim(),
     preservation: { acid: values.acid, ph: values.acid ? measuredOf(values.acid_ph, "pH") : null, cooled: values.cooled, at: preservedAt(values) },
     plan: planBody(plan, values, forecast),
@@ -159,7 +155,7 @@ function Form({ point, values, set, forget }) {
     if (Object.keys(found).length) throw new Error("Not saved yet: see what is marked.");
     const { code } = readCode(values.bottle);
     const picked = kindOf(values, sampler) === "composite" ? sampler : null;
-    await state("sample.taken", picked?.id ?? newId(), bodyOf(point, values, plan, forecast ?? null, { visit, sampler: picked, meter: meter || null }));
+    await state("sample.taken", picked?.id ?? newId(), bodyOf(point, values, plan, forecast, { visit, sampler: picked, meter: meter || null }));
     await forget();
     say(`Saved on this tablet: ${code}`);
     go(visit ? `/field/visit/${visit.id}` : "/field/samples");
@@ -175,6 +171,7 @@ function Form({ point, values, set, forget }) {
       <${Choice} label="What goes on at the firm" value=${values.activity} options=${ACTIVITIES} onChoose=${(key) => set("activity", values.activity === key ? null : key)} />
       <div class="two">${READINGS.map(([field, label, units]) => html`<${NumberField} key=${field} label=${label} value=${values[field]} unit=${values[`${field}_unit`]}
         units=${units.length > 1 ? units : undefined} onInput=${(text) => set(field, text)} onUnit=${(unit) => set(`${field}_unit`, unit)} />`)}</div>
+      <${Solids} ...${{ values, set }} />
       <${TextField} label="Colour, smell, foam, solids" value=${values.appearance} maxlength="200" onInput=${(text) => set("appearance", text)} />
     </section>
     <${Kept} values=${values} set=${set} wrong=${wrong.acid_ph} />

@@ -1,7 +1,7 @@
 // The forecast's twin on the tablet: the same Student t distribution of ln COD as app/forecast, held to the same
 // vectors. The pack comes from the server; readings of now are laid on here.
 
-const READINGS = ["conductivity_us_cm", "turbidity_ntu", "ph", "temperature_c"];
+export const READINGS = ["conductivity_us_cm", "turbidity_ntu", "ph", "temperature_c"];
 const SOURCE = [0, 1, 2, 3, 0, 1];
 const TYPICAL = [0.6, 0.9, 0.5, 0.5, 0.5, 0.5];
 const ACTIVITIES = ["production", "cleaning", "idle"];
@@ -25,35 +25,35 @@ export function logGamma(x) {
 
 /** The continued fraction of the incomplete beta function, Lentz's method. */
 function fraction(a, b, x) {
-  const tiny = 1e-300;
+  const away = (value) => (Math.abs(value) < 1e-300 ? 1e-300 : value);
   let c = 1;
-  let d = 1 - ((a + b) * x) / (a + 1);
-  d = 1 / (Math.abs(d) < tiny ? tiny : d);
+  let d = 1 / away(1 - ((a + b) * x) / (a + 1));
   let h = d;
-  for (let m = 1; m <= 500; m += 1) {
-    const steps = [
-      (m * (b - m) * x) / ((a + 2 * m - 1) * (a + 2 * m)),
-      (-(a + m) * (a + b + m) * x) / ((a + 2 * m) * (a + 2 * m + 1)),
-    ];
-    let change = 1;
-    for (const step of steps) {
-      d = 1 + step * d;
-      d = 1 / (Math.abs(d) < tiny ? tiny : d);
-      c = 1 + step / c;
-      if (Math.abs(c) < tiny) c = tiny;
-      change = d * c;
-      h *= change;
-    }
-    if (Math.abs(change - 1) < 1e-15) break;
+  for (let k = 2, change = 0; k <= 1000 && (k % 2 || Math.abs(change - 1) >= 1e-15); k += 1) {
+    const m = k >> 1;
+    const step = (k % 2 ? -(a + m) * (a + b + m) : m * (b - m)) * x / ((a + k - 1) * (a + k));
+    d = 1 / away(1 + step * d);
+    c = away(1 + step / c);
+    change = d * c;
+    h *= change;
   }
   return h;
+}
+
+const betas = new Map();
+
+/** ln of the beta function; a point's degrees of freedom stay, so it is kept. */
+function logBeta(a, b) {
+  const name = `${a} ${b}`;
+  if (betas.size > 99) betas.clear();
+  return betas.get(name) ?? betas.set(name, logGamma(a) + logGamma(b) - logGamma(a + b)).get(name);
 }
 
 /** The regularised incomplete beta function. */
 export function incompleteBeta(a, b, x) {
   if (x <= 0) return 0;
   if (x >= 1) return 1;
-  const front = Math.exp(logGamma(a + b) - logGamma(a) - logGamma(b) + a * Math.log(x) + b * Math.log1p(-x));
+  const front = Math.exp(a * Math.log(x) + b * Math.log1p(-x) - logBeta(a, b));
   return x < (a + 1) / (a + b + 2) ? (front * fraction(a, b, x)) / a : 1 - (front * fraction(b, a, 1 - x)) / b;
 }
 
@@ -150,44 +150,4 @@ export function expected(pack, now) {
   const variance = squared(x, one.covariance) + wandered + one.noise * (1 + added);
   const found = predictiveOf([{ weight: 1, mean: dot(x, one.mean), scale: Math.sqrt(variance), dof: one.dof }]);
   return { ...found, bounded };
-}
-
-function objections(range, factor, { chloride, decision_limit: limit }) {
-  const found = [];
-  if (chloride != null && range.chloride_limit != null && chloride / factor > range.chloride_limit) {
-    found.push(`${(chloride / factor).toFixed(0)} mg/L chloride after dilution is above ${range.chloride_limit.toFixed(0)}`);
-  }
-  if (range.reporting != null && limit != null && range.reporting * factor > limit) {
-    found.push(`the reporting level after dilution, ${(range.reporting * factor).toFixed(0)} mg/L, is above the limit of ${limit.toFixed(0)}`);
-  }
-  return found;
-}
-
-function whyOf(choice, plans) {
-  if (!choice) return `No dilution is usable: ${[...new Set(plans.flatMap((p) => p.objections))].sort().join("; ")}.`;
-  const share = (x) => `${(100 * x).toFixed(0)} %`;
-  return `${share(choice.p_in_range)} of samples like this fall in range; ${share(choice.p_over)} would go over, ${share(choice.p_below)} under.`;
-}
-
-const better = (a, b) => a.expected_tubes - b.expected_tubes || a.p_over - b.p_over;
-
-/**
- * Every dilution's chances and the one to choose.
- * @param {{cdf: (cod: number) => number}} predictive
- * @param {{ranges: object[], dilutions: number[], chloride?: number, decision_limit?: number, replicates?: number}} given
- */
-export function plan(predictive, given) {
-  const plans = given.ranges.flatMap((range) => given.dilutions.map((factor) => {
-    const below = predictive.cdf(range.low * factor);
-    const over = 1 - predictive.cdf(range.high * factor);
-    const inside = Math.max(0, 1 - below - over);
-    const found = objections(range, factor, given);
-    return {
-      range: range.name, dilution_factor: factor, p_in_range: inside, p_over: over, p_below: below,
-      expected_tubes: inside > 1e-6 ? (given.replicates ?? 3) / inside : null, usable: found.length === 0, objections: found,
-    };
-  }));
-  const usable = plans.filter((p) => p.usable && p.expected_tubes !== null).sort(better);
-  const choice = usable[0] ?? null;
-  return { plans, choice, why: whyOf(choice, plans) };
 }

@@ -11,6 +11,8 @@ const KINDS = new Map(Object.entries({
   "settings.changed": "Settings changed", "round.planned": "Round planned", "round.changed": "Round changed", "visit.begun": "Visit begun",
   "visit.ended": "Visit ended", "gas.tested": "Gas tested", "gas.confirmed": "Confirmed after a gas alarm", "flow.measured": "Flow measured",
   "sampler.set": "Sampler set", "sample.split": "Sample split", "meter.checked": "Meter checked",
+  "bottle.measured": "Measured beside the COD", "study.planned": "Study planned",
+  "study.result": "Result of a study", "study.finished": "Study finished",
 }));
 
 /** The version of a kind's body as this build makes it, where it is no longer the first. */

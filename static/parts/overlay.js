@@ -169,7 +169,7 @@ const KINDS = new Map(Object.entries({
     }
   },
   "gate.confirmed": (layer, { about, at, by }, body) => layer.update("run", about, (run) => ({
-    gates: { ...run.gates, [body.gate]: { by: layer.name(by), at, value: layer.value(body.value, "Cel") } },
+    gates: { ...run.gates, [body.gate]: { by: layer.name(by), at, value: layer.value(body.value, "Cel"), note: body.note ?? "" } },
   })),
   "heating.started": (layer, { about }, body) => layer.update("run", about, () => ({
     state: "heating", heating: { ...body, ended_at: null, complete: null, reason: "" },
@@ -194,6 +194,29 @@ const KINDS = new Map(Object.entries({
   })),
   "result.reviewed": (layer, { about, at, by }, body) => layer.update("result", about, () => ({
     review: { ...body, by: layer.name(by), at },
+  })),
+  "bottle.measured": (layer, { about, at, by }, body) => {
+    const said = { how: body.how, note: body.note, by: layer.name(by), at };
+    const found = Object.entries(body.species).map(([name, given]) => [name, { ...said, given }]);
+    layer.put("interferents", about, { ...layer.get("interferents", about), ...Object.fromEntries(found) }, { parent: about, at });
+  },
+  "study.planned": (layer, { about, at, by }, body) => layer.put("study", about, {
+    ...body, estimate_mg_l: layer.value(body.estimate, "mg/L"), level_mg_l: layer.value(body.level, "mg/L"), plan: null, rows: [],
+    state: "open", finished: null, limits: [], gaps: null, planned_by: layer.name(by), planned_at: at,
+  }, { parent: body.recipe, at }),
+  "study.result": (layer, { about, at, by }, body) => layer.update("study", about, (study) => {
+    const old = study.rows.find((row) => row.row === body.row);
+    const number_ = body.result && read(body.result.text).sign === "=";
+    const stood = old && { result: old.result, mg_l: old.mg_l, left_out: old.left_out, by: old.by, at: old.at };
+    const row = {
+      ...body, mg_l: number_ ? layer.value(body.result, "mg/L") : null, waits: body.run !== null, by: layer.name(by), at,
+      before: old ? [...old.before, stood] : [],
+    };
+    const key = (one) => [one.on, one.batch, one.tube, one.row].join("\u0001");
+    return { gaps: null, rows: [...study.rows.filter((one) => one !== old), row].sort((a, b) => (key(a) < key(b) ? -1 : 1)) };
+  }),
+  "study.finished": (layer, { about, at, by }, body) => layer.update("study", about, () => ({
+    finished: { ...body, by: layer.name(by), at },
   })),
   "entry.settled": (layer, { about }, body) => layer.update("held", about, () => ({
     state: body.decision === "admit" ? "admitted" : "set aside",

@@ -1,5 +1,6 @@
 // One result beside its limit: what it is, how it came about, the decision, the certificate.
 
+import { Beside, Budget, sharesOf } from "../parts/beside.js";
 import { html, useState } from "../parts/html.js";
 import { LongField, useSaving } from "../parts/fields.js";
 import { dayAndTime, dilution, percent, plain } from "../parts/format.js";
@@ -12,21 +13,11 @@ import { Tube } from "../parts/tube.js";
 import { one, programme, useView, whereIs } from "../parts/view.js";
 import { Number_, Verdict, verdictOf } from "./words.js";
 
-const NAMES = new Map([["line", "Calibration line"], ["repeatability", "Repeatability"], ["dilution", "Dilution"], ["standards", "Standards"], ["bias", "Bias"]]);
-
 function Verdicts({ result }) {
   return (result.verdicts ?? []).map((verdict) => html`<div key=${`${verdict.basis}${verdict.effective_from}`} class="card ${verdict.verdict === "above" ? "stop" : ""}">
     <p><strong>${verdict.why}</strong></p>
     ${verdict.limit !== null && html`<p class="soft small">In force since ${verdict.effective_from}; ${verdict.source}. ${verdict.probability_above !== null ? `For information: the true value lies above the limit with a probability of ${percent(verdict.probability_above)}.` : ""}</p>`}
     <p class="soft small">${verdict.rule} (${verdict.rule_source})</p></div>`);
-}
-
-function Budget({ result }) {
-  if (!result.components) return null;
-  const total = Object.values(result.components).reduce((sum, u) => sum + u * u, 0);
-  return html`<section class="card"><h2>Uncertainty</h2><table><thead><tr><th>From</th><th class="right">u, mg/L</th><th class="right">share</th></tr></thead><tbody>
-    ${Object.entries(result.components).map(([name, u]) => html`<tr key=${name}><td>${NAMES.get(name) ?? name}</td><td class="right">${plain(u, 1)}</td><td class="right">${percent(total ? (u * u) / total : 0)}</td></tr>`)}
-  </tbody></table></section>`;
 }
 
 function Tubes({ run, code }) {
@@ -111,12 +102,13 @@ export function ResultReview({ id }) {
         <div><${Number_} result=${result} big /></div>
         <div class="row"><${Verdict} result=${result} />${!result.checks_ok && html`<span class="tag wait"><span aria-hidden="true">◇</span>a check of the run did not hold</span>`}</div>
         <${Strip} predictive=${around(result)} bars=${bar(result)} limit=${verdict?.limit ?? null} />
+        <${Beside} result=${result} />
         <p class="soft">Dilution: ${dilution(result.dilution_factor)}; reporting level ${plain(result.reporting_level)} mg/L after dilution.</p></section>
       <${Verdicts} result=${result} />
       <${Decide} result=${result} />
       <${Certificate} result=${result} />
       ${run && html`<${Tubes} run=${run} code=${result.bottle} /><p><a href="/bench/run/${encodeURIComponent(result.run)}">The whole run: ${run.name}</a></p>`}
-      <${Budget} result=${result} />
+      ${sharesOf(result) && html`<section class="card"><h2>Where the uncertainty comes from</h2><${Budget} result=${result} /></section>`}
       <p><a href="/review/point/${encodeURIComponent(result.point)}">History of the point</a> · <a href="/review">All of Review</a></p>
     </div><//>`;
 }

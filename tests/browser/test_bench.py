@@ -239,7 +239,7 @@ def test_a_dilution_that_no_known_glassware_makes_is_not_planned(bench: Page) ->
 
 @pytest.mark.parametrize(
     "path",
-    ["", "/receive", "/plan", "/stores", "/stores/calibration"]
+    ["", "/receive", "/plan", "/measure", "/studies", "/studies/new", "/stores", "/stores/calibration"]
     + [f"/stores/{what}" for what in ("lot", "instrument", "container", "recipe")],
 )
 def test_first_aid_is_one_tap_away_on_every_screen_of_the_bench(bench: Page, path: str) -> None:

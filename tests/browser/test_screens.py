@@ -11,7 +11,7 @@ from playwright.sync_api import BrowserContext, Page
 from tests.browser import chromium, told
 from tests.browser.server import Server
 from tests.browser.watch import Axe
-from tests.tools.devices import CODES
+from tests.tools.devices import CODES, Device, beside, study
 
 RESULT = f"/review/result/run-1%3A{CODES[0]}"
 SCREENS = (
@@ -35,6 +35,11 @@ SCREENS = (
     "/bench/recipe/high",
     "/bench/plan",
     "/bench/run/run-1",
+    "/bench/measure",
+    f"/bench/measure/{CODES[0]}",
+    "/bench/studies",
+    "/bench/studies/new",
+    "/bench/study/study-1",
     "/review",
     "/review/point/outlet-b",
     "/review/point/outlet-b/limit",
@@ -55,7 +60,9 @@ SMALL_TARGETS = """() => [...document.querySelectorAll('button, a.button, input,
 
 
 def _signed_in(context: BrowserContext) -> Page:
-    told.tell_everything(context)
+    bench = Device(told.tell_everything(context))
+    texts = [*study(bench), beside(bench, CODES[0], chloride="6000", nitrite="12")]
+    assert {one["result"] for one in told.push(context.request, texts)} == {"stored"}
     page = context.new_page()
     page.goto("/field")
     page.get_by_text("Hollin Vale Creamery").first.wait_for()

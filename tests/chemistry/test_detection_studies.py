@@ -12,6 +12,7 @@ from app.chemistry.calibration import Standard, fit
 from app.chemistry.detection import calibration_limits, detection_limit, minimum_level
 from app.chemistry.detection_study import (
     StudyResult,
+    counting,
     data_from,
     duties,
     may_stand,
@@ -75,6 +76,26 @@ def test_what_is_missing_is_told_in_words() -> None:
     assert "blanks on at least three dates" in gaps
     full = [StudyResult(DAYS[i % 3], "ABC"[i % 3], kind) for kind in ("spike", "blank") for i in range(7)]
     assert study_gaps(full) == ()
+
+
+def test_several_instruments_and_lost_spikes_are_told() -> None:
+    full = [
+        StudyResult(DAYS[i % 3], "ABC"[i % 3], kind, "one", 1.0 + i)
+        for kind in ("spike", "blank")
+        for i in range(21)
+    ]
+    assert study_gaps(full, {"one": "Photometer 1"}) == ()
+    assert "spikes on Photometer 2: 0 of 2 dates" in study_gaps(full, {"one": "1", "two": "Photometer 2"})
+    lost = [*full, StudyResult(DAYS[0], "A", "spike", "one", -0.1)]
+    assert "1; every one" in study_gaps(lost)[0]
+    assert study_gaps(lost, initial=False) == (), "later one in twenty may fail"
+    assert study_gaps([*lost, StudyResult(DAYS[0], "A", "spike", "one", None)], initial=False)
+
+
+def test_only_results_of_the_last_two_years_count() -> None:
+    old = StudyResult(date(2029, 3, 2), "A", "spike")
+    young = StudyResult(date(2029, 3, 3), "A", "spike")
+    assert counting([old, young], date(2031, 3, 3)) == (young,)
 
 
 def test_a_limit_is_due_again_after_thirteen_months() -> None:

@@ -6,7 +6,12 @@ import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 
-from app.chemistry.interferences import chloride_bound, chloride_gate, corrected_beside
+from app.chemistry.interferences import (
+    chloride_bound,
+    chloride_gate,
+    chloride_qualifier,
+    corrected_beside,
+)
 from app.errors import InputError
 
 
@@ -27,6 +32,35 @@ def test_chloride_is_judged_after_dilution(chloride, factor, verdict, needed) ->
     assert (gate.basis, gate.verdict) == ("recorded", verdict)
     assert gate.after_dilution == chloride / factor
     assert gate.needed_factor == pytest.approx(needed)
+
+
+@pytest.mark.parametrize(
+    ("sign", "chloride", "verdict", "words"),
+    [
+        ("<", 500, "open", "At most 500"),
+        ("<", 1998, "flagged", "At most 1998"),
+        ("<", 3000, "unknown", "less than 3000"),
+        (">", 3000, "closed", "Over 3000"),
+        (">", 1500, "unknown", "more than 1500"),
+    ],
+)
+def test_a_strips_bound_opens_or_closes_only_from_its_own_side(sign, chloride, verdict, words) -> None:
+    gate = chloride_gate(1998, 1, chloride=chloride, sign=sign)
+    assert gate.verdict == verdict
+    assert words in gate.words
+
+
+def test_every_verdict_but_an_open_one_carries_a_letter() -> None:
+    letters = {
+        verdict: chloride_qualifier(chloride_gate(1998, chloride=chloride))
+        for verdict, chloride in (("open", 500), ("flagged", 1500), ("closed", 2500), ("unknown", None))
+    }
+    assert letters.pop("open") is None
+    assert {verdict: one.letter for verdict, one in letters.items()} == {
+        "flagged": "C",
+        "closed": "CX",
+        "unknown": "CU",
+    }
 
 
 def test_without_mercury_no_dilution_opens_the_gate() -> None:

@@ -159,9 +159,28 @@ def _running() -> Iterator[tuple[str, str, dict[str, Any]]]:
     yield "tube.excluded", "u1", {"position": 2, "cause": "cap leaked", "note": ""}
 
 
+def _measuring() -> Iterator[tuple[str, str, dict[str, Any]]]:
+    beside = {"bottle": CODE, "how": "strip", "note": "", "species": {"chloride": mg("< 500")}}
+    yield "bottle.measured", CODE, beside
+    yield "bottle.measured", CODE, beside | {"species": {"nitrite": mg("3,2")}, "how": "photometer"}
+    plan = {"name": "Study", "recipe": "r1", "instruments": ["i1"], "estimate": mg("4"), "note": ""}
+    days = ["2026-10-01", "2026-10-02", "2026-10-08"]
+    yield "study.planned", "y1", {**plan, "level": mg("0,01", "g/L"), "days": days}
+    row = {"tube": "spike", "on": days[1], "batch": "B", "instrument": "i1", "run": None, "position": None}
+    row |= {"left_out": "", "reason": ""}
+    yield "study.result", "y1", {**row, "row": "w2", "result": mg("92")}
+    yield "study.result", "y1", {**row, "row": "w1", "result": None, "tube": "blank", "on": days[0]}
+    yield "study.result", "y1", {**row, "row": "w2", "result": mg("9.2"), "reason": "point forgotten"}
+
+
+def mg(text: str, unit: str = "mg/L") -> dict[str, str]:
+    """Return a concentration as it was typed."""
+    return {"text": text, "unit": unit}
+
+
 def statements() -> list[tuple[str, str, dict[str, Any]]]:
     """Return (kind, about, body) of everything, in order."""
-    return [*_setting_up(), *_visiting(), *_sampling(), *_running()]
+    return [*_setting_up(), *_visiting(), *_sampling(), *_running(), *_measuring()]
 
 
 def texts(person: str) -> list[str]:

@@ -1,4 +1,4 @@
-"""The bench's own table of glassware is the server's, and no dilution goes without its uncertainty."""
+"""The tablet's one choice of glassware is the server's, and no dilution goes without its uncertainty."""
 
 from __future__ import annotations
 
@@ -13,6 +13,7 @@ from typing import Any
 import pytest
 
 from app.chemistry.glassware import FLASKS_ML, PIPETTES_ML, Step, chain_factor, chain_relative_u
+from app.forecast.glass import FLASKS, PIPETTES, chains_for, factors_of
 from app.journal.kinds.settings import DEFAULTS
 
 SCRIPT = Path(__file__).with_name("glassware.mjs")
@@ -25,11 +26,11 @@ PLANS: list[tuple[float, list[tuple[float, float]]]] = [
 ]
 
 
-def _told(factors: list[float]) -> dict[str, Any]:
+def _told(factors: list[float], shelf: list[tuple[float, bool]] | None = None) -> dict[str, Any]:
     node = shutil.which("node")
     if node is None:
         pytest.skip("node is absent: the client's own sums are not run")
-    given = json.dumps({"chains": CHAINS, "factors": factors, "plans": PLANS})
+    given = json.dumps({"chains": CHAINS, "factors": factors, "plans": PLANS, "shelf": shelf or []})
     run = subprocess.run(
         [node, "--no-warnings", str(SCRIPT), given], capture_output=True, text=True, check=True
     )
@@ -56,6 +57,17 @@ def test_ten_to_a_hundred_by_hand() -> None:
     by_hand = math.hypot(0.02 / 10, 0.08 / 100) / math.sqrt(6)
     at = CHAINS.index([(10.0, 100.0)])
     assert _told([])["chains"][at] == pytest.approx([10, by_hand], rel=1e-12)
+
+
+def test_the_shelf_makes_each_factor_by_the_servers_chains_in_the_servers_order() -> None:
+    shelf = [(factor, solids) for solids in (False, True) for factor in factors_of(PIPETTES, FLASKS, solids)]
+    assert len(shelf) > 60
+    for (factor, solids), made in zip(shelf, _told([], shelf)["shelf"], strict=True):
+        wanted = [
+            [[step.pipette_ml, step.flask_ml] for step in chain.steps]
+            for chain in chains_for(factor, solids=solids)
+        ]
+        assert made == wanted, (factor, solids)
 
 
 def test_every_dilution_that_a_programme_begins_with_can_be_made() -> None:

@@ -24,6 +24,7 @@ ONLY_THE_SERVER = {
     "calibration": {"fitted"},
     "sample": {"hold_until"},
     "meter": {"samples"},
+    "study": {"gaps", "plan"},
 }
 # What a flow and a check amount to is worked out beside them on the tablet, and stated by the server.
 WORKED_OUT = {
@@ -45,6 +46,8 @@ TYPES = (
     "sample",
     "bottle",
     "run",
+    "interferents",
+    "study",
 )
 
 

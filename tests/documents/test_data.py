@@ -53,6 +53,17 @@ def test_any_name_survives(name: str) -> None:
     assert certificate_from_json(certificate_json(data)).discharger.name == name
 
 
+def test_data_from_before_a_field_was_known_are_read() -> None:
+    plain = json.loads(certificate_json(EXAMPLE))
+    del plain["corrected"], plain["result"]["detection_limit"]
+    found = certificate_from_json(json.dumps(plain).encode())
+    assert (found.corrected, found.result.detection_limit) == (None, "")
+    del plain["point"]
+    with pytest.raises(InputError) as caught:
+        certificate_from_json(json.dumps(plain).encode())
+    assert caught.value.fields == {"point": ["is missing"]}
+
+
 def test_a_number_that_is_none_is_refused() -> None:
     assert EXAMPLE.calibration is not None
     broken = replace(EXAMPLE, calibration=replace(EXAMPLE.calibration, coefficients=(float("nan"), 1.0)))

@@ -5,7 +5,8 @@ from __future__ import annotations
 import pytest
 
 from app.chemistry.calibration import Standard, fit
-from app.chemistry.detection import calibration_limits, detection_limit, minimum_level, t_99
+from app.chemistry.detection import calibration_limits, detection_limit, minimum_level, t_99, workings
+from app.chemistry.detection_study import blank_alone, level_fits
 
 pytestmark = pytest.mark.published
 
@@ -55,6 +56,32 @@ def test_the_interval_of_a_limit_from_seven_spikes() -> None:
     found = detection_limit(SPIKES, [None] * 7)
     assert found.low / found.mdl_spikes == pytest.approx(0.64, abs=0.005)
     assert found.high / found.mdl_spikes == pytest.approx(2.20, abs=0.005)
+
+
+def test_the_workings_of_both_parts() -> None:
+    """Source: worked by hand from 40 CFR 136 App. B: t(0.99, 6) 3.143 twice, s 1.0263 and 0.8668."""
+    how = workings(SPIKES, [0.3, -1.1, 0.8, 1.5, -0.4, 0.9, 0.2])
+    assert (how.spikes_t, how.blanks_t) == pytest.approx((3.143, 3.143), abs=5e-4)
+    assert (how.spikes_sd, how.blanks_sd, how.blanks_mean) == pytest.approx(
+        (1.0263, 0.8668, 0.3143), abs=5e-5
+    )
+    assert (how.spikes_dof, how.blanks_dof, how.blanks_rule) == (6, 6, "mean")
+    some = workings(SPIKES, [None, 1.2, None, 0.4, None, None, None])
+    assert (some.blanks_rule, some.blanks_with_number, some.blanks_t) == ("highest", 2, None)
+
+
+@pytest.mark.parametrize(("level", "fits"), [(7.9, False), (8, True), (40, True), (40.1, False)])
+def test_a_spike_lies_at_two_to_ten_times_the_estimate(level: float, fits: bool) -> None:
+    """Source: 40 CFR 136 App. B, rev. 2, 2(a): for an estimate of 4 mg/L, 8 to 40 mg/L."""
+    assert level_fits(4.0, level) == fits
+
+
+def test_a_blank_is_read_against_the_others_of_its_run() -> None:
+    """Source: arithmetic: against the mean of all three it would be two thirds as far off."""
+    blanks = [0.011, 0.010, 0.015]
+    alone = blank_alone(blanks, 2)
+    assert alone == pytest.approx(0.0045)
+    assert blanks[2] - sum(blanks) / 3 == pytest.approx(alone * 2 / 3)
 
 
 @pytest.mark.parametrize(

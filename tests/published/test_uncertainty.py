@@ -5,12 +5,24 @@ from __future__ import annotations
 import math
 from decimal import Decimal
 
+import numpy as np
 import pytest
 from scipy import stats
 
+from app.chemistry.calculate import calculate
 from app.chemistry.curve import t_quantile
+from app.chemistry.repeatability import Repeatability
 from app.chemistry.rounding import bound_text, plain, reported_cod, reported_u, significant
-from app.chemistry.uncertainty import NORMAL_95, Component, bias_from_controls, combine, coverage_factor
+from app.chemistry.uncertainty import (
+    NORMAL_95,
+    Component,
+    bias_from_controls,
+    combine,
+    coverage_factor,
+    whole_dof,
+)
+from app.journal.kinds.settings import DEFAULTS
+from tests.chemistry.bench_run import STANDARDS, run, tubes
 
 pytestmark = pytest.mark.published
 
@@ -51,6 +63,29 @@ def test_gum_h_1_end_gauge() -> None:
     assert budget.coverage_factor == pytest.approx(2.12, abs=0.005)
 
 
+def test_the_gum_example_truncates_to_the_safe_side() -> None:
+    """Source: JCGM 100:2008, G.4.1, prints 19.0; exactly 18.9987, so 18; only rounding noise becomes 19."""
+    assert [whole_dof(dof) for dof in (18.9987, 18.99996, 19.0, 0.4, 16.7)] == [18, 19, 19, 1, 16]
+
+
+def test_eurachem_a1_standard() -> None:
+    """Source: Eurachem/CITAC CG 4, example A1: 100.28 mg, 99.99 %, 100 mL: 1002.7 mg/L, u 0.9 mg/L.
+
+    Standard uncertainties there: 0.05 mg, 0.000058, 0.07 mL (the flask's is checked with the glassware).
+    """
+    cod = 100.28 * 0.9999 / 0.100
+    parts = (
+        Component("mass", cod * 0.05 / 100.28),
+        Component("purity", cod * 0.000058 / 0.9999),
+        Component("volume", cod * 0.07 / 100),
+    )
+    budget = combine(parts)
+    assert cod == pytest.approx(1002.7, abs=0.05)
+    assert budget.u == pytest.approx(0.86, abs=0.005)
+    assert plain(significant(budget.u, 1)) == "0.9"
+    assert max(zip(budget.shares(), parts, strict=True))[1].name == "volume", "as its chart shows"
+
+
 def test_nordtest_top_down() -> None:
     """Source: Nordtest TR 537 arithmetic: 3.5, 2.5 and 0.8 % give 4.375 %, expanded (k 2) 8.75 %."""
     budget = combine((Component("within lab", 3.5), Component("bias", 2.5), Component("reference", 0.8)))
@@ -83,6 +118,42 @@ def test_quadrature_equals_the_uncertainties_library() -> None:
     cod = uncertainties.ufloat(527.9, 3.1) * uncertainties.ufloat(10, 0.04) * uncertainties.ufloat(1, 0.02)
     parts = (Component("tube", 31.0), Component("dilution", 5279 * 0.004), Component("bias", 5279 * 0.02))
     assert combine(parts).u == pytest.approx(cod.s, rel=1e-12)
+
+
+def test_a_runs_budget_is_the_propagation_of_its_whole_equation() -> None:
+    """Source: the uncertainties library on COD = F x f_standard x f_bias x ((A - b0)/b1 + tube).
+
+    b0 and b1 are correlated as numpy's least squares of the standards says; A is what was read.
+    """
+    uncertainties = pytest.importorskip("uncertainties")
+    found = calculate(run(tubes("S", 431.0, 437.0, 428.0, dilution_factor=10.0, dilution_relative_u=0.004)))
+    (sample,) = found.samples
+    x = np.array([s.cod for s in STANDARDS])
+    y = np.array([s.absorbance[0] for s in STANDARDS])
+    (b1, b0), covariance = np.polyfit(x, y, 1, cov=True)
+    slope, intercept = uncertainties.correlated_values((b1, b0), covariance)
+    scatter = math.hypot(4.0, 0.025 * sample.in_tube) / math.sqrt(3)
+    in_tube = (sample.absorbance - intercept) / slope + uncertainties.ufloat(0, scatter)
+    factors = [uncertainties.ufloat(1, u) for u in (0.004, 0.005, 0.02)]
+    cod = 10.0 * in_tube * math.prod(factors[1:], start=factors[0])
+    assert sample.cod == pytest.approx(cod.n, rel=1e-9)
+    assert sample.budget.u == pytest.approx(cod.s, rel=1e-6)
+    shares = dict(zip((p.name for p in sample.budget.components), sample.budget.shares(), strict=True))
+    by_bias = (cod.error_components()[factors[2]] / cod.s) ** 2
+    assert shares["bias"] == pytest.approx(by_bias, rel=1e-6)
+
+
+def test_the_starting_repeatability_lies_where_one_laboratory_of_the_method_lies() -> None:
+    """Source: EPA 410.4 rev. 2.0, 13: S = 0.050 T + 4.391 between laboratories; one lab 50 to 75 % of it.
+
+    Its mean line X = 0.966 T - 1.773 gives 94.83 at 100 mg/L. Our start (4 mg/L and 2.5 %) is common
+    practice; over the method's levels it is not far below what one laboratory showed, nor above.
+    """
+    scatter = Repeatability(DEFAULTS["repeatability"]["a"], DEFAULTS["repeatability"]["k"], None)
+    assert pytest.approx(94.83, abs=0.01) == 0.966 * 100 - 1.773
+    assert pytest.approx(9.39, abs=0.01) == 0.050 * 100 + 4.391
+    shares = [scatter.sigma(t) / (0.050 * t + 4.391) for t in (18, 50, 100, 229)]
+    assert all(0.4 <= share <= 0.8 for share in shares)
 
 
 @pytest.mark.parametrize("dof", [1, 2, 3, 5, 11, 30, 200, 999_999])

@@ -20,18 +20,20 @@ CODE = CODES[0]
 RESULT = f"r:{CODE}"
 
 
-def values(desk: Desk, code: str = CODE, **species: str) -> str:
+def values(desk: Desk, **species: str) -> str:
     """Return the entry of values measured beside the COD, in mg/L."""
-    given = {name: measured(text, "mg/L") for name, text in species.items()}
-    body = {"bottle": code, "species": given, "how": "test strip", "note": ""}
-    return desk.device.make("bottle.measured", code, body)
+    return devices.beside(desk.device, CODE, **species)
 
 
 def digest(desk: Desk, factor: float = 5, **sample: Any) -> None:
     """Tell a bottle's way to its result."""
     d = desk.device
     texts = [devices.sample(d, "s", CODE, **sample), devices.planned(d, "r", CODE, factor)]
-    assert set(desk.held(*texts, *devices.heated(d, "r"), *devices.read(d, "r"))) == {None}
+    gate = '"chloride_within_limit"'
+    heated = [
+        text.replace(gate, f'{gate}, "note": "to see what it gives"') for text in devices.heated(d, "r")
+    ]
+    assert set(desk.held(*texts, *heated, *devices.read(d, "r"))) == {None}
 
 
 def letters(desk: Desk) -> list[str]:
@@ -151,3 +153,15 @@ def test_words_beside_results_are_replayed_at_a_rebuild(ready: Desk) -> None:
     assert ready.held(values(ready, nitrite="5")) == [None]
     done = rebuild.rebuild(ready.store)
     assert done.before == done.after
+
+
+def test_the_chloride_gate_is_not_confirmed_against_what_was_measured_without_a_reason(ready: Desk) -> None:
+    d = ready.device
+    ready.tell(devices.sample(d, "s", CODE), values(ready, chloride="2400"), devices.planned(d, "r", CODE, 1))
+    gate = {"gate": "chloride_within_limit"}
+    reason = gate | {"note": "twice the mercury(II) sulfate by the method's own note"}
+    said = [d.make("gate.confirmed", "r", body) for body in (gate, gate | {"note": " "}, reason)]
+    assert ready.held(*said) == ["chloride_over_limit", "chloride_over_limit", None]
+    assert ready.get("run", "r")["gates"]["chloride_within_limit"]["note"] == reason["note"]
+    ready.tell(devices.planned(d, "r2", CODE, 2))
+    assert ready.held(d.make("gate.confirmed", "r2", gate)) == [None], "diluted under the limit"

@@ -16,7 +16,6 @@ from app.safety.gates import (
     REMINDERS,
     Confirmation,
     RunFacts,
-    chloride_objection,
     missing,
     ready_to_read,
     run_gates,
@@ -108,28 +107,6 @@ def test_a_container_must_be_named():
     """A bare yes is not a container."""
     said = {**ALL, "waste_container": Confirmation("waste_container")}
     assert [m.why for m in missing(run_gates(FACTS), said, FACTS)] == ["no container was chosen"]
-
-
-@pytest.mark.parametrize(
-    ("chloride", "factor", "stops"),
-    [
-        (1998, 1, False),
-        (1999, 1, True),
-        (19980, 10, False),
-        (19990, 10, True),
-        (None, 1, True),
-        (0, 1, False),
-    ],
-)
-def test_chloride_counts_after_dilution(chloride, factor, stops):
-    """At the limit is allowed; unknown is not."""
-    assert bool(chloride_objection(chloride, factor, 1998)) == stops
-
-
-def test_without_mercury_any_chloride_stops():
-    """A recipe without mercury sulfate binds none."""
-    assert chloride_objection(1, 1, 0)
-    assert not chloride_objection(0, 1, 0)
 
 
 def test_cooling_is_elapsed_time():

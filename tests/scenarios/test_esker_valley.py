@@ -59,6 +59,21 @@ def test_there_is_something_to_see_in_every_state(example: Store) -> None:
     assert "qualified" in {one["decision"] for one in received}
 
 
+def test_a_study_is_finished_with_its_due_date_and_a_sample_has_chloride_and_nitrite(example: Store) -> None:
+    study = get(example.read(), "study", "study-1")
+    assert study is not None
+    (limit,) = study["limits"]
+    assert study["gaps"] == []
+    assert 2.5 < limit["mg_l"] < 3.5
+    assert datetime.fromisoformat(limit["again_by"]) > datetime(2032, 1, 1)
+    assert any(row["run"] and row["mg_l"] is not None for row in study["rows"]), "a blank of a run"
+    results = {body["bottle"]: body for _, body in find(example.read(), "result") if body["source"] == "run"}
+    told = [one for one in results.values() if one["corrected"]]
+    assert [one["name"] for one in told[0]["corrected"]["corrections"]] == ["nitrite"]
+    assert told[0]["detection_limit"]["study"] == "study-1"
+    assert {letter["letter"] for one in results.values() for letter in one["qualifiers"]} == {"C"}
+
+
 def test_the_run_in_progress_ends_in_the_future(example: Store) -> None:
     run = get(example.read(), "run", "run-13")
     assert run is not None
@@ -106,7 +121,7 @@ def test_the_history_has_values_and_bounds() -> None:
 
 
 def test_the_files_are_what_their_maker_makes(tmp_path: Path) -> None:
-    for name in ("make.py", "programme.json"):
+    for name in ("make.py", "laboratory.py", "programme.json"):
         (tmp_path / name).write_bytes((HERE / name).read_bytes())
     subprocess.run([sys.executable, str(tmp_path / "make.py")], check=True)
     for name in ("history.csv", "story.json"):

@@ -249,6 +249,30 @@ def closed(bench: Device, run: str, decisions: list[Body] | None = None) -> list
     ]
 
 
+def study(bench: Device, id_: str = "study-1") -> list[str]:
+    """Return the entries of a finished detection limit study of the days before :data:`NOON`."""
+    days = ["2031-05-20", "2031-05-21", "2031-05-27"]
+    plan: Body = {"name": "High range, first study", "recipe": "high", "instruments": ["photometer"]}
+    plan |= {"estimate": measured("4", "mg/L"), "level": measured("10", "mg/L"), "days": days, "note": ""}
+    texts = [bench.make("study.planned", id_, plan)]
+    for i, typed in enumerate(("9.2", "10.8", "8.7", "11,1", "9.9", "10.4", "8.5")):
+        for tube, result in (
+            ("spike", measured(typed, "mg/L")),
+            ("blank", None if i else measured("1", "mg/L")),
+        ):
+            row: Body = {"row": f"{tube}-{i}", "tube": tube, "on": days[i % 3], "batch": f"Run {i % 3 + 1}"}
+            row |= {"instrument": "photometer", "result": result, "run": None, "position": None}
+            texts.append(bench.make("study.result", id_, row | {"left_out": "", "reason": ""}))
+    return [*texts, bench.make("study.finished", id_, {"keep": False, "note": ""})]
+
+
+def beside(bench: Device, code: str, **species: str) -> str:
+    """Return the entry of what was measured beside the COD of a bottle, in mg/L."""
+    given = {name: measured(text, "mg/L") for name, text in species.items()}
+    body = {"bottle": code, "species": given, "how": "strip; photometer", "note": ""}
+    return bench.make("bottle.measured", code, body)
+
+
 def whole_path(person: str, code: str = CODES[0], run: str = "run-1") -> list[str]:
     """Return every entry from the programme's points to the accepted result."""
     device = Device(person)

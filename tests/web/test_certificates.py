@@ -102,3 +102,28 @@ def test_anybody_can_verify_a_number(browser: Browser, device: Device) -> None:
     assert unknown.status_code == 404
     assert "<b>" not in unknown.text
     assert_canonical(browser.get(f"/api/certificates/{made['number']}.pdf"), 401)
+
+
+def test_the_paper_names_qualifiers_and_the_corrected_value_beside_the_reported_one(
+    browser: Browser, device: Device, tmp_path: Path
+) -> None:
+    """The reported number is the uncorrected one; chloride is a letter, never a subtraction."""
+    told = devices.whole_path(device.by)
+    device = Device(device.by)
+    assert set(browser.results(told[:-1])) == {"stored"}
+    browser.push([devices.beside(device, CODES[0], chloride="6000", nitrite="12"), told[-1]])
+    result = browser.records()["result", RESULT]
+    number = issue(browser).get_json()["number"]
+    pdf = browser.get(f"/api/certificates/{number}.pdf").get_data()
+    words = text_of(pdf, tmp_path)
+    assert f"{result['shown']} ± {result['shown_u']} mg/L C" in words, "the letter stands at the number"
+    assert "chloride over 1000 mg/L in the tube, masked by mercury" in words
+    corrected = result["corrected"]["shown"]
+    assert f"nitrite 12 mg N/L taken out: {corrected} mg/L" in words
+    assert "The reported result is the uncorrected one" in words
+    assert float(corrected) == pytest.approx(result["cod"] - 12 * 1.1422, abs=5.01), "to three figures"
+    inside = embedded_data(pdf)
+    assert inside["result"]["reported"] == result["shown"]
+    assert [one["name"] for one in inside["corrected"]["corrections"]] == ["nitrite"]
+    assert "Bias carries" in words
+    assert "coverage factor 1.96 from the normal distribution" in words

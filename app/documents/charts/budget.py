@@ -10,6 +10,13 @@ from app.errors import InputError
 STEP, TOP, SIZE = 30, 4, 14
 
 
+def budget_words(components: tuple[Component, ...]) -> str:
+    """Return which component carries the variance, and each one's share, as a text for the picture."""
+    most = max(components, key=lambda one: one.share)
+    parts = "; ".join(f"{c.name} {c.u} mg/L, {c.share_percent} % of the variance" for c in components)
+    return f"Most of it is {most.name}. {parts}."
+
+
 def budget_svg(components: tuple[Component, ...], palette: str = "light", width: float = 560) -> str:
     """Draw the share of the variance that each component carries.
 
@@ -35,8 +42,8 @@ def budget_svg(components: tuple[Component, ...], palette: str = "light", width:
     p = palette_named(palette)
     if not components or any(not 0 <= c.share <= 1 for c in components):
         raise InputError("This budget cannot be drawn.", {"components": ["need shares between 0 and 1"]})
-    said = "; ".join(f"{c.name} {c.u} mg/L, {c.share_percent} % of the variance" for c in components)
-    svg = Svg(width, TOP + STEP * len(components), "Uncertainty budget", f"{said}.", p.font, p.ground)
+    height, said = TOP + STEP * len(components), budget_words(components)
+    svg = Svg(width, height, "Uncertainty budget", said, p.font, p.ground)
     words = [f"{c.u} mg/L, {c.share_percent} %" for c in components]
     left = max(width_of(c.name, SIZE) for c in components) + 10
     room = width - left - max(width_of(w, SIZE) for w in words) - 12

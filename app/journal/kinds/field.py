@@ -115,6 +115,7 @@ class SampleTaken(Body):
     meter = Id(required=True, allow_none=True)
     field = fields.Nested(Readings, required=True)
     activity = fields.String(required=True, allow_none=True, validate=validate.OneOf(ACTIVITIES))
+    solids = fields.Boolean(truthy={True}, falsy={False})
     appearance = Text(required=True, blank=True)
     preservation = fields.Nested(Preservation, required=True)
     plan = fields.Nested(Plan, required=True, allow_none=True)

@@ -11,6 +11,7 @@ from collections.abc import Callable
 from typing import Any
 
 from app.journal import measured
+from app.records import interferences
 from app.records.change import Body, Change, Refused
 from app.records.handlers import handles
 from app.records.handlers.field import bottle, put_bottle
@@ -141,6 +142,19 @@ def _on_run(step: Callable[[Change, Body], None]) -> Callable[[Change], None]:
     return handler
 
 
+def _chloride_gate(change: Change, run: Body) -> None:
+    """Refuse a chloride gate that what was measured contradicts, unless a person says why."""
+    if change.body["gate"] != "chloride_within_limit" or change.body.get("note", "").strip():
+        return
+    over = interferences.over_limit(change, run)
+    if over:
+        raise Refused(
+            "chloride_over_limit",
+            f"{' '.join(over)} Dilute it more in another run, or say why it is digested all the same.",
+            {"note": over},
+        )
+
+
 @handles("gate.confirmed")
 @_on_run
 def gate_confirmed(change: Change, run: Body) -> None:
@@ -148,10 +162,12 @@ def gate_confirmed(change: Change, run: Body) -> None:
     known = {gate.id for gate in safety.GATES}
     if change.body["gate"] not in known:
         raise Refused("unknown_gate", "There is no such gate.", {"gate": ["Not a gate of a run."]})
+    _chloride_gate(change, run)
     run["gates"][change.body["gate"]] = {
         "by": change.name_of(change.entry.by),
         "at": change.entry.at,
         "value": measured.value(change.body.get("value"), "Cel"),
+        "note": change.body.get("note", ""),
     }
 
 
