@@ -205,7 +205,7 @@ def calculate(run: Run, next_dilution: NextDilutionRule = next_dilution_by_rule)
     wrong = run_problems(run)
     if wrong:
         raise InputError("This run cannot be calculated.", wrong)
-    curve = fit(run.standards, run.model, prefix="calibration.")
+    curve = fit(run.standards, run.model, run.weights, prefix="calibration.")
     warnings = (*_range_warnings(run, curve), *_slope_warnings(run, curve))
     blank = blank_check(run.blanks)
     bench = _Bench(run, curve, blank.mean if blank else 0.0, usable_top(run.recipe, run.working_range))

@@ -22,6 +22,7 @@ ISO 8466-1; Eurachem/CITAC Guide CG 4 (QUAM), E.4 and A5.
 from __future__ import annotations
 
 import math
+import sys
 from collections.abc import Sequence
 from dataclasses import dataclass, replace
 from typing import Any
@@ -41,6 +42,7 @@ FEWEST_LEVELS = 5
 SMALLEST = 1e-6
 #: A sum of squares under this share of the total is rounding, not scatter.
 ROUNDING = 1e-24
+EPSILON = sys.float_info.epsilon
 TOO_FAR_APART = "The numbers of these standards lie too far apart to make a curve."
 PARAMETERS: dict[str, int] = {"linear": 2, "quadratic": 3}
 
@@ -282,8 +284,10 @@ def _raw(sums: _Sums, parameters: int, residual_sd: float) -> tuple[tuple[float,
 
 def _refuse_hopeless(sums: _Sums, residual_sd: float, dof: int, parameters: int) -> None:
     numbers = (*sums.factors, *sums.basis.sums[:parameters], sums.basis.alpha, sums.basis.beta, residual_sd)
-    if not all(map(math.isfinite, numbers)) or min(sums.basis.sums[:parameters]) <= 0 or sums.total <= 0:
-        if sums.total == 0:
+    # The mean of equal readings is off by a rounding: a scatter of that size is none.
+    flat = sums.total <= sums.basis.sums[0] * (4.0 * EPSILON * sums.factors[0]) ** 2
+    if not all(map(math.isfinite, numbers)) or min(sums.basis.sums[:parameters]) <= 0 or flat:
+        if flat:
             raise InputError(
                 "All standards have the same absorbance: the slope is zero and nothing can be read."
             )

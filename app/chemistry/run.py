@@ -12,7 +12,7 @@ from dataclasses import dataclass
 from typing import Literal
 
 from app.chemistry.calibration import SMALLEST, Standard, standard_problems
-from app.chemistry.curve import Model
+from app.chemistry.curve import Model, Weights
 from app.chemistry.problems import Problems
 from app.chemistry.recipe import Recipe
 from app.chemistry.repeatability import Repeatability
@@ -154,7 +154,7 @@ class Run:
     standards : tuple of Standard
         Of the calibration in force, blank-corrected.
     model : {"linear", "quadratic"}
-        Of its curve; the weights are equal.
+        Of its curve.
     standards_relative_u : float
         Relative standard uncertainty of the standards' COD.
     working_range : tuple of float
@@ -167,6 +167,8 @@ class Run:
         The checks; duplicates are pairs of sample names.
     policy : Policy
         What is asked.
+    weights : {"equal", "inverse", "inverse_square"}
+        Of the standards.
     """
 
     recipe: Recipe
@@ -180,6 +182,7 @@ class Run:
     duplicates: tuple[tuple[str, str], ...]
     spikes: tuple[Spike, ...]
     policy: Policy
+    weights: Weights = "equal"
 
 
 def run_problems(run: Run) -> Fields:

@@ -1,8 +1,12 @@
-"""What a calibration is valid for, and the refusal of any other reading.
+"""What a calibration is valid for, the refusal of any other reading, and when it must be looked at again.
 
 A slope belongs to one recipe, wavelength, instrument, kind of tube and reagent
 lot, until a date. A reading taken under other conditions is not turned into a
 COD by it: the curve of another lot is not nearly right, it is unknown.
+
+A standard from another source is read after each calibration and then every
+quarter, within 10 % (EPA 410.4 revision 2.0, 9.2.3); the linear range is
+verified every six months (9.2.2).
 """
 
 from __future__ import annotations
@@ -10,7 +14,11 @@ from __future__ import annotations
 from dataclasses import dataclass, fields
 from datetime import date
 
+from app.chemistry.detection_study import months_later
 from app.errors import InputError
+
+SECOND_SOURCE_PERCENT = 10.0
+AGAIN_MONTHS = {"second source": 3, "linear range": 6}
 
 
 @dataclass(frozen=True)
@@ -107,3 +115,41 @@ def require_valid(validity: Validity, read: Conditions, on: date) -> None:
     found = refusals(validity, read, on)
     if found:
         raise InputError("This calibration does not belong to these tubes: choose or make another.", found)
+
+
+def recovery_percent(found: float, expected: float) -> float:
+    """Return what was found of a standard, in percent.
+
+    Parameters
+    ----------
+    found, expected : float
+        mg O2/L, expected above zero.
+
+    Returns
+    -------
+    float
+    """
+    return 100.0 * found / expected
+
+
+def holds(recovery: float, limit_percent: float = SECOND_SOURCE_PERCENT) -> bool:
+    """Tell whether a recovery lies within 100 % and its limit, the limit itself included."""
+    return abs(recovery - 100.0) <= limit_percent + 1e-9
+
+
+def due_again(what: str, on: date) -> date:
+    """Return when a check of a curve is due again.
+
+    Parameters
+    ----------
+    what : {"second source", "linear range"}
+        The check.
+    on : date
+        Its day, or that of the calibration.
+
+    Returns
+    -------
+    date
+        A quarter or half a year later.
+    """
+    return months_later(on, AGAIN_MONTHS[what])

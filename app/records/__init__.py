@@ -6,3 +6,7 @@ into records, ``reactions`` let the server answer entries with entries of its
 own, ``ledger`` is the one write path, ``rebuild`` derives everything again,
 ``queries`` is what screens and documents ask for.
 """
+
+#: Raised whenever a handler puts other records than before: a store of another
+#: shape is derived again when it is opened, and each device reads all again.
+SHAPE = 2

@@ -87,13 +87,20 @@ class Change:
     """One entry's effect on the records."""
 
     def __init__(
-        self, connection: sqlite3.Connection, entry: Entry, body: Body, position: int, received_at: str
+        self,
+        connection: sqlite3.Connection,
+        entry: Entry,
+        body: Body,
+        position: int,
+        received_at: str,
+        replayed: bool = False,
     ) -> None:
         self.connection = connection
         self.entry = entry
         self.body = body
         self.position = position
         self.received_at = received_at
+        self.replayed = replayed
 
     def get(self, type_: str, id_: str) -> Body | None:
         """Return a record's body, or None."""

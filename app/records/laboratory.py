@@ -10,14 +10,14 @@ from __future__ import annotations
 import json
 from collections.abc import Iterable
 from dataclasses import asdict
-from datetime import datetime
+from datetime import date, datetime
 from typing import Any
 from zoneinfo import ZoneInfo
 
 from app import __version__, verbs
-from app.chemistry import rounding
+from app.chemistry import rounding, validity
 from app.chemistry.calibration import Standard, fit
-from app.chemistry.diagnostics import findings
+from app.chemistry.diagnostics import findings, residuals
 from app.chemistry.quality import Event, bracket
 from app.chemistry.recipe import Recipe
 from app.errors import WeirbookError
@@ -60,21 +60,57 @@ def derive_recipe(writing: Stating, id_: str) -> None:
 def fit_curve(writing: Stating, id_: str) -> None:
     """State the curve of a calibration; one that cannot be fitted keeps the reason."""
     calibration = writing.get("calibration", id_) or {}
-    given = {"standards": standards(calibration), "model": calibration["model"], "weights": "equal"}
+    given = {
+        "standards": standards(calibration),
+        "model": calibration["model"],
+        "weights": calibration.get("weights", "equal"),
+    }
     recipe = writing.get("recipe", calibration["recipe"]) or {}
     try:
-        fitted = verbs.find("fit")(given) | {"findings": _findings(given, recipe)}
+        fitted = verbs.find("fit")(given) | _looked_at(given, recipe)
     except WeirbookError as error:
         fitted = error.body()
     body = {"software": SOFTWARE, "inputs_digest": inputs_digest(given), "fitted": fitted}
     writing.state("calibration.fitted", id_, body)
 
 
-def _findings(given: Body, recipe: Body) -> list[Body]:
-    """Return what is the matter with a curve, in words, the most serious first."""
+def _looked_at(given: Body, recipe: Body) -> Body:
+    """Return what is the matter with a curve, in words, and each reading's residual and leverage."""
     levels = [Standard(one["cod"], tuple(one["absorbance"])) for one in given["standards"]]
-    curve = fit(levels, given["model"])
-    return [asdict(one) for one in findings(curve, levels, Recipe(**recipe_input(recipe)))]
+    curve = fit(levels, given["model"], given["weights"])
+    found = findings(curve, levels, Recipe(**recipe_input(recipe)))
+    return {
+        "findings": [asdict(one) for one in found],
+        "residuals": [asdict(one) for one in residuals(curve, levels)],
+    }
+
+
+def judge_check(writing: Stating, about: str) -> None:
+    """State what a check of a curve amounts to; ``about`` names the curve and the check."""
+    id_, check_id = about.split(" ")
+    curve = writing.get("calibration", id_) or {}
+    check = next(one for one in curve["checks"] if one["id"] == check_id)
+    settings = writing.find("programme")[0][1]["settings"]
+    limit = settings.get("second_source_percent", validity.SECOND_SOURCE_PERCENT)
+    cod = _read_back(curve, [measured.read(text).value for text in check["absorbance"]])
+    share = None if cod is None else validity.recovery_percent(cod, measured.read(check["expected"]).value)
+    judged = {
+        "check": check_id,
+        "cod": cod,
+        "recovery_percent": share,
+        "limit_percent": limit,
+        "ok": share is not None and validity.holds(share, limit),
+        "due_on": validity.due_again(check["what"], date.fromisoformat(check["at"][:10])).isoformat(),
+    }
+    writing.state("curve.judged", id_, {"software": SOFTWARE} | judged)
+
+
+def _read_back(curve: Body, absorbance: list[float]) -> float | None:
+    given = {"standards": standards(curve), "model": curve["model"], "weights": curve["weights"]}
+    try:
+        return float(verbs.find("fit")(given | {"read": [absorbance]})["read"][0]["cod"])
+    except WeirbookError:  # no curve, or beyond its turning point
+        return None
 
 
 def standards(calibration: Body) -> list[Body]:
@@ -141,6 +177,7 @@ def run_input(run: Body, recipe: Body, calibration: Body, settings: Body) -> Bod
         "calibration": {
             "standards": standards(calibration),
             "model": calibration["model"],
+            "weights": calibration.get("weights", "equal"),
             "standards_relative_u": settings["standards_relative_u"],
         },
         "working_range": [recipe["working_low"], recipe["working_high"]],
@@ -174,14 +211,14 @@ def _tubes_found(run: Body, given: Body, answer: Body, capacity: float) -> list[
     """Return each read tube's COD in the tube and the share of the oxidant that it used."""
     blank = answer["checks"]["blank"]
     zero = blank["mean"] if blank else 0.0
-    curve = {"standards": given["calibration"]["standards"], "model": given["calibration"]["model"]}
+    curve = {name: given["calibration"][name] for name in ("standards", "model", "weights")}
     found = []
     for tube in run["tubes"]:
         if tube["absorbance"] is None:
             continue
         try:
             corrected = (_absorbance(tube) or 0.0) - zero
-            cod = verbs.find("fit")(curve | {"weights": "equal", "read": [[corrected]]})["read"][0]["cod"]
+            cod = verbs.find("fit")(curve | {"read": [[corrected]]})["read"][0]["cod"]
         except WeirbookError:  # beyond the curve's turning point there is no number
             cod = None
         share = None if cod is None else max(0.0, cod / capacity)

@@ -243,8 +243,13 @@ class Writing:
         return None
 
 
-def apply(connection: sqlite3.Connection, entry: Entry, position: int, received_at: str) -> Change:
+def apply(
+    connection: sqlite3.Connection, entry: Entry, position: int, received_at: str, replayed: bool = False
+) -> Change:
     """Bring one entry into force; the same for new entries and at a rebuild.
+
+    What was in force stays in force: a replayed entry meets no rule that was
+    made after it came.
 
     Raises
     ------
@@ -252,7 +257,7 @@ def apply(connection: sqlite3.Connection, entry: Entry, position: int, received_
         If it cannot come into force.
     """
     body = kinds.newest(entry.kind, entry.version, entry.body)
-    change = Change(connection, entry, body, position, received_at)
+    change = Change(connection, entry, body, position, received_at, replayed)
     if entry.kind == "entry.settled":
         return _settle(change)
     handlers.table()[entry.kind](change)
@@ -278,7 +283,7 @@ def _settle(change: Change) -> Change:
         kinds.check(entry.kind, kinds.newest(entry.kind, entry.version, entry.body))
     except InputError as error:
         raise Refused("cannot_admit", error.message, error.fields) from None
-    return apply(change.connection, entry, change.position, change.received_at)
+    return apply(change.connection, entry, change.position, change.received_at, change.replayed)
 
 
 def put_held(

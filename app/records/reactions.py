@@ -19,16 +19,19 @@ from app.records.change import Change, Stating
 
 Due = tuple[int, str]
 
-DERIVE_RECIPE, FIT_CURVE, CALCULATE_RUN, TAKE_TUBE, COMPUTE_LIMIT, QUALIFY, LEARN, LOOK_AHEAD = range(8)
-AT_ONCE = (DERIVE_RECIPE, FIT_CURVE, CALCULATE_RUN, TAKE_TUBE, COMPUTE_LIMIT, QUALIFY)
+DERIVE_RECIPE, FIT_CURVE, JUDGE_CHECK, CALCULATE_RUN, TAKE_TUBE, COMPUTE_LIMIT, QUALIFY, LEARN, LOOK_AHEAD = (
+    range(9)
+)
+AT_ONCE = (DERIVE_RECIPE, FIT_CURVE, JUDGE_CHECK, CALCULATE_RUN, TAKE_TUBE, COMPUTE_LIMIT, QUALIFY)
 ALL = (*AT_ONCE, LEARN, LOOK_AHEAD)
-NAMES = ("derive", "fit", "calculate", "take", "detection limit", "qualify", "learn", "look ahead")
+NAMES = ("derive", "fit", "check", "calculate", "take", "detection limit", "qualify", "learn", "look ahead")
 
 log = logging.getLogger("weirbook")
 
 _REACTIONS: dict[int, Callable[[Stating, str], None]] = {
     DERIVE_RECIPE: laboratory.derive_recipe,
     FIT_CURVE: laboratory.fit_curve,
+    JUDGE_CHECK: laboratory.judge_check,
     CALCULATE_RUN: laboratory.calculate_run,
     TAKE_TUBE: studies.take_tube,
     COMPUTE_LIMIT: studies.compute_limit,
@@ -45,6 +48,8 @@ def due(change: Change) -> Iterator[Due]:
         yield DERIVE_RECIPE, about
     elif kind == "calibration.made":
         yield FIT_CURVE, about
+    elif kind == "curve.checked":
+        yield JUDGE_CHECK, f"{about} {change.entry.id}"
     elif kind == "readings.finished" or (kind == "tube.excluded" and _calculated(change)):
         yield CALCULATE_RUN, about
     elif kind == "study.result" and change.body["run"] is not None:

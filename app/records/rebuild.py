@@ -10,6 +10,7 @@ from app.journal import chain
 from app.journal.append import unreadable
 from app.journal.entry import reopen
 from app.journal.store import Store, StoreError
+from app.records import SHAPE
 from app.records.change import Refused
 from app.records.ledger import apply, put_held
 
@@ -36,7 +37,7 @@ def digest_of_records(connection: sqlite3.Connection) -> str:
 def replay(connection: sqlite3.Connection, row: chain.Row) -> None:
     """Bring one row of the journal to bear on the records as it did when it came."""
     if row.held is None:
-        apply(connection, reopen(row.raw), row.position, row.received_at)
+        apply(connection, reopen(row.raw), row.position, row.received_at, replayed=True)
         return
     readable = row.held["code"] != "unreadable"
     entry = reopen(row.raw) if readable else unreadable(row.raw, row.device, "", row.carrier)
@@ -66,4 +67,19 @@ def rebuild(store: Store) -> Rebuilt:
                 ) from refusal
             count += 1
         after = digest_of_records(connection)
+        connection.execute("INSERT OR REPLACE INTO meta VALUES ('shape', ?)", (str(SHAPE),))
     return Rebuilt(count, before, after)
+
+
+def bring_up_to_date(store: Store) -> bool:
+    """Derive the records again if another version of the handlers put them; tell whether it was needed."""
+    row = store.read().execute("SELECT value FROM meta WHERE key = 'shape'").fetchone()
+    if row and row[0] == str(SHAPE):
+        return False
+    rebuild(store)
+    return True
+
+
+def state_name(store: Store) -> str:
+    """Return the name of the records' state: devices that knew another one read all again."""
+    return f"{store.epoch}.{SHAPE}"

@@ -124,6 +124,7 @@ def _stores(bench: str, told: dict[str, Any]) -> Iterator[Statement]:
         }
         body["valid_until"] = f"@day{one['valid_in_days']}"
         yield -24.0 * one["made_days_ago"], bench, "calibration.made", one["id"], body
+        yield -24.0 * one["made_days_ago"] + 1, bench, "curve.checked", one["id"], one["check"]
 
 
 def _history(path: Path, person: str) -> Iterator[Statement]:

@@ -79,6 +79,7 @@ def _run(data: Data, wrong: Fields) -> Run:
         data.get("duplicates", ()),
         tuple(_spike(s) for s in data.get("spikes", ())),
         _policy(data.get("policy") or {}),
+        calibration.get("weights", "equal"),
     )
 
 

@@ -214,6 +214,7 @@ class CalibrationInput(Strict):
 
     standards = many(StandardInput, required=True)
     model = Text(load_default="linear", validate=MODEL)
+    weights = Text(load_default="equal", validate=WEIGHTS)
     standards_relative_u = Number(required=True)
 
 

@@ -11,6 +11,7 @@ from app import __version__
 from app.journal.store import Store
 from app.journal.units import STATIC
 from app.records.ledger import Ledger
+from app.records.rebuild import bring_up_to_date
 from app.web import certificates, papers, programme, security, sessions, shell, store_papers, sync
 from app.web.context import Context
 from app.web.limits import Attempts
@@ -50,6 +51,7 @@ def create_app(
     )
     app.json.sort_keys = False  # type: ignore[attr-defined]
     store = Store(folder)
+    bring_up_to_date(store)
     passwords = PasswordHasher.from_parameters(profiles.CHEAPEST) if fast_passwords else PasswordHasher()
     app.extensions["weirbook"] = Context(
         store, Ledger(store), passwords, shell.build_of(), base_url, Attempts()

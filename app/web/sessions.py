@@ -26,6 +26,7 @@ from app.journal.entry import digest
 from app.journal.fields import Text
 from app.journal.kinds import Body
 from app.records.change import find, get
+from app.records.rebuild import state_name
 from app.web.context import PROTOCOL, context
 from app.web.security import NotPermitted, SignInNeeded
 
@@ -164,7 +165,7 @@ def state() -> dict[str, Any]:
         "weirbook": __version__,
         "protocol": PROTOCOL,
         "build": context().build,
-        "epoch": context().store.epoch,
+        "epoch": state_name(context().store),
         "started": bool(programmes),
         "example": bool(programmes and programmes[0][1]["example"]),
         "server_time": datetime.now(UTC).isoformat(timespec="milliseconds"),

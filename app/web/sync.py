@@ -20,6 +20,7 @@ from app.journal.entry import digest
 from app.journal.fields import Id
 from app.journal.kinds import Body
 from app.records.pull import page
+from app.records.rebuild import state_name
 from app.web.context import PROTOCOL, context
 from app.web.sessions import need, person
 
@@ -113,7 +114,7 @@ class PulledSchema(Body):
 def _common() -> dict[str, Any]:
     return {
         "weirbook": __version__,
-        "epoch": context().store.epoch,
+        "epoch": state_name(context().store),
         "server_time": datetime.now(UTC).isoformat(timespec="milliseconds"),
     }
 
@@ -149,7 +150,7 @@ def push(given: dict[str, Any]) -> dict[str, Any]:
 @blueprint.response(200, PulledSchema)
 def pull(given: dict[str, Any]) -> dict[str, Any]:
     """Give the records changed after a position."""
-    if given["epoch"] != context().store.epoch:
+    if given["epoch"] != state_name(context().store):
         raise Reset(
             "The server's records begin anew: this device reads them all again. Nothing unsent is lost."
         )

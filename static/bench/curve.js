@@ -22,11 +22,23 @@ function scaleOf(values, from, to, pad = 0.08) {
   return (value) => from + ((value - low + room) / (high - low + 2 * room)) * (to - from);
 }
 
+/** Standards without a curve: what a refused fit looks like. */
+function Points({ points, top }) {
+  const x = scaleOf([0, top], LEFT, RIGHT, 0.04);
+  const y = scaleOf(points.map((p) => p.a), BOTTOM, TOP);
+  const words = `Absorbance against COD for ${points.length} readings up to ${plain(top)} mg/L; no curve goes through them.`;
+  return html`<svg class="chart" viewBox="0 0 ${W} 236" role="img" aria-label=${words}><line x1=${LEFT} x2=${RIGHT} y1=${BOTTOM} y2=${BOTTOM} stroke="var(--ink)" />
+    ${points.map((p, i) => html`<circle key=${i} cx=${x(p.cod)} cy=${y(p.a)} r="4.5" fill="var(--card)" stroke="var(--ink)" stroke-width="2" />`)}
+    ${[...new Set([points[0], ...points.slice(-1)].map((p) => p.a))].map((a) => html`<text key=${a} x=${LEFT - 6} y=${y(a) + 4} text-anchor="end" font-size="12">${a.toFixed(2)}</text>`)}
+    ${[0, top].map((cod) => html`<text key=${cod} x=${x(cod)} y=${BOTTOM + 18} text-anchor="middle" font-size="12">${plain(cod)}</text>`)}<text x=${LEFT} y=${TOP + 2} font-size="12">AU</text><text x=${RIGHT} y=${BOTTOM + 34} text-anchor="end" font-size="12">COD of the standard, mg/L</text></svg>`;
+}
+
 /** The chart; its words say what it shows. */
 export function CurveChart({ curve }) {
-  const { coefficients } = curve.fitted;
+  const coefficients = curve.fitted?.coefficients;
   const points = pointsOf(curve);
   const top = Math.max(...points.map((p) => p.cod));
+  if (!coefficients) return html`<${Points} points=${points} top=${top} />`;
   const line = Array.from({ length: 41 }, (_, i) => (top * i) / 40).map((cod) => ({ cod, a: curveAt(coefficients, cod) }));
   const x = scaleOf([0, top], LEFT, RIGHT, 0.04);
   const y = scaleOf([...points, ...line].map((p) => p.a), BOTTOM, TOP);

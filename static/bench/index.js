@@ -8,6 +8,7 @@ import { Receive } from "./receive.js";
 import { RecipePage } from "./recipes.js";
 import { Run } from "./run.js";
 import { AddCalibration } from "./calibration.js";
+import { CurvePage } from "./curve_page.js";
 import { AddThing, Stores } from "./stores.js";
 import { PlanStudy, Studies } from "./studies.js";
 import { Study } from "./study.js";
@@ -23,6 +24,7 @@ export function bench([what, id]) {
   if (what === "studies") return id === "new" ? html`<${PlanStudy} />` : html`<${Studies} />`;
   if (what === "study") return html`<${Study} key=${id} id=${id} />`;
   if (what === "run") return html`<${Run} key=${id} id=${id} />`;
+  if (what === "curve" && id) return html`<${CurvePage} key=${id} id=${id} />`;
   if (what === "recipe" && id) return html`<${RecipePage} key=${id} id=${id} />`;
   if (what === "stores" && id === "calibration") return html`<${AddCalibration} />`;
   if (what === "stores" && id) return html`<${AddThing} key=${id} what=${id} />`;

@@ -9,6 +9,7 @@ import { read } from "../parts/measured.js";
 import { all, one, programme, useView } from "../parts/view.js";
 import { useWords } from "../parts/words.js";
 import { stepWords } from "../parts/glassware.js";
+import { curveDoubt } from "./curve_page.js";
 import { dilutionOf } from "./dilutions.js";
 import { waitingBottles } from "./home.js";
 import { ChlorideLine, gateOf } from "./measure.js";
@@ -18,7 +19,8 @@ const BLANKS = 3;
 const BRACKET = 10; // verification after at most ten analyses and at the end: EPA 410.4 rev 2.0, 9.3.4
 const POSITIONS = 25;
 
-const usable = (curve) => !curve.fitted?.error && !curve.fitted?.findings?.some((one_) => one_.severity === "stop");
+const confirmed = (curve) => !programme()?.settings?.second_source_required || curve.checks?.some((check) => check.what === "second source" && check.judged?.ok);
+const usable = (curve) => confirmed(curve) && !curve.fitted?.error && !curve.fitted?.findings?.some((one_) => one_.severity === "stop");
 
 /** The curves that a run may be read with: of the recipe, and not past their date. */
 export function curvesFor(recipe, today) {
@@ -133,7 +135,7 @@ function PlanForm({ v, set, forget }) {
       <section class="card stack"><h2>With</h2>
         <${TextField} label="Name of the run" value=${v.name} onInput=${(name) => set("name", name)} placeholder=${`Run of ${day(new Date(), programme()?.zone)}`} />
         <${Select} label="Recipe" value=${recipe.id} options=${stores.recipes.map((row) => [row.id, row.name])} onChoose=${(id) => set("recipe", id)} />
-        <${Select} label="Calibration" value=${curve?.id ?? ""} options=${[["", "choose"], ...stores.curves.map((row) => [row.id, `${one("lot", row.lot)?.name}, ${one("instrument", row.instrument)?.name}, until ${row.valid_until}`])]} onChoose=${(id) => set("calibration", id)} hint="it fixes the reagent lot and the photometer" />
+        <${Select} label="Calibration" value=${curve?.id ?? ""} options=${[["", "choose"], ...stores.curves.map((row) => [row.id, `${one("lot", row.lot)?.name}, ${one("instrument", row.instrument)?.name}, until ${row.valid_until}${curveDoubt(row) ? `; ${curveDoubt(row)}` : ""}`])]} onChoose=${(id) => set("calibration", id)} hint="it fixes the reagent lot and the photometer" />
         <${Select} label="Block" value=${stores.block} options=${options(stores.blocks)} onChoose=${(id) => set("block", id)} />
         <${Select} label="Waste container" value=${stores.container} options=${options(stores.containers)} onChoose=${(id) => set("container", id)} /></section>
       <section class="card stack"><h2>The rack</h2>

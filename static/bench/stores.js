@@ -8,17 +8,8 @@ import { newId, state } from "../parts/journal.js";
 import { read } from "../parts/measured.js";
 import { all, one, programme, useView } from "../parts/view.js";
 import { useWords } from "../parts/words.js";
-import { CurveChart, Findings } from "./curve.js";
+import { CurveRow } from "./curve_page.js";
 import { AddRecipe, RecipeRow } from "./recipes.js";
-
-function Curve({ curve }) {
-  const f = curve.fitted;
-  const bad = f?.error;
-  return html`<section class="card ${bad ? "stop" : ""}"><div class="row spread"><h3>${one("recipe", curve.recipe)?.name ?? "Curve"}</h3>${curve.local && html`<${Where} about=${curve.id} />`}</div>
-    <p>${one("lot", curve.lot)?.name}, ${one("instrument", curve.instrument)?.name}, valid until ${curve.valid_until}.</p>
-    ${bad ? html`<p class="above">▲ ${f.error}</p>` : f ? html`<dl class="facts"><dt>Slope</dt><dd>${(f.coefficients[1] * 1000).toPrecision(4)} mAU per mg/L</dd><dt>Residual scatter</dt><dd>${(f.residual_sd * 1000).toFixed(2)} mAU</dd>
-      <dt>Relative standard error</dt><dd>${f.relative_standard_error_percent === null ? "–" : `${f.relative_standard_error_percent.toFixed(2)} %`}</dd><dt>Standards</dt><dd>${f.n} readings</dd></dl><${CurveChart} curve=${curve} /><${Findings} curve=${curve} />` : html`<p class="soft">Fitted when the server is reached.</p>`}</section>`;
-}
 
 function Rows({ title, rows, words, what }) {
   return html`<h2>${title}</h2>${rows.length ? html`<ul class="plain list">${rows.map((row) => html`<li class="item" key=${row.id}><strong>${row.name}</strong><div class="soft">${words(row)}</div>${what === "container" && !row.local && html`<a href="/api/papers/container/${encodeURIComponent(row.id)}.pdf" target="_blank">Waste label to print</a>`}${what === "lot" && !row.local && html`<a href="/api/papers/lot/${encodeURIComponent(row.id)}.pdf" target="_blank">Reagent labels to print</a>`}</li>`)}</ul>` : html`<${Empty} title="None yet">Add the first one.<//>`}
@@ -39,7 +30,7 @@ export function Stores() {
     <a class="button" href="/bench/stores/recipe">Adopt a recipe</a>
     <${Rows} title="Reagent lots" what="lot" rows=${useView(() => all("lot"))} words=${lotWords} />
     <${Rows} title="Instruments" what="instrument" rows=${useView(() => all("instrument"))} words=${(row) => `${row.what}${row.positions ? `, ${row.positions} positions` : ""}`} />
-    <h2>Curves</h2>${curves.map((curve) => html`<${Curve} key=${curve.id} curve=${curve} />`)}<a class="button" href="/bench/stores/calibration">Enter a calibration</a>
+    <h2>Curves</h2>${curves.length ? html`<ul class="plain list">${curves.map((curve) => html`<${CurveRow} key=${curve.id} curve=${curve} />`)}</ul>` : html`<${Empty} title="No curve yet">A run needs one: standards of its recipe, lot and photometer.<//>`}<a class="button" href="/bench/stores/calibration">Enter a calibration</a>
     <${Rows} title="Waste containers" what="container" rows=${useView(() => all("container"))} words=${filled} />
     <p><a href="/bench">Back to what waits</a> · <a href="/emergency">Emergency and first aid</a></p></div><//>`;
 }

@@ -116,8 +116,12 @@ const KINDS = new Map(Object.entries({
     acid_reagent_ml: 0, sulfuric_acid_g: 0, mass_g: 0, tubes: 0, runs: [], opened_at: at,
   }),
   "calibration.made": (layer, { about, at, by }, body) => layer.put("calibration", about, {
-    ...body, wavelength_nm: number(body.wavelength_nm), made_at: at, made_by: layer.name(by), fitted: null,
+    weights: "equal", ...body, wavelength_nm: number(body.wavelength_nm), made_at: at, made_by: layer.name(by), fitted: null,
+    tube: layer.get("recipe", body.recipe)?.tube ?? "", checks: [],
   }, { parent: body.recipe, at }),
+  "curve.checked": (layer, { id, about, at, by }, body) => layer.update("calibration", about, (curve) => ({
+    checks: [...curve.checks, { ...body, id, at, by: layer.name(by), judged: null }],
+  })),
   "sample.taken": (layer, { about, at, by }, body) => {
     const until = new Date(new Date(body.collected_at).getTime() + HOLD_DAYS * 86400000).toISOString();
     const stated = { ...body, by, by_name: layer.name(by), recorded_at: at, hold_until: until };

@@ -77,11 +77,10 @@ def calibrate(page: Page) -> None:
     page.get_by_label("Holds until").fill("2099-01-01")
     for level, (cod, readings) in enumerate(STANDARDS, start=1):
         page.get_by_label(f"COD of level {level}").fill(cod)
-        page.get_by_label(f"First absorbance of level {level}").fill(readings[0])
-        page.get_by_label(f"Second absorbance of level {level}").fill(readings[1])
+        page.get_by_label(f"Absorbances of level {level}").fill(" ".join(readings))
     page.get_by_role("button", name="Save on this tablet").click()
-    page.wait_for_url("**/stores")
-    expect(page.get_by_text("mAU per mg/L")).to_be_visible(timeout=PATIENT_MS)
+    page.wait_for_url("**/curve/*")
+    expect(page.get_by_text("Relative standard error")).to_be_visible(timeout=PATIENT_MS)
     expect(page.get_by_role("img", name="Absorbance against COD")).to_be_visible()
 
 

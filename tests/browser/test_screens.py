@@ -33,6 +33,8 @@ SCREENS = (
     "/bench/stores",
     "/bench/stores/recipe",
     "/bench/recipe/high",
+    "/bench/curve/curve",
+    "/bench/stores/calibration",
     "/bench/plan",
     "/bench/run/run-1",
     "/bench/measure",

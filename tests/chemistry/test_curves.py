@@ -148,6 +148,13 @@ def test_a_flat_curve_is_refused_with_the_reason() -> None:
     assert "slope is zero" in refusal([Standard(float(x), (0.3,)) for x in range(6)]).message
 
 
+@given(st.floats(-3, 3), st.integers(5, 12), st.integers(1, 3))
+def test_equal_readings_never_make_a_curve(value: float, levels: int, readings: int) -> None:
+    """The mean of equal readings is off by a rounding, which is no slope."""
+    flat = [Standard(50.0 * x, (value,) * readings) for x in range(levels)]
+    assert "slope is zero" in refusal(flat).message
+
+
 def test_a_slope_lost_in_scatter_is_refused() -> None:
     values = (0.1, -0.3, 0.25, -0.2, 0.15, -0.1)
     assert "Fieller" in refusal([Standard(float(x), (v,)) for x, v in enumerate(values)]).message

@@ -73,6 +73,8 @@ def _setting_up() -> Iterator[tuple[str, str, dict[str, Any]]]:
     made = {"recipe": "r1", "lot": "l1", "instrument": "i1", "wavelength_nm": "600", "model": "linear"}
     standards = [{"cod": cod, "absorbance": [read]} for cod, read in STANDARDS.items()]
     yield "calibration.made", "k1", {**made, "valid_until": "2027-01-01", "standards": standards}
+    check = {"what": "second source", "source": "ampoule K-3", "expected": "500", "note": ""}
+    yield "curve.checked", "k1", {**check, "absorbance": ["0,19"]}
 
 
 def _visiting() -> Iterator[tuple[str, str, dict[str, Any]]]:

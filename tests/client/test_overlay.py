@@ -30,6 +30,7 @@ ONLY_THE_SERVER = {
 WORKED_OUT = {
     "visit": ("flows", {"status", "l_s", "rating", "words", "error_percent", "volume_l", "meter_percent"}),
     "meter": ("checks", {"ok", "words"}),
+    "calibration": ("checks", {"judged"}),
 }
 TYPES = (
     "round",

@@ -86,6 +86,7 @@ class CalibrationMade(Body):
     instrument = Id(required=True)
     wavelength_nm = Number(low=300, high=900, required=True)
     model = fields.String(required=True, validate=validate.OneOf(["linear", "quadratic"]))
+    weights = fields.String(validate=validate.OneOf(["equal", "inverse", "inverse_square"]))
     valid_until = Day(required=True)
     standards = fields.List(fields.Nested(Standard), required=True, validate=validate.Length(min=5, max=50))
 
@@ -97,6 +98,30 @@ class CalibrationFitted(Body):
     software = Text(required=True)
     inputs_digest = fields.String(required=True)
     fitted = fields.Dict(required=True)
+
+
+@kind("curve.checked", ANALYST)
+class CurveChecked(Body):
+    """A standard of another source, or the linear range, was read against a curve."""
+
+    what = fields.String(required=True, validate=validate.OneOf(["second source", "linear range"]))
+    source = Text(required=True)
+    expected = Number(low=0.001, required=True)
+    absorbance = fields.List(Number(low=-2, high=5), required=True, validate=validate.Length(min=1, max=20))
+    note = Text(required=True, blank=True, longest=500)
+
+
+@kind("curve.judged", SERVER)
+class CurveJudged(Body):
+    """The server judged a check of a curve."""
+
+    software = Text(required=True)
+    check = Id(required=True)
+    cod = fields.Float(required=True, allow_none=True)
+    recovery_percent = fields.Float(required=True, allow_none=True)
+    limit_percent = fields.Float(required=True)
+    ok = fields.Boolean(required=True)
+    due_on = Day(required=True)
 
 
 @kind("bottle.received", ANALYST)

@@ -38,6 +38,8 @@ class Settings(Body):
     bias_dof = fields.Float(allow_none=True, validate=validate.Range(min=1))
     standards_relative_u = _share()
     verification_percent = _percent()
+    second_source_percent = _percent()
+    second_source_required = fields.Boolean()
     duplicate_rpd_percent = _percent()
     spike_percent = fields.List(_percent(), validate=validate.Length(equal=2))
     dilutions = fields.List(
@@ -54,6 +56,8 @@ DEFAULTS: dict[str, Any] = {
     "bias_dof": None,
     "standards_relative_u": 0.005,  # potassium hydrogen phthalate, balance and flask: practice
     "verification_percent": 10.0,  # EPA 410.4 rev 2.0, 9.3.4
+    "second_source_percent": 10.0,  # EPA 410.4 rev 2.0, 9.2.3
+    "second_source_required": False,  # a curve without one is offered with a warning
     "duplicate_rpd_percent": 20.0,  # common practice
     "spike_percent": [90.0, 110.0],  # EPA 410.4 rev 2.0, 9.4.2
     "dilutions": [1.0, 2.0, 4.0, 5.0, 10.0, 20.0, 25.0, 50.0, 100.0],

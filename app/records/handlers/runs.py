@@ -14,6 +14,7 @@ from app.journal import measured
 from app.records import interferences
 from app.records.change import Body, Change, Refused
 from app.records.handlers import handles
+from app.records.handlers.curves import wrong_curve
 from app.records.handlers.field import bottle, put_bottle
 from app.safety import gates as safety
 
@@ -57,22 +58,6 @@ def _tube(run: Body, position: int) -> Body:
     raise Refused("unknown_tube", f"There is no tube in position {position}.", {"position": ["Empty."]})
 
 
-def _wrong_curve(change: Change, body: Body) -> list[str]:
-    """Return why the readings of a run would refuse its curve; a curve holds for one lot until a day."""
-    calibration = change.need("calibration", body["calibration"])
-    found = [
-        f"It was made with another {name}: a reading refuses it."
-        for name in ("recipe", "lot", "instrument")
-        if calibration[name] != body[name]
-    ]
-    fitted = calibration["fitted"] or {}
-    found += [fitted["error"]] if "error" in fitted else []
-    found += [one["words"] for one in fitted.get("findings", []) if one["severity"] == "stop"]
-    if calibration["valid_until"] < change.entry.at[:10]:
-        found.append(f"It was valid until {calibration['valid_until']}: make a new one.")
-    return found
-
-
 def _wrong_tubes(tubes: list[Body]) -> dict[str, list[str]]:
     """Return what keeps each tube out of the rack."""
     wrong: dict[str, list[str]] = {}
@@ -90,7 +75,7 @@ def _check_plan(change: Change, body: Body) -> None:
     for name, type_ in (("recipe", "recipe"), ("block", "instrument"), ("container", "container")):
         change.need(type_, body[name])
     wrong = _wrong_tubes(body["tubes"])
-    if curve := _wrong_curve(change, body):
+    if curve := wrong_curve(change, body):
         wrong["calibration"] = curve
     if change.need("lot", body["lot"])["recipe"] != body["recipe"]:
         wrong["lot"] = ["It belongs to another recipe."]
@@ -110,7 +95,8 @@ def run_planned(change: Change) -> None:
     body = change.body
     if change.get("run", change.entry.about):
         raise Refused("already_stated", "This run was planned before.")
-    _check_plan(change, body)
+    if not change.replayed:
+        _check_plan(change, body)
     tubes = [_new_tube(tube) for tube in sorted(body["tubes"], key=lambda one: one["position"])]
     run = body | {
         "state": "planned",
