@@ -73,8 +73,9 @@ def _measure(page: Page) -> None:
     page.goto(f"/bench/measure/{CODE}")
     page.get_by_role("button", name="Save the values").click()
     expect(page.get_by_role("alert")).to_contain_text("Type at least one value")
-    page.get_by_label("Chloride", exact=True).fill("6e3")
-    page.get_by_label("Nitrite, as N").fill("12")
+    page.get_by_label("Chloride", exact=True).fill("6,0")
+    page.get_by_label("Unit of Chloride").select_option("g/L")
+    page.get_by_label("Nitrite, as N", exact=True).fill("12")
     page.get_by_label("How it was measured").fill("strip; photometer")
     page.get_by_role("button", name="Save the values").click()
     page.wait_for_url("**/bench")
@@ -134,9 +135,12 @@ def test_a_study_to_its_limit_and_a_result_with_what_stands_beside_it(page: Page
 def test_chloride_over_what_the_mercury_masks_stops_the_plan_and_asks_at_the_gate(page: Page) -> None:
     person = page.context.request.get("/api/state").json()["person"]["id"]
     bench = devices.Device(person)
-    strip = {"chloride_mg_l": devices.measured("9000", "mg/L")}
-    texts = [devices.sample(bench, "s", CODE, field=strip), devices.received(bench, CODE)]
-    told.push(page.context.request, texts)
+    page.goto("/field/point/outlet-b/take")
+    page.get_by_label("Bottle", exact=True).fill(CODE)
+    page.get_by_label("Chloride strip").fill("9000")
+    page.get_by_role("button", name="Save the sample").click()
+    page.wait_for_url("**/field/samples")
+    told.push(page.context.request, [devices.received(bench, CODE)])
     page.goto("/bench/plan")
     page.get_by_label(re.compile(CODE)).first.check(timeout=PATIENT_MS)
     page.get_by_label(f"Dilution of {CODE}").select_option("2")
