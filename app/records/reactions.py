@@ -14,15 +14,27 @@ from collections.abc import Callable, Iterator
 from typing import Any
 
 from app.errors import WeirbookError
-from app.records import interferences, laboratory, outlooks, studies
+from app.records import interferences, laboratory, outlooks, studies, trust
 from app.records.change import Change, Stating
 
 Due = tuple[int, str]
 
-DERIVE_RECIPE, FIT_CURVE, CALCULATE_RUN, TAKE_TUBE, COMPUTE_LIMIT, QUALIFY, LEARN, LOOK_AHEAD = range(8)
+DERIVE_RECIPE, FIT_CURVE, CALCULATE_RUN, TAKE_TUBE, COMPUTE_LIMIT, QUALIFY, LEARN, LOOK_AHEAD, JUDGE = range(
+    9
+)
 AT_ONCE = (DERIVE_RECIPE, FIT_CURVE, CALCULATE_RUN, TAKE_TUBE, COMPUTE_LIMIT, QUALIFY)
-ALL = (*AT_ONCE, LEARN, LOOK_AHEAD)
-NAMES = ("derive", "fit", "calculate", "take", "detection limit", "qualify", "learn", "look ahead")
+ALL = (*AT_ONCE, LEARN, LOOK_AHEAD, JUDGE)
+NAMES = (
+    "derive",
+    "fit",
+    "calculate",
+    "take",
+    "detection limit",
+    "qualify",
+    "learn",
+    "look ahead",
+    "back-test",
+)
 
 log = logging.getLogger("weirbook")
 
@@ -35,6 +47,7 @@ _REACTIONS: dict[int, Callable[[Stating, str], None]] = {
     QUALIFY: interferences.qualify,
     LEARN: outlooks.learn_again,
     LOOK_AHEAD: outlooks.look_ahead,
+    JUDGE: trust.judge_again,
 }
 
 
@@ -43,6 +56,7 @@ def due(change: Change) -> Iterator[Due]:
     kind, about = change.entry.kind, change.entry.about
     if kind == "recipe.adopted":
         yield DERIVE_RECIPE, about
+        yield JUDGE, "programme"
     elif kind == "calibration.made":
         yield FIT_CURVE, about
     elif kind == "readings.finished" or (kind == "tube.excluded" and _calculated(change)):
@@ -55,6 +69,7 @@ def due(change: Change) -> Iterator[Due]:
         yield from ((QUALIFY, id_) for id_ in interferences.of_bottle(change, change.body["bottle"]))
     elif kind in ("point.registered", "result.recorded", "result.reviewed", "run.calculated"):
         yield LEARN, "programme"
+        yield JUDGE, "programme"
         yield from ((LOOK_AHEAD, point) for point in _points(change))
         yield from ((QUALIFY, one["id"]) for one in change.body.get("results", []))
 
