@@ -88,6 +88,8 @@ def study_gaps(
             words.append(f"{kind}s in at least three batches")
         if len({r.on for r in mine}) < FEWEST_DATES:
             words.append(f"{kind}s on at least three dates")
+        if kind == "spike" and len(mine) >= fewest and len({r.mg_l for r in mine}) == 1:
+            words.append("spikes that differ: all gave the same number, so read one digit more")
         words += _instruments_left(mine, kind, instruments or {})
     return tuple(words)
 

@@ -163,7 +163,8 @@ def _same(points: Sequence[Sequence[Observation]], windows: Sequence[_Window], f
 
 def _oracle(windows: Sequence[_Window], one: Observation) -> str:
     verdicts = [w.verdict(one) for w in windows]
-    return "right" if "right" in verdicts else max(set(verdicts), key=verdicts.count)
+    found = [word for word in ("right", "unknown") if word in verdicts]
+    return found[0] if found else max(verdicts, key=verdicts.count)
 
 
 def backtest(
@@ -198,34 +199,80 @@ def backtest(
     InputError
         If there is no range or no dilution, or ``first`` is under 1.
     """
+    return backtest_each(programme, points, ranges, dilutions, first)[0]
+
+
+def backtest_each(
+    programme: Programme,
+    points: Sequence[Point],
+    ranges: Sequence[Range],
+    dilutions: Sequence[float],
+    first: int = MEDIAN_OF,
+) -> tuple[Trust, list[Trust]]:
+    """Return what :func:`backtest` finds for all points together, and for each of them.
+
+    The parameters are those of :func:`backtest`; for a point, "always the same
+    dilution" is the one that would have been best there.
+
+    Returns
+    -------
+    tuple of Trust and list of Trust
+
+    Raises
+    ------
+    InputError
+        If there is no range or no dilution, or ``first`` is under 1.
+    """
     if not ranges or not dilutions or first < 1:
         words = "a back-test needs a range, dilutions and one result to start from"
         raise InputError("The back-test cannot be made.", {"dilutions": [words]})
     windows = _windows(ranges, dilutions)
-    histories = [in_order(one.history) for one in points]
-    ahead = [one_step_ahead(programme, p.sector, h) for p, h in zip(points, histories, strict=True)]
-    rules: list[list[str]] = [[], [], [], []]
-    values: list[tuple[Predictive, float]] = []
-    for history, expected in zip(histories, ahead, strict=True):
-        for t in range(first, len(history)):
-            one = history[t]
-            median = float(np.median([past.cod for past in history[max(0, t - MEDIAN_OF) : t]]))
-            rules[0].append(_best(windows, expected[t]).verdict(one))
-            rules[1].append(_around(windows, history[t - 1].cod).verdict(one))
-            rules[2].append(_around(windows, median).verdict(one))
-            rules[3].append(_oracle(windows, one))
-            if one.state == "ok":
-                values.append((expected[t], one.cod))
-    at = np.array([expected.cdf(cod) for expected, cod in values])
-    density = [math.log(max(expected.density(math.log(cod)), 1e-300)) for expected, cod in values]
+    judged = []
+    for point in points:
+        history = in_order(point.history)
+        judged.append(_judged(history, one_step_ahead(programme, point.sector, history), windows, first))
+    return _trust(judged, windows, first), [_trust([one], windows, first) for one in judged]
+
+
+@dataclass(frozen=True)
+class _Judged:
+    """Verdicts by rule (forecast, last value, median of five, oracle), and what the values showed."""
+
+    history: Sequence[Observation]
+    verdicts: list[list[str]]
+    at: list[float]
+    density: list[float]
+
+
+def _judged(
+    history: Sequence[Observation], ahead: Sequence[Predictive], windows: Sequence[_Window], first: int
+) -> _Judged:
+    found = _Judged(history, [[], [], [], []], [], [])
+    for t in range(first, len(history)):
+        one, expected = history[t], ahead[t]
+        median = float(np.median([past.cod for past in history[max(0, t - MEDIAN_OF) : t]]))
+        rules = (_best(windows, expected), _around(windows, history[t - 1].cod), _around(windows, median))
+        verdicts = [*(window.verdict(one) for window in rules), _oracle(windows, one)]
+        for kept, verdict in zip(found.verdicts, verdicts, strict=True):
+            kept.append(verdict)
+        if one.state == "ok":
+            found.at.append(expected.cdf(one.cod))
+            found.density.append(math.log(max(expected.density(math.log(one.cod)), 1e-300)))
+    return found
+
+
+def _trust(judged: Sequence[_Judged], windows: Sequence[_Window], first: int) -> Trust:
+    rules = [[verdict for one in judged for verdict in one.verdicts[rule]] for rule in range(4)]
+    at = np.array([value for one in judged for value in one.at])
+    density = [value for one in judged for value in one.density]
     return Trust(
         _shares(rules[0]),
         _shares(rules[1]),
         _shares(rules[2]),
-        _shares(_same(histories, windows, first)),
+        _shares(_same([one.history for one in judged], windows, first)),
         _shares(rules[3]),
-        len(values),
-        float(np.mean(np.abs(at - 0.5) <= 0.25)) if values else None,
-        float(np.mean(np.abs(at - 0.5) <= 0.45)) if values else None,
-        float(np.mean(density)) if values else None,
+        len(at),
+        float(np.mean(np.abs(at - 0.5) <= 0.25)) if len(at) else None,
+        float(np.mean(np.abs(at - 0.5) <= 0.45)) if len(at) else None,
+        float(np.mean(density)) if density else None,
     )

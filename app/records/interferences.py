@@ -21,7 +21,7 @@ from app.chemistry.interferences import (
 from app.journal import measured
 from app.records.change import Body, Change, Stating
 from app.records.laboratory import SOFTWARE, inputs_digest
-from app.records.studies import in_force
+from app.records.studies import day_of, in_force
 
 
 def of_bottle(change: Change, code: str) -> Iterator[str]:
@@ -57,6 +57,7 @@ def _input(writing: Stating, result: Body) -> Body:
         "conductivity_us_cm": measured.value(field.get("conductivity_us_cm"), "uS/cm"),
         "species": {name: species[name]["given"] for name in CORRECTABLE if name in species},
         "gate_note": ((run.get("gates") or {}).get("chloride_within_limit") or {}).get("note", ""),
+        "run_day": day_of(run),
         "detection_limit": in_force(writing, run),
     }
 
@@ -131,8 +132,13 @@ def _limit(given: Body) -> tuple[Body | None, list[str]]:
     body = limit | {"after_dilution": after, "shown_after": rounding.plain(rounding.significant(after, 2))}
     return body, [
         f"Detection limit of the method in force: {limit['shown']} mg/L in the tube, {body['shown_after']} "
-        f"mg/L after this dilution; calculated {limit['computed_on']}."
+        f"mg/L after this dilution; calculated {limit['computed_on']}{_late(given)}."
     ]
+
+
+def _late(given: Body) -> str:
+    by: str = given["detection_limit"]["again_by"]
+    return f", ▲ to be calculated again by {by}, before this run" if given["run_day"] > by else ""
 
 
 def qualify(writing: Stating, id_: str) -> None:

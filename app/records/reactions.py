@@ -11,33 +11,61 @@ from __future__ import annotations
 
 import logging
 from collections.abc import Callable, Iterator
+from enum import IntEnum, auto
 from typing import Any
 
 from app.errors import WeirbookError
-from app.records import interferences, laboratory, outlooks, studies
+from app.records import interferences, laboratory, outlooks, studies, trust
 from app.records.change import Change, Stating
 
 Due = tuple[int, str]
 
-DERIVE_RECIPE, FIT_CURVE, JUDGE_CHECK, CALCULATE_RUN, TAKE_TUBE, COMPUTE_LIMIT, QUALIFY, LEARN, LOOK_AHEAD = (
-    range(9)
-)
-AT_ONCE = (DERIVE_RECIPE, FIT_CURVE, JUDGE_CHECK, CALCULATE_RUN, TAKE_TUBE, COMPUTE_LIMIT, QUALIFY)
-ALL = (*AT_ONCE, LEARN, LOOK_AHEAD)
-NAMES = ("derive", "fit", "check", "calculate", "take", "detection limit", "qualify", "learn", "look ahead")
+
+class Sum(IntEnum):
+    """The sums, in the order in which they are done."""
+
+    DERIVE_RECIPE = auto()
+    FIT_CURVE = auto()
+    JUDGE_CHECK = auto()
+    CALCULATE_RUN = auto()
+    TAKE_TUBE = auto()
+    COMPUTE_LIMIT = auto()
+    QUALIFY = auto()
+    LEARN = auto()
+    LOOK_AHEAD = auto()
+    JUDGE = auto()
+
+
+ALL = tuple(Sum)
+LATE = (Sum.LEARN, Sum.LOOK_AHEAD, Sum.JUDGE)
+AT_ONCE = tuple(one for one in Sum if one not in LATE)
+#: How a failed sum is named in the journal: never renamed.
+NAMES = {
+    Sum.DERIVE_RECIPE: "derive",
+    Sum.FIT_CURVE: "fit",
+    Sum.JUDGE_CHECK: "check",
+    Sum.CALCULATE_RUN: "calculate",
+    Sum.TAKE_TUBE: "take",
+    Sum.COMPUTE_LIMIT: "detection limit",
+    Sum.QUALIFY: "qualify",
+    Sum.LEARN: "learn",
+    Sum.LOOK_AHEAD: "look ahead",
+    Sum.JUDGE: "back-test",
+}
 
 log = logging.getLogger("weirbook")
 
 _REACTIONS: dict[int, Callable[[Stating, str], None]] = {
-    DERIVE_RECIPE: laboratory.derive_recipe,
-    FIT_CURVE: laboratory.fit_curve,
-    JUDGE_CHECK: laboratory.judge_check,
-    CALCULATE_RUN: laboratory.calculate_run,
-    TAKE_TUBE: studies.take_tube,
-    COMPUTE_LIMIT: studies.compute_limit,
-    QUALIFY: interferences.qualify,
-    LEARN: outlooks.learn_again,
-    LOOK_AHEAD: outlooks.look_ahead,
+    Sum.DERIVE_RECIPE: laboratory.derive_recipe,
+    Sum.FIT_CURVE: laboratory.fit_curve,
+    Sum.JUDGE_CHECK: laboratory.judge_check,
+    Sum.CALCULATE_RUN: laboratory.calculate_run,
+    Sum.TAKE_TUBE: studies.take_tube,
+    Sum.COMPUTE_LIMIT: studies.compute_limit,
+    Sum.QUALIFY: interferences.qualify,
+    Sum.LEARN: outlooks.learn_again,
+    Sum.LOOK_AHEAD: outlooks.look_ahead,
+    Sum.JUDGE: trust.judge_again,
 }
 
 
@@ -45,23 +73,25 @@ def due(change: Change) -> Iterator[Due]:
     """Yield what an entry makes due, in the order of the sums."""
     kind, about = change.entry.kind, change.entry.about
     if kind == "recipe.adopted":
-        yield DERIVE_RECIPE, about
+        yield Sum.DERIVE_RECIPE, about
+        yield Sum.JUDGE, "programme"
     elif kind == "calibration.made":
-        yield FIT_CURVE, about
+        yield Sum.FIT_CURVE, about
     elif kind == "curve.checked":
-        yield JUDGE_CHECK, f"{about} {change.entry.id}"
+        yield Sum.JUDGE_CHECK, f"{about} {change.entry.id}"
     elif kind == "readings.finished" or (kind == "tube.excluded" and _calculated(change)):
-        yield CALCULATE_RUN, about
+        yield Sum.CALCULATE_RUN, about
     elif kind == "study.result" and change.body["run"] is not None:
-        yield TAKE_TUBE, f"{about} {change.body['row']}"
+        yield Sum.TAKE_TUBE, f"{about} {change.body['row']}"
     elif kind == "study.finished":
-        yield COMPUTE_LIMIT, about
+        yield Sum.COMPUTE_LIMIT, about
     elif kind in ("bottle.measured", "sample.taken"):
-        yield from ((QUALIFY, id_) for id_ in interferences.of_bottle(change, change.body["bottle"]))
+        yield from ((Sum.QUALIFY, id_) for id_ in interferences.of_bottle(change, change.body["bottle"]))
     elif kind in ("point.registered", "result.recorded", "result.reviewed", "run.calculated"):
-        yield LEARN, "programme"
-        yield from ((LOOK_AHEAD, point) for point in _points(change))
-        yield from ((QUALIFY, one["id"]) for one in change.body.get("results", []))
+        yield Sum.LEARN, "programme"
+        yield Sum.JUDGE, "programme"
+        yield from ((Sum.LOOK_AHEAD, point) for point in _points(change))
+        yield from ((Sum.QUALIFY, one["id"]) for one in change.body.get("results", []))
 
 
 def failure(what: Due, error: Exception) -> dict[str, Any]:
@@ -71,7 +101,7 @@ def failure(what: Due, error: Exception) -> dict[str, Any]:
         error = WeirbookError(
             "The server failed at this sum. What was stated is kept; tell the administrator."
         )
-    named = {"software": laboratory.SOFTWARE, "what": NAMES[what[0]]}
+    named = {"software": laboratory.SOFTWARE, "what": NAMES[Sum(what[0])]}
     return named | {"error": error.message, "fields": error.fields}
 
 

@@ -163,8 +163,6 @@ def _workings_words(
 
 
 def _level_words(mg_l: float, recipe: Body) -> list[str]:
-    if mg_l <= 0:
-        return ["All spikes gave the same number: no limit can be trusted that is 0; read more digits."]
     level, low = minimum_level(mg_l), recipe["working_low"]
     verdict = "is not below it" if low >= level else "▲ is below it: report from the minimum level on"
     return [f"EPA's minimum level is {level:g} mg/L; the recipe's working range from {low:g} mg/L {verdict}."]
@@ -188,9 +186,14 @@ def _limit_for(writing: Stating, recipe: str, instruments: list[str], day: str) 
     return found[-1] if found else None
 
 
+def day_of(run: Body) -> str:
+    """Return the day on which a run was heated, or planned where it was not heated yet."""
+    began: str = (run.get("heating") or {}).get("started_at") or run["planned_at"]
+    return began[:10]
+
+
 def in_force(writing: Stating, run: Body) -> Body | None:
     """Return the detection limit that was in force for a run's recipe and photometer on its day."""
-    began = (run.get("heating") or {}).get("started_at") or run["planned_at"]
-    limit = _limit_for(writing, run["recipe"], [run["instrument"]], began[:10])
+    limit = _limit_for(writing, run["recipe"], [run["instrument"]], day_of(run))
     names = ("study", "name", "mg_l", "shown", "computed_on", "again_by")
     return None if limit is None else {name: limit[name] for name in names}

@@ -99,7 +99,9 @@ def strip_of(result: Body, recipe: Body, sample: Body) -> paper.Strip:
 
 
 def components_of(result: Body, dof: dict[str, float | None]) -> tuple[paper.Component, ...]:
-    """Return the uncertainty budget: each component's size, share of the variance and degrees of freedom."""
+    """Return the uncertainty budget, each component's size and share; a bound carries none."""
+    if result["status"] != "ok" or not result["components"]:
+        return ()
     total = sum(value**2 for value in result["components"].values())
     return tuple(
         paper.Component(

@@ -10,6 +10,7 @@ import { read, valueOf } from "../parts/measured.js";
 import { units } from "../parts/units.js";
 import { one, useView } from "../parts/view.js";
 
+const UNITS = ["mg/L", "g/L"];
 const SPECIES = [
   ["chloride", "Chloride", "From a strip such as < 500, or a titration. It is judged after dilution and never subtracted."],
   ["nitrite", "Nitrite, as N", "Nitrite as NO₂ divided by 3.28. From a portion without acid; only if no sulfamic acid went into the tubes."],
@@ -36,7 +37,7 @@ const shownOf = (given) => `${given.text} ${given.unit}`;
 
 /** The form for values beside the COD. */
 export function Measure({ given = "" }) {
-  const [v, set, forget] = useForm(`measure:${given}`, { code: given, chloride: "", nitrite: "", ferrous: "", sulfide: "", how: "", note: "" });
+  const [v, set, forget] = useForm(`measure:${given}`, { code: given, chloride: "", nitrite: "", ferrous: "", sulfide: "", unit: {}, how: "", note: "" });
   const { code, problem: wrong } = readCode(v?.code ?? "");
   const known = useView(() => (code ? one("interferents", code) : null));
   const { save, problem, busy } = useSaving(async () => {
@@ -48,7 +49,7 @@ export function Measure({ given = "" }) {
       if (told || value < 0) throw new Error(`${label}: ${told || "a concentration is not negative."}`);
     }
     if (!v.how.trim()) throw new Error("Say how it was measured.");
-    const species = Object.fromEntries(typed.map(([name]) => [name, measuredOf(v[name], "mg/L")]));
+    const species = Object.fromEntries(typed.map(([name]) => [name, measuredOf(v[name], v.unit[name] ?? "mg/L")]));
     await state("bottle.measured", code, { bottle: code, species, how: v.how.trim(), note: v.note.trim() });
     await forget().catch(() => {});
     say(`Saved on this tablet: values of ${code}.`);
@@ -60,7 +61,8 @@ export function Measure({ given = "" }) {
         wrong=${v.code.length >= 6 && wrong ? wrong : ""} hint=${code ? `Read as ${code}.` : "The six characters on its label."} />
       ${known && html`<ul class="plain">${SPECIES.filter(([name]) => known[name]).map(([name, label]) => html`<li key=${name}>${label}: <strong>${shownOf(known[name].given)}</strong>, ${known[name].how} <span class="soft">${known[name].by}</span></li>`)}</ul>`}</section>
     <section class="card stack"><p class="soft">In the undiluted sample. A later value stands before an earlier one; both are kept.</p>
-      ${SPECIES.map(([name, label, hint]) => html`<${NumberField} key=${name} label=${label} unit="mg/L" value=${v[name]} hint=${hint} onInput=${(text) => set(name, text)} />`)}
+      ${SPECIES.map(([name, label, hint]) => html`<${NumberField} key=${name} label=${label} unit=${v.unit[name] ?? "mg/L"} units=${UNITS} value=${v[name]} hint=${hint}
+        onInput=${(text) => set(name, text)} onUnit=${(unit) => set("unit", { ...v.unit, [name]: unit })} />`)}
       <${TextField} label="How it was measured" value=${v.how} maxlength="200" hint="for example chloride strip, lot and range" onInput=${(text) => set("how", text)} />
       <${TextField} label="Note" value=${v.note} maxlength="500" onInput=${(text) => set("note", text)} /></section>
     <${Problem} words=${problem} /><button class="main" disabled=${busy}>${busy ? "Saving…" : "Save the values"}</button>

@@ -45,6 +45,7 @@ function Add({ study, v, set, setAll }) {
   const { save, problem, busy } = useSaving(async () => {
     const bad = v.none ? "" : read(v.result).problem;
     if (bad) throw new Error(`Result: ${v.result.trim() ? bad : "type it, or say that it gave no number."}`);
+    if (v.on > day(new Date(), programme()?.zone)) throw new Error("The day of a result cannot lie ahead.");
     if (!v.batch.trim()) throw new Error("Name the batch: the digestion that the tube was in.");
     if (v.row && !v.reason.trim()) throw new Error("Say why the result changes.");
     const { row, none, result, ...said } = v;

@@ -55,7 +55,7 @@ function smallerWords(plans, choice) {
 
 /** The best plan of another method, where it needs no more than twice the tubes. */
 function otherWords(plans, choice) {
-  const others = plans.filter((one_) => one_.recipe !== choice.recipe && one_.usable && one_.expected_tubes <= 2 * choice.expected_tubes);
+  const others = plans.filter((one_) => one_.recipe !== choice.recipe && one_.usable && one_.expected_tubes && one_.expected_tubes <= 2 * choice.expected_tubes);
   const best = others.sort((a, b) => a.expected_tubes - b.expected_tubes)[0];
   return best ? [`Or ${best.name}, ${dilution(best.factor)}: ${percent(best.share)} in range.`] : [];
 }

@@ -7,6 +7,7 @@ import { PointReview } from "./point.js";
 import { Register, RegisterPoint, SetLimit } from "./register.js";
 import { ResultReview } from "./result.js";
 import { Overview } from "./overview.js";
+import { Trust } from "./trust.js";
 
 /**
  * The screen of a path below /review.
@@ -19,6 +20,7 @@ export function review([what, id, more]) {
   if (what === "register" && id) return html`<${RegisterPoint} key=${id} id=${id} />`;
   if (what === "register") return html`<${Register} />`;
   if (what === "people") return html`<${People} />`;
+  if (what === "trust") return html`<${Trust} id=${id} />`;
   if (what === "held") return html`<${Held} />`;
   return html`<${Overview} />`;
 }

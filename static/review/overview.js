@@ -40,7 +40,7 @@ function List({ id }) {
     <${TextField} label="Find" type="search" value=${words} onInput=${setWords} />
     ${points.length === 0 && html`<${Empty} title="No discharge points yet"><a href="/review/register">Register a discharger and its points</a><//>`}
     <nav class="list" aria-label="Points">${found.map((point) => html`<${PointRow} key=${point.id} point=${point} latest=${latest.get(point.id)} current=${point.id === id} zone=${zone} />`)}</nav>
-    <div class="row"><a class="button" href="/review/register">Register</a><a class="button" href="/review/people">People</a></div>
+    <div class="row"><a class="button" href="/review/register">Register</a><a class="button" href="/review/people">People</a><a class="button" href="/review/trust">Trust in the plan</a></div>
   </div>`;
 }
 

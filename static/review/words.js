@@ -24,7 +24,7 @@ export function Verdict({ result }) {
 /** A result's number with its uncertainty and unit, its sign never parted from it. */
 export function Number_({ result, big = false }) {
   const value = result.status === "disagree" ? "provisional" : reported(result.shown ?? "–");
-  return html`<span class=${big ? "" : "nowrap"}><span class=${big ? "big" : ""}>${value}</span>${result.shown_u && html` <span class=${big ? "plus" : ""}>± ${reported(result.shown_u)}</span>`} <span class="unit">mg/L</span></span>`;
+  return html`<span class=${big ? "" : "nowrap"}><span class=${big ? "big" : ""}>${value}</span>${result.shown_u && html` <span class=${big ? "plus" : ""}>± ${reported(result.shown_u)}</span>`} <span class="unit">mg/L</span>${(result.qualifiers ?? []).map((one) => html` <strong key=${one.letter}>${one.letter}</strong>`)}</span>`;
 }
 
 /** What happened to a result so far. */

@@ -49,6 +49,8 @@ SCREENS = (
     "/review/register",
     "/review/people",
     "/review/held",
+    "/review/trust",
+    "/review/trust/outlet-b",
     "/settings",
     "/waiting",
     "/emergency",

@@ -74,8 +74,14 @@ def test_what_is_missing_is_told_in_words() -> None:
     assert "spikes still missing: 2 of 7" in gaps
     assert "spikes in at least three batches" in gaps
     assert "blanks on at least three dates" in gaps
-    full = [StudyResult(DAYS[i % 3], "ABC"[i % 3], kind) for kind in ("spike", "blank") for i in range(7)]
+    full = [
+        StudyResult(DAYS[i % 3], "ABC"[i % 3], kind, mg_l=9.0 + i)
+        for kind in ("spike", "blank")
+        for i in range(7)
+    ]
     assert study_gaps(full) == ()
+    same = [StudyResult(one.on, one.batch, one.kind, mg_l=10.0) for one in full]
+    assert study_gaps(same) == ("spikes that differ: all gave the same number, so read one digit more",)
 
 
 def test_several_instruments_and_lost_spikes_are_told() -> None:

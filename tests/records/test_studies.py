@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import json
 from typing import Any
 
 import pytest
@@ -200,6 +201,27 @@ def test_the_limit_in_force_stands_beside_a_result_after_its_dilution(ready: Des
     limit = ready.get("result", RESULT)["detection_limit"]
     assert (limit["computed_on"], limit["shown"], limit["shown_after"]) == ("2031-06-01", "3.2", "16")
     assert limit["after_dilution"] == pytest.approx(5 * limit["mg_l"])
+
+
+def test_a_limit_that_was_due_again_before_the_run_says_so(ready: Desk) -> None:
+    whole(ready)
+    bench = ready.device
+    bench.now = bench.now.replace(year=2032, month=7, day=2)
+    calibration = json.loads(devices.setting_up(devices.Device("maren"))[-1])["body"]
+    lot = {"recipe": "high", "name": "D-32-002", "made_on": "2032-05-01", "expires_on": "2033-05-01"}
+    changed = {"valid_until": "2033-01-01", "lot": "lot-2"}
+    made = bench.make("calibration.made", "curve-2", calibration | changed)
+    plan = devices.planned(bench, "r", CODES[0], calibration="curve-2", lot="lot-2")
+    texts = [
+        bench.make("lot.made", "lot-2", lot),
+        made,
+        devices.sample(bench, "s", CODES[0]),
+        plan,
+        *devices.heated(bench, "r"),
+    ]
+    assert set(ready.held(*texts, *devices.read(bench, "r"))) == {None}
+    words = " ".join(ready.get("result", RESULT)["beside"])
+    assert "▲ to be calculated again by 2032-07-01, before this run" in words
 
 
 def test_a_result_older_than_the_limit_does_not_name_it(ready: Desk) -> None:

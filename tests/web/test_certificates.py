@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import hashlib
 import json
+import re
 import subprocess
 import sys
 from pathlib import Path
@@ -127,3 +128,20 @@ def test_the_paper_names_qualifiers_and_the_corrected_value_beside_the_reported_
     assert [one["name"] for one in inside["corrected"]["corrections"]] == ["nitrite"]
     assert "Bias carries" in words
     assert "coverage factor 1.96 from the normal distribution" in words
+
+
+def test_a_bound_on_paper_has_its_detection_limit_and_no_budget(
+    browser: Browser, device: Device, tmp_path: Path
+) -> None:
+    told = devices.whole_path(device.by)
+    low = [text.replace('"0.179"', '"0.012"').replace('"0.181"', '"0.013"') for text in told]
+    low = [text.replace('"0.180"', '"0.0125"') for text in low]
+    start = len(devices.setting_up(Device(device.by)))
+    assert set(browser.results([*low[:start], *devices.study(Device(device.by))])) == {"stored"}
+    assert set(browser.results(low[start:])) == {"stored"}
+    number = issue(browser).get_json()["number"]
+    words = text_of(browser.get(f"/api/certificates/{number}.pdf").get_data(), tmp_path)
+    assert "< 100 mg/L" in words
+    assert re.search(r"16 mg/L after dilution, 3.2 mg/L in( [A-Za-z ,]*)? the tube, calculated", words)
+    assert "2031-06-01" in words
+    assert "Uncertainty budget" not in words

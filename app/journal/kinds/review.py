@@ -73,3 +73,16 @@ class OutlookComputed(Body):
     pack = fields.Dict(required=True)
     n = fields.Integer(required=True, strict=True)
     last_at = When(required=True, allow_none=True)
+
+
+@kind("trust.judged", SERVER)
+class TrustJudged(Body):
+    """How forecasts would have done on the programme's own results, in all and point by point."""
+
+    software = Text(required=True)
+    results = fields.Integer(required=True, strict=True)
+    ladder = fields.Dict(required=True)
+    latest = fields.Integer(required=True, strict=True)
+    first = fields.Integer(required=True, strict=True)
+    programme = fields.Dict(required=True)
+    points = fields.Dict(keys=fields.String(), values=fields.Dict(), required=True)

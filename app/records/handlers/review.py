@@ -95,3 +95,14 @@ def outlook_computed(change: Change) -> None:
     ]
     body = change.body | {"computed_at": change.entry.at, "recent": recent}
     change.put("outlook", change.entry.about, body, parent=change.entry.about)
+
+
+@handles("trust.judged")
+def trust_judged(change: Change) -> None:
+    """The back-test of the programme under its own id, and of each point under the point's."""
+    shared = {name: change.body[name] for name in ("software", "results", "latest", "first")}
+    shared |= {"judged_at": change.entry.at}
+    whole = change.body["programme"] | shared | {"ladder": change.body["ladder"]}
+    change.put("trust", change.entry.about, whole)
+    for point, judged in change.body["points"].items():
+        change.put("trust", point, judged | shared, parent=point)
