@@ -2,7 +2,8 @@
 
 The kinds of wandering of :mod:`app.forecast.wandering` are drawn together into
 one normal state with their common mean and covariance: on open series that
-changes the forecasts less than the third digit of their log density. With the
+changes the forecasts less than the third digit of their log density. What the
+past predictions got wrong (:mod:`app.forecast.calibration`) is in it. With the
 moment and the readings of now the state gives a Student t distribution of ln
 COD; the server and the tablet do that last step alike.
 
@@ -20,6 +21,7 @@ from typing import Any
 import numpy as np
 
 from app.errors import InputError
+from app.forecast.calibration import correction, tail_dof
 from app.forecast.observations import (
     INPUTS,
     KNOWN_WELL,
@@ -199,6 +201,9 @@ def posterior(programme: Programme, sector: str | None, history: Sequence[Observ
     past = past_of(results)
     known = filtered(past, programme, sector)
     mean, covariance, wander = _together(past, known)
+    right = correction(past, known)
+    mean[0] += right.shift[-1]
+    widened = float(right.width[-1]) ** 2
     pulls = np.array(programme.pull_mean[: len(INPUTS)])
     return Posterior(
         len(history),
@@ -208,10 +213,10 @@ def posterior(programme: Programme, sector: str | None, history: Sequence[Observ
         tuple(past.count.tolist()),
         tuple(((pulls * past.spread / programme.noise) ** 2).tolist()),
         tuple(mean.tolist()),
-        tuple(map(tuple, covariance.tolist())),
-        tuple(wander),
-        float(known.weights[-1] @ known.noise),
-        2.0 * float(known.weights[-1] @ known.final_shape),
+        tuple(map(tuple, (widened * covariance).tolist())),
+        tuple(widened * value for value in wander),
+        widened * float(known.weights[-1] @ known.noise),
+        float(tail_dof(2.0 * known.weights[-1] @ known.final_shape)),
     )
 
 

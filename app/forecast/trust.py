@@ -20,6 +20,7 @@ from dataclasses import dataclass
 import numpy as np
 
 from app.errors import InputError
+from app.forecast.calibration import Correction, correction, tail_dof
 from app.forecast.learning import Point
 from app.forecast.observations import Observation, in_order
 from app.forecast.planning import Range
@@ -95,23 +96,18 @@ def one_step_ahead(
     found: list[Predictive] = []
     while len(found) < len(history):
         begin = max(0, len(found) - PIECE // 2)
-        known = filtered(past_of(history[begin : begin + PIECE]), programme, sector)
-        found += [_mixture(known, t) for t in range(len(found) - begin, len(known.mean))]
+        past = past_of(history[begin : begin + PIECE])
+        known = filtered(past, programme, sector)
+        right = correction(past, known)
+        found += [_mixture(known, right, t) for t in range(len(found) - begin, len(known.mean))]
     return found
 
 
-def _mixture(known: Filtered, t: int) -> Predictive:
-    return Predictive(
-        tuple(
-            Component(
-                float(known.weights[t, k]),
-                float(known.mean[t, k]),
-                float(known.scale[t, k]),
-                2.0 * float(known.shape[t, k]),
-            )
-            for k in range(known.mean.shape[1])
-        )
-    )
+def _mixture(known: Filtered, right: Correction, t: int) -> Predictive:
+    centres = known.mean[t] + right.shift[t]
+    scales = known.scale[t] * right.width[t]
+    told = zip(known.weights[t], centres, scales, tail_dof(2.0 * known.shape[t]), strict=True)
+    return Predictive(tuple(Component(*map(float, one)) for one in told))
 
 
 @dataclass(frozen=True)

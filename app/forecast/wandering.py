@@ -175,8 +175,20 @@ def _fading(n: int, keeps: float) -> np.ndarray:
     return np.where(steps >= 0, keeps ** np.maximum(steps, 0), 0.0)
 
 
-def _faded(values: np.ndarray, keeps: float) -> np.ndarray:
-    """Return, before each row and after the last, the sum of rows faded by how many came later."""
+def faded(values: np.ndarray, keeps: float) -> np.ndarray:
+    """Return, before each row and after the last, the sum of rows faded by how many came later.
+
+    Parameters
+    ----------
+    values : ndarray of shape (n, m)
+        Rows in order of time.
+    keeps : float
+        What a row keeps with each later one.
+
+    Returns
+    -------
+    ndarray of shape (n + 1, m)
+    """
     total: np.ndarray = _fading(len(values), keeps) @ values
     return total
 
@@ -211,7 +223,7 @@ class _Rounds:
         self.noise = np.repeat(self.own, kinds, axis=1)
         self.free = (past.sign == 0)[:, None]
         self.mean, self.signal = np.zeros((n, kinds)), np.zeros((n, kinds))
-        self.shape = np.repeat(PRIOR_SHAPE + 0.5 * _faded(self.free * 1.0, SPREAD_KEEPS), kinds, axis=1)
+        self.shape = np.repeat(PRIOR_SHAPE + 0.5 * faded(self.free * 1.0, SPREAD_KEEPS), kinds, axis=1)
         self.spread = np.full((n + 1, kinds), self.base)
 
     def factorise(self, with_state: bool) -> np.ndarray:
@@ -239,7 +251,7 @@ class _Rounds:
         squares = error**2 / total
         trust = np.ones_like(squares)
         for _ in range(2):
-            told = _faded(0.5 * squares * trust * self.free, SPREAD_KEEPS)
+            told = faded(0.5 * squares * trust * self.free, SPREAD_KEEPS)
             self.spread = (PRIOR_SHAPE * self.base + told) / self.shape
             trust = np.minimum(1.0, (OUTLIER_DOF + 1) / (OUTLIER_DOF + squares / self.spread[:-1]))
         self.noise = self.own / trust
@@ -297,7 +309,7 @@ def filtered(past: Past, programme: Programme, sector: str | None) -> Filtered:
     within = np.einsum("ki,ij->kij", work.sizes, np.eye(work.sizes.shape[1])) - shift @ shift.transpose(
         0, 2, 1
     )
-    logs = np.log(programme.memory_weights) + _faded(work.scores(), SCORE_KEEPS)
+    logs = np.log(programme.memory_weights) + faded(work.scores(), SCORE_KEEPS)
     weights = np.exp(logs - logs.max(axis=1, keepdims=True))
     spread = work.spread
     return Filtered(

@@ -21,24 +21,13 @@ from app.chemistry.interferences import (
 from app.journal import measured
 from app.records.change import Body, Change, Stating
 from app.records.laboratory import SOFTWARE, inputs_digest
+from app.records.outlooks import chloride_known
 from app.records.studies import day_of, in_force
 
 
 def of_bottle(change: Change, code: str) -> Iterator[str]:
     """Yield the results of a bottle, whose words a new statement may change."""
     yield from (change.get("bottle", code) or {}).get("results", [])
-
-
-def chloride_known(species: Body, field: Body) -> Body | None:
-    """Return chloride as it is best known: from the bench, else from the strip at the point."""
-    for given, source in (
-        ((species.get("chloride") or {}).get("given"), "bottle"),
-        (field.get("chloride_mg_l"), "point"),
-    ):
-        if given:
-            sign = measured.read(given["text"]).sign
-            return {"mg_l": measured.value(given, "mg/L"), "sign": sign, "from": source}
-    return None
 
 
 def _input(writing: Stating, result: Body) -> Body:

@@ -23,7 +23,7 @@ from app.chemistry.recipe import Recipe
 from app.errors import WeirbookError
 from app.journal import measured
 from app.journal.entry import digest
-from app.records import experience, verdicts
+from app.records import experience, repeats, verdicts
 from app.records.change import Body, Stating
 from app.safety import waste
 
@@ -294,7 +294,8 @@ def _result(
         "checks_ok": answer["ok"],
         "source": "run",
     }
-    return result | {"verdicts": _verdicts(writing, result, settings)}
+    result["verdicts"] = _verdicts(writing, result, settings)
+    return result | {"next_dilution": repeats.next_of(writing, result, run["recipe"], sample, settings)}
 
 
 def _shown(one: Body) -> Body:

@@ -31,6 +31,18 @@ def readings(field: Body) -> dict[str, float]:
     return found
 
 
+def chloride_known(species: Body, field: Body) -> Body | None:
+    """Return chloride as it is best known: from the bench, else from the strip at the point."""
+    for given, source in (
+        ((species.get("chloride") or {}).get("given"), "bottle"),
+        (field.get("chloride_mg_l"), "point"),
+    ):
+        if given:
+            sign = measured.read(given["text"]).sign
+            return {"mg_l": measured.value(given, "mg/L"), "sign": sign, "from": source}
+    return None
+
+
 def observation(result: Body) -> Observation | None:
     """Return what a result teaches; one that disagrees or was rejected teaches nothing."""
     if result["status"] not in ("ok", "below", "over") or not result["collected_at"]:

@@ -12,19 +12,22 @@ function repeated(run, code) {
 }
 
 /**
- * Why a bottle waits for another digestion, or null. `factor` is the dilution that the last answer advises, if it does.
+ * Why a bottle waits for another digestion, or null. `factor` is the next dilution as the
+ * server stated it beside the result, else the one it had; `recipe` the one that it is meant for.
  * The records of its earlier runs and results stay as they are.
  * @param {object} bottle its record
- * @returns {{why: string, factor: number|null}|null}
+ * @returns {{why: string, factor: number|null, recipe: string|undefined}|null}
  */
 export function again(bottle) {
   const last = bottle.runs.length && !bottle.certificate && bottle.received?.decision !== "rejected" ? one("run", bottle.runs.at(-1)) : null;
   if (!last) return null;
   if (last.state === "failed") return { why: `its run failed: ${last.name}`, factor: factorIn(last, bottle.code) };
-  const result = bottle.results.map((id) => one("result", id)).find((found) => found?.run === last.id);
-  const advised = last.answer?.samples.find((sample) => codeOf(sample.sample) === bottle.code)?.advice?.dilution_factor ?? null;
-  if (repeated(last, bottle.code)) return { why: `to repeat after ${last.name}`, factor: advised ?? factorIn(last, bottle.code) };
-  if (result?.review?.decision === "rejected") return { why: `its result was rejected: ${result.review.reason}`, factor: advised ?? factorIn(last, bottle.code) };
+  const results = bottle.results.map((id) => one("result", id)).filter((found) => found?.run === last.id);
+  const next = results.find((found) => found.next_dilution)?.next_dilution;
+  const factor = next?.dilution_factor ?? factorIn(last, bottle.code);
+  if (repeated(last, bottle.code)) return { why: `to repeat after ${last.name}`, factor, recipe: next?.recipe };
+  const rejected = results.find((found) => found.review?.decision === "rejected");
+  if (rejected) return { why: `its result was rejected: ${rejected.review.reason}`, factor, recipe: next?.recipe };
   return null;
 }
 

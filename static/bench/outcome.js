@@ -6,8 +6,8 @@ import { Choice, TextField, useForm, useSaving } from "../parts/fields.js";
 import { dilution, plain, reported } from "../parts/format.js";
 import { Problem, say } from "../parts/frame.js";
 import { state } from "../parts/journal.js";
-import { all, one } from "../parts/view.js";
-import { stepWords, stepsOf } from "../parts/glassware.js";
+import { one } from "../parts/view.js";
+import { stepWords } from "../parts/glassware.js";
 import { tubesOfSample } from "./rack.js";
 
 const COUNTS = ["no", "the one", "both", "all three", "all four", "all five"];
@@ -27,15 +27,15 @@ const TOLD = new Map([
   ["disagree", () => "The tubes disagree: the value is provisional. Repeat this sample."],
 ]);
 
-function Advice({ advice }) {
-  if (!advice) return null;
-  const steps = advice.dilution_factor ? stepsOf(advice.dilution_factor) : null;
-  const words = advice.dilution_factor ? `Repeat ${advice.dilution_factor === 1 ? "" : "at "}${dilution(advice.dilution_factor)}.` : "Repeat it.";
-  return html`<p><strong>${words}</strong> ${advice.why} ${steps?.length ? `${stepWords(steps)}.` : ""}</p>`;
+/** The next dilution as the server stated it beside the result, or what it says instead. */
+function Next({ next, advice, run }) {
+  if (!next) return advice && html`<p>${advice.why}</p>`;
+  const other = next.recipe === run.recipe ? "" : `${one("recipe", next.recipe)?.name}. `;
+  return html`<p class="next"><strong>Repeat ${next.dilution_factor === 1 ? "" : "at "}${dilution(next.dilution_factor)}.</strong> ${other}${next.why} ${next.steps.length ? `${stepWords(next.steps)}.` : ""}</p>`;
 }
 
 function Sample({ sample, run }) {
-  const result = all("result").find((row) => row.run === run.id && row.cod === sample.cod && sample.sample.startsWith(row.bottle));
+  const result = one("result", `${run.id}:${sample.sample.replaceAll(" ", ":")}`);
   const point = result?.point ? one("point", result.point) : null;
   const above = result?.verdicts?.find((verdict) => verdict.verdict === "above");
   const stop = sample.status === "over" || sample.status === "disagree";
@@ -45,7 +45,7 @@ function Sample({ sample, run }) {
       : html`<p class="tight"><span class="big">${reported(result?.shown ?? String(sample.reported?.cod ?? ""))}</span> ${result?.shown_u ? html`<span class="plus">± ${reported(result.shown_u)}</span>` : ""} <span class="unit">mg/L</span></p>`}
     <p>${TOLD.get(sample.status)(sample, run)} ${above ? html`<span class="above">▲ ${above.why}</span>` : result?.verdicts?.[0]?.why ?? ""}</p>
     <${Beside} result=${result} />${sharesOf(result) && html`<details><summary>Where the uncertainty comes from</summary><${Budget} result=${result} /></details>`}
-    <${Advice} advice=${sample.advice} /></section>`;
+    <${Next} next=${result?.next_dilution} advice=${sample.advice} run=${run} /></section>`;
 }
 
 function Bracketing({ run }) {

@@ -26,7 +26,12 @@ export function outlookOf(bottle) {
 }
 
 /** The dilution that a bottle begins with: the server's next one, else the plan of the manhole, else the forecast's. */
-export const firstFactor = (bottle, recipe) => bottle.again?.factor ?? bottle.sampled?.plan?.dilution_factor ?? choiceOf(outlookOf(bottle), recipe?.id)?.factor ?? 1;
+export function firstFactor(bottle, recipe) {
+  const { again, sampled } = bottle;
+  const planned = again ? { recipe: again.recipe, factor: again.factor } : { recipe: sampled?.plan?.recipe, factor: sampled?.plan?.dilution_factor };
+  const meant = planned.factor && (planned.recipe ?? recipe?.id) === recipe?.id;
+  return meant ? planned.factor : (choiceOf(outlookOf(bottle), recipe?.id)?.factor ?? planned.factor ?? 1);
+}
 
 /** The strip of a bottle and its chances at the dilution that is chosen. */
 export function Outlook({ bottle, factor, recipe }) {

@@ -136,9 +136,10 @@ def test_an_over_range_sample_is_decided_upon_and_waits_at_the_advised_dilution(
     assert [one["absorbance"]["text"] for one in first["readings"]] == ["0.111", "0.011"]
     assert first["readings"][1]["reason"] == "typed a digit twice"
     assert [tube["colour"] for tube in others] == [None, None, None, "green", "green", None, None]
-    (sample,) = run["answer"]["samples"]
-    advised = sample["advice"]["dilution_factor"]
+    (stated,) = [body for (kind, _), body in _records(page).items() if kind == "result"]
+    advised = stated["next_dilution"]["dilution_factor"]
     assert advised > 5
+    expect(page.get_by_text(f"Repeat at 1:{advised:g}.")).to_be_visible()
 
     page.goto("/bench")
     waits = page.get_by_role("navigation", name="Bottles that wait")

@@ -95,14 +95,7 @@ def integral_transform(points: tuple[tuple[Observation, ...], ...]) -> np.ndarra
     return np.array(found)
 
 
-SKEWED = pytest.mark.xfail(
-    strict=True, reason="a known shortcoming: ln COD leans to the right, 55 % of results lie below the median"
-)
-
-
-@pytest.mark.parametrize(
-    "name", [pytest.param("hk_rivers_strong.open.csv", marks=SKEWED), "nsqd_stormwater.open.csv"]
-)
+@pytest.mark.parametrize("name", ["hk_rivers_strong.open.csv", "nsqd_stormwater.open.csv"])
 def test_the_probability_integral_transform_is_near_uniform(shared: Path, name: str) -> None:
     """Dawid 1984: a share p of results lies below the p quantile; here within 7 % everywhere."""
     places = np.sort(integral_transform(points_of(shared / "data" / name)))
