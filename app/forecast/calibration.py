@@ -51,9 +51,10 @@ class Correction:
     width: np.ndarray
 
 
-def tail_dof(dof: np.ndarray) -> np.ndarray:
+def tail_dof(dof: np.ndarray | float) -> np.ndarray:
     """Return degrees of freedom held to the tails of ln COD."""
-    return np.minimum(dof, TAIL_DOF)
+    found: np.ndarray = np.minimum(dof, TAIL_DOF)
+    return found
 
 
 def _before(values: np.ndarray) -> np.ndarray:

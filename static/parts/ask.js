@@ -53,11 +53,11 @@ function smallerWords(plans, choice) {
   return worse ? [`Not ${dilution(worse.factor)}: ${worse.objections[0]}.`] : [];
 }
 
-/** The best plan of another method, where it needs no more than twice the tubes. */
+/** The best plan of another method, where the chosen one is no sure thing or dilutes more. */
 function otherWords(plans, choice) {
   const others = plans.filter((one_) => one_.recipe !== choice.recipe && one_.usable && one_.expected_tubes && one_.expected_tubes <= 2 * choice.expected_tubes);
   const best = others.sort((a, b) => a.expected_tubes - b.expected_tubes)[0];
-  return best ? [`Or ${best.name}, ${dilution(best.factor)}: ${percent(best.share)} in range.`] : [];
+  return best && (choice.share < 0.9 || best.factor < choice.factor) ? [`Or ${best.name}, ${dilution(best.factor)}: ${percent(best.share)} in range.`] : [];
 }
 
 function splitWords(split, plans, choice) {
@@ -78,9 +78,9 @@ export function costWords({ expected_tubes: tubes, expected_mercury_mg: mercury,
 /** How much to bring: enough for a repeat, a duplicate and a spike as well. */
 export const bringWords = ({ needed_ml: needed }) => (needed ? `Bring ${ml(Math.max(100, 4 * needed))} mL or more: that is enough for a repeat, a duplicate and a spike.` : "");
 
-/** What the best reading not taken would add; empty where none would. */
+/** What the best reading not taken would add, or that none would. */
 function worthWords([best], { low, high }) {
-  if (!best) return "";
+  if (!best) return "No further reading would help the choice of the dilution.";
   const lift = `lift the share in range from ${percent(best.p_in_range_now)} to about ${percent(best.p_in_range_expected)}`;
   const narrow = best.high / best.low < high / low ? `narrow the range from ${rough(low)} to ${rough(high)} to about ${rough(best.low)} to ${rough(best.high)} mg/L and ` : "";
   return `${NAMES[best.field]} measured now would ${narrow}${lift}.`;
@@ -117,7 +117,7 @@ export function forecastOf(point, { field, activity = null, at = Date.now(), chl
   return {
     predictive, median: predictive.quantile(0.5), ...ends, plans, choice, factors, shifted: Object.keys(readings).length > 0 || activity !== null,
     why: choice ? whyOf(choice) : recipes.length ? againstWords(plans) : "", reasons: reasons ?? [], severalRanges: recipes.length > 1,
-    worth: seen ? "" : worthWords(worthMeasuring(outlook.pack, now, made, ranges), ends), alarms: before.bounded.map(boundedWords),
+    worth: seen || !choice ? "" : worthWords(worthMeasuring(outlook.pack, now, made, ranges), ends), alarms: before.bounded.map(boundedWords),
     notes: [...basisWords(outlook), ...(recipes.length ? [] : ["The laboratory has adopted no recipe yet: the dilution follows once it has."])],
   };
 }

@@ -3,7 +3,8 @@
 from __future__ import annotations
 
 import json
-from collections.abc import Callable, Iterator
+import re
+from collections.abc import Callable
 from typing import Any
 
 import pytest
@@ -35,7 +36,7 @@ def _past(point: str, number: int, cod: int) -> tuple[str, str, dict[str, Any]]:
     conductivity = {"text": str(round(900 * (cod / 1500) ** 0.7)), "unit": "uS/cm"}
     body = {
         "point": point,
-        "collected_at": f"2026-{number + 1:02d}-10T10:00:00-06:00",
+        "collected_at": f"2026-{number // 2 + 1:02d}-{10 + number % 2:02d}T10:00:00-06:00",
         "cod": {"text": str(cod), "unit": "mg/L"},
         "expanded_u": None,
         "field": {"conductivity_us_cm": conductivity},
@@ -45,18 +46,24 @@ def _past(point: str, number: int, cod: int) -> tuple[str, str, dict[str, Any]]:
     return "result.recorded", f"result{number}", body
 
 
-@pytest.fixture
-def card(server: Server, context_factory: Callable[..., BrowserContext]) -> Iterator[Page]:
-    """Open the card of a point with ten results and a recipe, on a phone."""
-    page = context_factory(**chromium.PHONE, base_url=server.url).new_page()
+def _open(page: Page, server: Server, recipe: dict[str, Any], cods: tuple[int, ...]) -> str:
+    """Open the card of a point with results and a recipe; return the point's id."""
     tablet.begin(page, server.url)
     point = tablet.register_point(page)
-    past = [_past(point, number, cod) for number, cod in enumerate(CODS)]
-    tablet.state_all(page, [("recipe.adopted", "recipe", RECIPE), *past])
+    past = [_past(point, number, cod) for number, cod in enumerate(cods)]
+    tablet.state_all(page, [("recipe.adopted", "recipe", recipe), *past])
     tablet.settled(page)
     page.goto(f"/field/point/{point}")
     expect(page.get_by_text("Expected COD today")).to_be_visible(timeout=15000)
-    yield page
+    return point
+
+
+@pytest.fixture
+def card(server: Server, context_factory: Callable[..., BrowserContext]) -> Page:
+    """Open the card of a point with ten results and a recipe, on a phone."""
+    page = context_factory(**chromium.PHONE, base_url=server.url).new_page()
+    _open(page, server, RECIPE, CODS)
+    return page
 
 
 def _number(page: Page) -> int:
@@ -125,3 +132,60 @@ def test_bottles_are_handed_over_and_say_who_has_them(card: Page) -> None:
     card.get_by_role("button", name="Hand over 1 bottle").click()
     row = card.get_by_role("listitem").filter(has_text=code)
     expect(row).to_contain_text("handed over (Ada of the laboratory)")
+
+
+NARROW = RECIPE | {"name": "Narrow range", "working_low": "150", "working_high": "400"}
+NINE = re.compile(r"nine in ten between ([\d\u202f]+) and ([\d\u202f]+)")
+
+
+def _ends(page: Page) -> tuple[int, int]:
+    found = NINE.search(page.get_by_label("Expectation").inner_text())
+    assert found
+    low, high = (int(text.replace("\u202f", "")) for text in found.groups())
+    return low, high
+
+
+def _dilution(page: Page) -> str:
+    return page.locator(".dilute strong").inner_text()
+
+
+def test_without_a_signal_readings_move_the_range_the_plan_and_what_is_still_worth_measuring(
+    server: Server, context_factory: Callable[..., BrowserContext]
+) -> None:
+    """A narrow method at a point whose COD follows conductivity; then whether the plan deserves it."""
+    context = context_factory(**chromium.PHONE, base_url=server.url)
+    page = context.new_page()
+    point = _open(page, server, NARROW, (*CODS, 1200, 3600, 800, 2900, 1600, 2050))
+    worth = page.locator(".worth")
+    words = re.compile("Conductivity measured now would narrow the range from .* to .*")
+    expect(worth).to_contain_text(words, timeout=15000)  # the last outlook has been pulled
+    context.set_offline(True)
+    page.reload()
+    expect(worth).to_contain_text(words)
+    low, high = _ends(page)
+    before = _dilution(page)
+
+    page.get_by_role("button", name="Enter Conductivity").click()
+    reading = page.get_by_label("Conductivity", exact=True)
+    reading.fill("1050")
+    expect(page.get_by_text("Expected COD with these readings")).to_be_visible()
+    usual = _ends(page)
+    assert usual[1] / usual[0] < high / low, "a usual reading narrows the range"
+    reading.fill("600")
+    expect(page.get_by_text("read as 600")).to_be_visible()
+    assert _ends(page)[1] < high
+    assert _dilution(page) != before, "a weak sample is diluted less"
+    expect(worth).not_to_contain_text("Conductivity")
+    reading.fill("600000")
+    expect(page.get_by_text("Conductivity lies far outside what was seen here")).to_be_visible()
+    assert _ends(page)[1] < 1_000_000, "its pull is bounded"
+    page.get_by_label("Visible solids").check()
+    expect(page.get_by_text(re.compile("Bring [\\d\u202f]+ mL or more"))).to_be_visible()
+
+    page.get_by_role("link", name="How far to trust this").click()
+    expect(page).to_have_url(re.compile(f"/review/trust/{point}"))
+    judged = page.get_by_role("row", name="The plan").inner_text()
+    assert re.search(r"\d+ of 11", judged), judged
+    expect(page.get_by_text("Judged by the server on")).to_be_visible()
+    page.get_by_role("link", name="All points together").click()
+    expect(page.get_by_role("link", name="Hollin Vale Creamery")).to_contain_text("of 11 right")
