@@ -45,10 +45,17 @@ def _input(writing: Stating, result: Body) -> Body:
         "chloride": chloride_known(species, field),
         "conductivity_us_cm": measured.value(field.get("conductivity_us_cm"), "uS/cm"),
         "species": {name: species[name]["given"] for name in CORRECTABLE if name in species},
+        "doubts": list(sample.get("doubts", [])),
         "gate_note": ((run.get("gates") or {}).get("chloride_within_limit") or {}).get("note", ""),
         "run_day": day_of(run),
         "detection_limit": in_force(writing, run),
     }
+
+
+def of_meter(change: Change, meter: str) -> Iterator[str]:
+    """Yield the results whose field readings a check of a meter may cast doubt on."""
+    for used in (change.get("meter", meter) or {}).get("samples", []):
+        yield from (change.get("sample", used["sample"]) or {}).get("results", [])
 
 
 def over_limit(change: Change, run: Body) -> list[str]:
@@ -148,6 +155,6 @@ def qualify(writing: Stating, id_: str) -> None:
         "qualifiers": [asdict(letter)] if letter else [],
         "corrected": corrected,
         "detection_limit": limit,
-        "words": [*words, *of_limit],
+        "words": [*words, *of_limit, *(f"Field reading in doubt: {one}." for one in given["doubts"])],
     }
     writing.state("result.qualified", id_, body)

@@ -85,6 +85,8 @@ def due(change: Change) -> Iterator[Due]:
         yield Sum.TAKE_TUBE, f"{about} {change.body['row']}"
     elif kind == "study.finished":
         yield Sum.COMPUTE_LIMIT, about
+    elif kind == "meter.checked":
+        yield from ((Sum.QUALIFY, id_) for id_ in interferences.of_meter(change, about))
     elif kind in ("bottle.measured", "sample.taken"):
         yield from ((Sum.QUALIFY, id_) for id_ in interferences.of_bottle(change, change.body["bottle"]))
     elif kind in ("point.registered", "result.recorded", "result.reviewed", "run.calculated"):

@@ -23,6 +23,7 @@ function Row({ sample }) {
     <div class="row spread"><strong class="code">${sample.bottle}</strong><${Where} about=${sample.id} /></div>
     <div>${point ? html`<a class="inline" href=${cardOf(sample.point)}>${nameOf(point)}</a>` : "a point that is not on this tablet"}</div>
     <div class="under"><span>${dayAndTime(sample.collected_at, zone)}, ${sample.state}${sample.holder ? ` (${sample.holder})` : ""}</span><${Hold} sample=${sample} /></div>
+    ${sample.doubts?.map((words) => html`<div class="above" key=${words}>▲ ${words}</div>`)}
     ${sample.plan && html`<div class="under"><span>plan: ${dilution(sample.plan.dilution_factor)}${sample.plan.chosen_by === "person" ? `, chosen by ${sample.by_name || "a person"}` : ""}</span></div>`}
   </li>`;
 }

@@ -251,3 +251,18 @@ def test_a_failed_check_flags_every_reading_since_the_last_good_one(ready: Desk,
     assert ready.get("sample", "early")["doubts"] == []
     assert ready.get("sample", "later")["doubts"] == ["pH: Field meter 3 failed its check afterwards"]
     assert ready.get("meter", "meter")["checks"][-1]["words"] == ["0.2 pH off at 7, more than 0.1 pH"]
+
+
+def test_a_doubt_that_comes_after_the_result_stands_beside_it(ready: Desk) -> None:
+    d = ready.device
+    ready.tell(d.make("instrument.added", "meter", {"name": "Field meter 3", "what": "meter"}))
+    taken = sample(ready, "s", CODES[0], meter="meter", collected_at="2031-05-29T09:00:00-06:00")
+    rest = [devices.received(d, CODES[0]), devices.planned(d, "r", CODES[0]), *devices.heated(d, "r")]
+    assert set(ready.held(taken, *rest, *devices.read(d, "r"))) == {None}
+    result = f"r:{CODES[0]}"
+    assert "in doubt" not in " ".join(ready.get("result", result)["beside"])
+    before = ready.get("result", result)["shown"]
+    assert ready.held(check(ready, "2031-05-29T15:00:00-06:00", "7.2")) == [None]
+    words = " ".join(ready.get("result", result)["beside"])
+    assert "Field reading in doubt: pH: Field meter 3 failed its check afterwards." in words
+    assert ready.get("result", result)["shown"] == before
