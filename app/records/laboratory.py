@@ -243,7 +243,7 @@ def calculate_run(writing: Stating, id_: str) -> None:
         "answer": answer,
         "tubes": _tubes_found(run, given, answer, capacity),
         "results": [_result(writing, id_, run, recipe, settings, one, answer) for one in answer["samples"]],
-        "waste": _waste(run, recipe),
+        "waste": waste_of(run, recipe),
         "bracketing": _bracketing(run, answer),
     }
     writing.state("run.calculated", id_, body)
@@ -261,7 +261,8 @@ def _bracketing(run: Body, answer: Body) -> Body:
     return {name: list(dict.fromkeys(codes)) for name, codes in found.items()}
 
 
-def _waste(run: Body, recipe: Body) -> Body:
+def waste_of(run: Body, recipe: Body) -> Body:
+    """Return what a run's tubes add to their container, from recipe x tubes."""
     total = waste.totals(waste.per_tube(Recipe(**recipe_input(recipe))), len(run["tubes"]))
     return asdict(total)
 

@@ -6,6 +6,7 @@ import { Empty, Frame, Where } from "../parts/frame.js";
 import { all, one, programme, useView } from "../parts/view.js";
 import { useWords } from "../parts/words.js";
 import { again } from "./again.js";
+import { Due } from "./due.js";
 import { dueList } from "./duties.js";
 import { heatedAt, span, useNow } from "./timer.js";
 
@@ -67,7 +68,7 @@ export function Home() {
   const done = runs.filter((run) => !OPEN.has(run.state)).slice(0, 6);
   return html`<${Frame} place="bench" title="What waits" about=${settings?.laboratory}>
     <div class="stack">
-      <div class="row"><a class="button" href="/bench/receive">Receive a bottle</a><a class="button" href="/bench/plan">Plan a run</a><a class="button" href="/bench/stores">Stores</a><a class="button" href="/bench/measure">Chloride and others</a><a class="button" href="/bench/studies">Detection limits</a></div>
+      <div class="row"><a class="button" href="/bench/receive">Receive a bottle</a><a class="button" href="/bench/plan">Plan a run</a><a class="button" href="/bench/stores">Stores</a><a class="button" href="/bench/waste">Waste</a><a class="button" href="/bench/measure">Chloride and others</a><a class="button" href="/bench/studies">Detection limits</a></div>
       <${DueSoon} zone=${settings?.zone} />
       <h2>Runs</h2>
       ${open.length ? html`<nav class="list" aria-label="Open runs">${open.map((run) => html`<${RunRow} key=${run.id} run=${run} zone=${settings?.zone} />`)}</nav>`
@@ -75,6 +76,7 @@ export function Home() {
       <h2>Bottles</h2>
       ${bottles.length ? html`<nav class="list" aria-label="Bottles that wait">${bottles.map((bottle) => html`<${BottleRow} key=${bottle.code} bottle=${bottle} />`)}</nav>`
         : html`<${Empty} title="No bottle waits">Bottles appear when they were taken or handed over; any bottle with a code can be received.<//>`}
+      <${Due} />
       ${done.length > 0 && html`<h2>Finished</h2><nav class="list" aria-label="Finished runs">${done.map((run) => html`<${RunRow} key=${run.id} run=${run} zone=${settings?.zone} />`)}</nav>`}
       <p><a href="/emergency">Emergency and first aid</a></p>
     </div><//>`;

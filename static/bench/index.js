@@ -3,6 +3,7 @@
 import { html } from "../parts/html.js";
 import { Home } from "./home.js";
 import { Measure } from "./measure.js";
+import { Instrument } from "./instruments.js";
 import { Plan } from "./plan.js";
 import { Receive } from "./receive.js";
 import { RecipePage } from "./recipes.js";
@@ -10,6 +11,7 @@ import { Run } from "./run.js";
 import { AddCalibration } from "./calibration.js";
 import { CurvePage } from "./curve_page.js";
 import { AddThing, Stores } from "./stores.js";
+import { Waste } from "./waste.js";
 import { PlanStudy, Studies } from "./studies.js";
 import { Study } from "./study.js";
 
@@ -24,6 +26,8 @@ export function bench([what, id]) {
   if (what === "studies") return id === "new" ? html`<${PlanStudy} />` : html`<${Studies} />`;
   if (what === "study") return html`<${Study} key=${id} id=${id} />`;
   if (what === "run") return html`<${Run} key=${id} id=${id} />`;
+  if (what === "waste") return html`<${Waste} />`;
+  if (what === "instrument" && id) return html`<${Instrument} key=${id} id=${id} />`;
   if (what === "curve" && id) return html`<${CurvePage} key=${id} id=${id} />`;
   if (what === "recipe" && id) return html`<${RecipePage} key=${id} id=${id} />`;
   if (what === "stores" && id === "calibration") return html`<${AddCalibration} />`;

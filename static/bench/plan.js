@@ -87,7 +87,7 @@ function useStores(v) {
   const curves = useView(() => (recipe ? curvesFor(recipe.id, today) : []));
   const curve = curves.find((row) => row.id === chosen(v.calibration, curves));
   const blocks = useView(() => all("instrument")).filter((row) => row.what === "block");
-  const containers = useView(() => all("container")).filter((row) => row.filled_ml < row.capacity_ml);
+  const containers = useView(() => all("container")).filter((row) => row.filled_ml < row.capacity_ml && (row.state ?? "in use") === "in use");
   return { recipes, recipe, lots, curves, curve, blocks, containers, block: chosen(v.block, blocks), container: chosen(v.container, containers) };
 }
 

@@ -11,8 +11,8 @@ import { useWords } from "../parts/words.js";
 import { CurveRow } from "./curve_page.js";
 import { AddRecipe, RecipeRow } from "./recipes.js";
 
-function Rows({ title, rows, words, what }) {
-  return html`<h2>${title}</h2>${rows.length ? html`<ul class="plain list">${rows.map((row) => html`<li class="item" key=${row.id}><strong>${row.name}</strong><div class="soft">${words(row)}</div>${what === "container" && !row.local && html`<a href="/api/papers/container/${encodeURIComponent(row.id)}.pdf" target="_blank">Waste label to print</a>`}${what === "lot" && !row.local && html`<a href="/api/papers/lot/${encodeURIComponent(row.id)}.pdf" target="_blank">Reagent labels to print</a>`}</li>`)}</ul>` : html`<${Empty} title="None yet">Add the first one.<//>`}
+function Rows({ title, rows, words, what, to }) {
+  return html`<h2>${title}</h2>${rows.length ? html`<ul class="plain list">${rows.map((row) => html`<li class="item" key=${row.id}>${to ? html`<a class="inline" href=${to(row)}><strong>${row.name}</strong></a>` : html`<strong>${row.name}</strong>`}<div class="soft">${words(row)}</div>${what === "container" && !row.local && html`<a href="/api/papers/container/${encodeURIComponent(row.id)}.pdf" target="_blank">Waste label to print</a>`}${what === "lot" && !row.local && html`<a href="/api/papers/lot/${encodeURIComponent(row.id)}.pdf" target="_blank">Reagent labels to print</a>`}</li>`)}</ul>` : html`<${Empty} title="None yet">Add the first one.<//>`}
     <a class="button" href="/bench/stores/${what}">Add</a>`;
 }
 
@@ -29,7 +29,7 @@ export function Stores() {
     <h2>Recipes</h2>${recipes.length ? html`<ul class="plain list">${recipes.map((recipe) => html`<${RecipeRow} key=${recipe.id} recipe=${recipe} />`)}</ul>` : html`<${Empty} title="No recipe yet">Everything a tube can do follows from it.<//>`}
     <a class="button" href="/bench/stores/recipe">Adopt a recipe</a>
     <${Rows} title="Reagent lots" what="lot" rows=${useView(() => all("lot"))} words=${lotWords} />
-    <${Rows} title="Instruments" what="instrument" rows=${useView(() => all("instrument"))} words=${(row) => `${row.what}${row.positions ? `, ${row.positions} positions` : ""}`} />
+    <${Rows} title="Instruments" what="instrument" to=${(row) => `/bench/instrument/${encodeURIComponent(row.id)}`} rows=${useView(() => all("instrument"))} words=${(row) => `${row.what}${row.positions ? `, ${row.positions} positions` : ""}`} />
     <h2>Curves</h2>${curves.length ? html`<ul class="plain list">${curves.map((curve) => html`<${CurveRow} key=${curve.id} curve=${curve} />`)}</ul>` : html`<${Empty} title="No curve yet">A run needs one: standards of its recipe, lot and photometer.<//>`}<a class="button" href="/bench/stores/calibration">Enter a calibration</a>
     <${Rows} title="Waste containers" what="container" rows=${useView(() => all("container"))} words=${filled} />
     <p><a href="/bench">Back to what waits</a> · <a href="/emergency">Emergency and first aid</a></p></div><//>`;

@@ -7,7 +7,7 @@ const KINDS = new Map(Object.entries({
   "readings.finished": "Readings finished", "run.closed": "Run closed", "result.reviewed": "Result reviewed",
   "entry.settled": "Entry settled", "discharger.registered": "Discharger registered", "point.registered": "Point registered",
   "limit.set": "Limit set", "recipe.adopted": "Recipe adopted", "lot.made": "Lot made", "instrument.added": "Instrument added",
-  "container.opened": "Container opened", "calibration.made": "Calibration made", "curve.checked": "Curve checked", "result.recorded": "Result recorded",
+  "container.opened": "Container opened", "calibration.made": "Calibration made", "curve.checked": "Curve checked", "container.moved": "Container moved", "waste.added": "Waste added", "instrument.checked": "Instrument checked", "result.recorded": "Result recorded",
   "settings.changed": "Settings changed", "round.planned": "Round planned", "round.changed": "Round changed", "visit.begun": "Visit begun",
   "visit.ended": "Visit ended", "gas.tested": "Gas tested", "gas.confirmed": "Confirmed after a gas alarm", "flow.measured": "Flow measured",
   "sampler.set": "Sampler set", "sample.split": "Sample split", "meter.checked": "Meter checked",

@@ -110,10 +110,14 @@ const KINDS = new Map(Object.entries({
     layer.put("recipe", about, { ...body, ...numbers, digestion_acid_ml_per_l: acid === null ? null : number(acid), tube: body.tube ?? "", derived: null });
   },
   "lot.made": (layer, { about }, body) => layer.put("lot", about, { origin: "made", standardised_on: null, standardised: "", ...body }, { parent: body.recipe, at: body.made_on }),
-  "instrument.added": (layer, { about }, body) => layer.put("instrument", about, { positions: null, ...body }),
+  "instrument.added": (layer, { about }, body) => layer.put("instrument", about, { positions: null, ...body, checks: [] }),
+  "instrument.checked": (layer, { about, by }, body) => layer.update("instrument", about, (row) => ({ checks: [...row.checks, { ...body, by: layer.name(by) }] })),
+  "container.moved": (layer, { about, at, by }, body) => layer.update("container", about, (row) => ({
+    state: body.to, moves: [...row.moves, { ...body, recorded_by: layer.name(by), at }],
+  })),
   "container.opened": (layer, { about, at }, body) => layer.put("container", about, {
     name: body.name, capacity_ml: number(body.capacity_ml), filled_ml: 0, mercury_mg: 0, chromium_mg: 0, silver_mg: 0,
-    acid_reagent_ml: 0, sulfuric_acid_g: 0, mass_g: 0, tubes: 0, runs: [], opened_at: at,
+    acid_reagent_ml: 0, sulfuric_acid_g: 0, mass_g: 0, tubes: 0, runs: [], opened_at: at, state: "in use", moves: [], clock: null,
   }),
   "calibration.made": (layer, { about, at, by }, body) => layer.put("calibration", about, {
     weights: "equal", ...body, wavelength_nm: number(body.wavelength_nm), made_at: at, made_by: layer.name(by), fitted: null,

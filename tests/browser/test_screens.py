@@ -33,6 +33,8 @@ SCREENS = (
     "/bench/stores",
     "/bench/stores/recipe",
     "/bench/recipe/high",
+    "/bench/waste",
+    "/bench/instrument/block",
     "/bench/curve/curve",
     "/bench/stores/calibration",
     "/bench/plan",

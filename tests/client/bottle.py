@@ -70,6 +70,11 @@ def _setting_up() -> Iterator[tuple[str, str, dict[str, Any]]]:
     yield "instrument.added", "i1", {"name": "Photometer", "what": "photometer"}
     yield "instrument.added", "i2", {"name": "Block", "what": "block", "positions": 25}
     yield "container.opened", "c1", {"name": "12", "capacity_ml": "5000"}
+    move = {"to": "over the limit", "on": "2026-11-02", "by": "", "manifest": "", "note": ""}
+    yield "container.opened", "c2", {"name": "13", "capacity_ml": "5000"}
+    yield "container.moved", "c2", move
+    probe = {"what": "block temperature", "on": "2026-11-02", "wanted": "150", "found": ["150,4"]}
+    yield "instrument.checked", "i2", {**probe, "water_c": None, "next_on": "2027-02-01", "note": ""}
     made = {"recipe": "r1", "lot": "l1", "instrument": "i1", "wavelength_nm": "600", "model": "linear"}
     standards = [{"cod": cod, "absorbance": [read]} for cod, read in STANDARDS.items()]
     yield "calibration.made", "k1", {**made, "valid_until": "2027-01-01", "standards": standards}

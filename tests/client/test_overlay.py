@@ -24,6 +24,7 @@ ONLY_THE_SERVER = {
     "calibration": {"fitted"},
     "sample": {"hold_until"},
     "meter": {"samples"},
+    "container": {"clock"},
     "study": {"gaps", "plan"},
 }
 # What a flow and a check amount to is worked out beside them on the tablet, and stated by the server.
@@ -31,6 +32,7 @@ WORKED_OUT = {
     "visit": ("flows", {"status", "l_s", "rating", "words", "error_percent", "volume_l", "meter_percent"}),
     "meter": ("checks", {"ok", "words"}),
     "calibration": ("checks", {"judged"}),
+    "instrument": ("checks", {"ok", "words"}),
 }
 TYPES = (
     "round",

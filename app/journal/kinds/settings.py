@@ -6,11 +6,13 @@ beside the verdict it decided.
 
 from __future__ import annotations
 
+from dataclasses import asdict
 from typing import Any
 
 from marshmallow import fields, validate
 
 from app.journal.kinds import Body
+from app.safety.accumulation import FEDERAL
 
 
 def _share(**kwargs: Any) -> fields.Float:
@@ -27,6 +29,20 @@ class Repeatability(Body):
     a = fields.Float(required=True, validate=validate.Range(min=0, max=1000))
     k = _share(required=True)
     dof = fields.Float(required=True, allow_none=True, validate=validate.Range(min=1))
+
+
+class WasteRules(Body):
+    """Thresholds and days of hazardous waste; state and local rules decide."""
+
+    small_above_kg = fields.Float(validate=validate.Range(min=0))
+    large_from_kg = fields.Float(validate=validate.Range(min=0))
+    acute_above_kg = fields.Float(validate=validate.Range(min=0))
+    small_days = fields.Integer(strict=True, validate=validate.Range(min=1, max=3650))
+    small_far_days = fields.Integer(strict=True, validate=validate.Range(min=1, max=3650))
+    large_days = fields.Integer(strict=True, validate=validate.Range(min=1, max=3650))
+    satellite_l = fields.Float(validate=validate.Range(min=0))
+    satellite_days = fields.Integer(strict=True, validate=validate.Range(min=1, max=365))
+    note = fields.String(validate=validate.Length(max=300))
 
 
 class Settings(Body):
@@ -47,6 +63,7 @@ class Settings(Body):
     )
     decision_rule = fields.String(validate=validate.OneOf(["simple", "guarded", "guarded_rejection"]))
     address = fields.String(validate=validate.Length(max=300))
+    waste = fields.Nested(WasteRules)
 
 
 DEFAULTS: dict[str, Any] = {
@@ -63,4 +80,5 @@ DEFAULTS: dict[str, Any] = {
     "dilutions": [1.0, 2.0, 4.0, 5.0, 10.0, 20.0, 25.0, 50.0, 100.0],
     "decision_rule": "simple",  # ILAC-G8:09/2019, 4.2.1
     "address": "",
+    "waste": asdict(FEDERAL),  # 40 CFR 260.10, 262.13 to 262.17: the federal defaults
 }

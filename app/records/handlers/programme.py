@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from app.journal import measured
+from app.journal.kinds.settings import DEFAULTS
 from app.records.change import Change, Refused
 from app.records.handlers import handles
 
@@ -12,20 +13,16 @@ def programme_started(change: Change) -> None:
     """One programme a server."""
     if change.find("programme"):
         raise Refused("already_started", "A programme runs on this server already.")
-    change.put("programme", change.entry.about, {**change.body, "started_at": change.entry.at})
+    # A programme that began before a setting existed has its default.
+    settings = DEFAULTS | change.body["settings"]
+    body = {**change.body, "settings": settings, "started_at": change.entry.at}
+    change.put("programme", change.entry.about, body)
 
 
 @handles("settings.changed")
 def settings_changed(change: Change) -> None:
     """The named settings take their new values; the others stay."""
     body = change.need("programme", change.entry.about)
-    unknown = sorted(set(change.body["settings"]) - set(body["settings"]))
-    if unknown:
-        raise Refused(
-            "unknown_setting",
-            f"There is no setting {', '.join(unknown)}.",
-            {f"settings.{name}": ["Not a setting of the programme."] for name in unknown},
-        )
     body["settings"] |= change.body["settings"]
     change.update("programme", change.entry.about, body)
 

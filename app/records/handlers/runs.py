@@ -16,6 +16,8 @@ from app.records.change import Body, Change, Refused
 from app.records.handlers import handles
 from app.records.handlers.curves import wrong_curve
 from app.records.handlers.field import bottle, put_bottle
+from app.records.handlers.waste import DIGEST, add_to_month, day_of
+from app.records.laboratory import waste_of
 from app.safety import gates as safety
 
 STAGES = ("planned", "heating", "cooling", "reading", "calculated", "closed", "failed")
@@ -77,6 +79,8 @@ def _check_plan(change: Change, body: Body) -> None:
     wrong = _wrong_tubes(body["tubes"])
     if curve := wrong_curve(change, body):
         wrong["calibration"] = curve
+    if change.need("container", body["container"])["state"] != "in use":
+        wrong["container"] = ["It takes no more waste: choose another."]
     if change.need("lot", body["lot"])["recipe"] != body["recipe"]:
         wrong["lot"] = ["It belongs to another recipe."]
     if wrong:
@@ -303,9 +307,11 @@ def run_closed(change: Change, run: Body) -> None:
 
 def _fill_container(change: Change, run: Body) -> None:
     container = change.need("container", run["container"])
+    if run["waste"] is None:
+        # The tubes of a digestion that failed are waste like any others.
+        run["waste"] = waste_of(run, change.need("recipe", run["recipe"]))
     waste = run["waste"]
-    if waste is None:
-        return
+    add_to_month(change, day_of(change), DIGEST, waste["mass_g"] / 1000.0)
     for name in ("mercury_mg", "chromium_mg", "silver_mg", "acid_reagent_ml", "sulfuric_acid_g", "mass_g"):
         container[name] += waste[name]
     container["filled_ml"] += waste["volume_ml"]

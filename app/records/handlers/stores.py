@@ -61,7 +61,7 @@ def lot_made(change: Change) -> None:
 @handles("instrument.added")
 def instrument_added(change: Change) -> None:
     """An instrument."""
-    change.put("instrument", change.entry.about, {"positions": None, **change.body})
+    change.put("instrument", change.entry.about, {"positions": None, **change.body, "checks": []})
 
 
 @handles("container.opened")
@@ -80,5 +80,8 @@ def container_opened(change: Change) -> None:
         "tubes": 0,
         "runs": [],
         "opened_at": change.entry.at,
+        "state": "in use",
+        "moves": [],
+        "clock": None,
     }
     change.put("container", change.entry.about, body)
