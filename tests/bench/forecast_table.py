@@ -83,7 +83,7 @@ def table(data: Path) -> Iterator[str]:
     points = points_of(data / RIVERS)
     right = first_five(points)
     share = 100 * sum(right) / (5 * len(points))
-    yield f"a new river's first five samples, the others learnt from: {share:.1f} % right; each of the five: {right}"
+    yield f"a new river's first five samples, learnt from the others: {share:.1f} % right; by sample {right}"
 
 
 def main(folder: str) -> int:
