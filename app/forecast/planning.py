@@ -218,7 +218,7 @@ def _split(plans: Sequence[Plan], best: Plan | None, replicates: int) -> Split |
     inside = np.maximum(high - low, 0.0)
     shared = np.minimum(high[:, None], high) - np.maximum(low[:, None], low)
     together = np.triu(inside[:, None] + inside - np.maximum(shared, 0.0), 1)
-    i, j = divmod(int(np.argmax(together)), len(places))
+    i, j = divmod(int(np.argmax(np.round(together, 9))), len(places))
     chance = float(together[i, j])
     each = max(min(replicates, 2), math.ceil(replicates / 2))
     tubes = 2 * each / max(chance, LEAST_CHANCE)

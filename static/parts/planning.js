@@ -67,7 +67,7 @@ function splitOf(plans, best, replicates) {
   usable.forEach(([a, i], k) => usable.slice(k + 1).forEach(([b, j]) => {
     const shared = Math.min(1 - a.p_over, 1 - b.p_over) - Math.max(a.p_below, b.p_below);
     const together = a.p_in_range + b.p_in_range - Math.max(shared, 0);
-    if (together > chance) [chance, pair] = [together, [i, j]];
+    if (ninth(together) > ninth(chance)) [chance, pair] = [together, [i, j]];
   }));
   const each = Math.max(Math.min(replicates, 2), Math.ceil(replicates / 2));
   const tubes = (2 * each) / Math.max(chance, LEAST_CHANCE);
