@@ -22,7 +22,6 @@ ISO 8466-1; Eurachem/CITAC Guide CG 4 (QUAM), E.4 and A5.
 from __future__ import annotations
 
 import math
-import sys
 from collections.abc import Sequence
 from dataclasses import dataclass, replace
 from typing import Any
@@ -42,7 +41,7 @@ FEWEST_LEVELS = 5
 SMALLEST = 1e-6
 #: A sum of squares under this share of the total is rounding, not scatter.
 ROUNDING = 1e-24
-EPSILON = sys.float_info.epsilon
+EPSILON = math.ulp(1.0)
 TOO_FAR_APART = "The numbers of these standards lie too far apart to make a curve."
 PARAMETERS: dict[str, int] = {"linear": 2, "quadratic": 3}
 
