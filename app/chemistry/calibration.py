@@ -41,7 +41,7 @@ FEWEST_LEVELS = 5
 SMALLEST = 1e-6
 #: A sum of squares under this share of the total is rounding, not scatter.
 ROUNDING = 1e-24
-EPSILON = float(np.finfo(np.float64).eps)
+EPSILON = math.ulp(1.0)
 TOO_FAR_APART = "The numbers of these standards lie too far apart to make a curve."
 PARAMETERS: dict[str, int] = {"linear": 2, "quadratic": 3}
 

@@ -25,12 +25,14 @@ from dataclasses import dataclass
 import numpy as np
 from scipy import special
 
-from app.forecast.wandering import SCORE_KEEPS, Filtered, Past, faded
+from app.forecast.wandering import Filtered, Past, faded
 
 TAIL_DOF = 8.0
 #: How many results "no shift" counts for.
 SHIFT_COUNT = 100.0
 #: Factors of the width that are weighed, and their weights before any result.
+#: What a result's say about the width keeps with each later one.
+WIDTH_KEEPS = 0.995
 WIDTHS = np.array([0.8, 0.9, 1.0, 1.1, 1.25])
 FIRST_WEIGHTS = np.array([1.0, 2.0, 3.0, 2.0, 1.0]) / 9.0
 
@@ -77,7 +79,7 @@ def _width(error: np.ndarray, dof: np.ndarray, free: np.ndarray) -> np.ndarray:
     """Return the geometric mean of the widths, weighed by how well each told the past."""
     half = 0.5 * (dof + 1.0)
     scores = -half[:, None] * np.log1p((error[:, None] / WIDTHS) ** 2 / dof[:, None]) - np.log(WIDTHS)
-    logs = np.log(FIRST_WEIGHTS) + faded(scores * free[:, None], SCORE_KEEPS)
+    logs = np.log(FIRST_WEIGHTS) + faded(scores * free[:, None], WIDTH_KEEPS)
     found: np.ndarray = np.exp(special.softmax(logs, axis=1) @ np.log(WIDTHS))
     return found
 

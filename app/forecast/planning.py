@@ -173,16 +173,30 @@ def _objections(one: Range, factor: float, chain: Chain | None, sample: Sample) 
     return (*found, *_too_little(chain, sample))
 
 
+def _not_made(chain: Chain | None, shelf: Shelf | None) -> tuple[str, ...]:
+    return (
+        ("the glassware at hand does not make this dilution",) if shelf is not None and chain is None else ()
+    )
+
+
 def _chain(factor: float, shelf: Shelf, sample: Sample) -> Chain | None:
     chains = chains_for(factor, shelf.pipettes_ml, shelf.flasks_ml, sample.solids)
     fitting = (c for c in chains if sample.volume_ml is None or c.transfer_ml <= sample.volume_ml)
     return next(fitting, chains[0] if chains else None)
 
 
-def _plan(one: Range, factor: float, below: float, over: float, chain: Chain | None, sample: Sample) -> Plan:
+def _plan(
+    one: Range,
+    factor: float,
+    ends: tuple[float, float],
+    chain: Chain | None,
+    sample: Sample,
+    shelf: Shelf | None,
+) -> Plan:
+    below, over = ends
     inside = max(0.0, 1.0 - below - over)
     tubes = sample.replicates / inside if inside > LEAST_CHANCE else None
-    objections = _objections(one, factor, chain, sample)
+    objections = (*_objections(one, factor, chain, sample), *_not_made(chain, shelf))
     return Plan(
         one.name,
         factor,
@@ -218,7 +232,7 @@ def _split(plans: Sequence[Plan], best: Plan | None, replicates: int) -> Split |
     inside = np.maximum(high - low, 0.0)
     shared = np.minimum(high[:, None], high) - np.maximum(low[:, None], low)
     together = np.triu(inside[:, None] + inside - np.maximum(shared, 0.0), 1)
-    i, j = divmod(int(np.argmax(together)), len(places))
+    i, j = divmod(int(np.argmax(np.round(together, 9))), len(places))
     chance = float(together[i, j])
     each = max(min(replicates, 2), math.ceil(replicates / 2))
     tubes = 2 * each / max(chance, LEAST_CHANCE)
@@ -247,7 +261,9 @@ def plan(
     sample : Sample, optional
         What else is known of it; nothing without.
     shelf : Shelf, optional
-        Glassware for the steps; a small laboratory's without.
+        Glassware at hand, so that a factor it does not make is not usable.
+        Without, steps are found from a small laboratory's, and any factor may
+        be made by other means.
 
     Returns
     -------
@@ -258,18 +274,18 @@ def plan(
     InputError
         If there is no range or no dilution, or a factor is under 1.
     """
-    sample, shelf = sample or Sample(), shelf or Shelf()
+    sample, glass = sample or Sample(), shelf or Shelf()
     factors = (
-        factors_of(shelf.pipettes_ml, shelf.flasks_ml, sample.solids) if dilutions is None else dilutions
+        factors_of(glass.pipettes_ml, glass.flasks_ml, sample.solids) if dilutions is None else dilutions
     )
     if not ranges or not factors or any(not math.isfinite(f) or f < 1 for f in factors):
         raise InputError("A plan needs a range and dilutions of 1 or more.", {"dilutions": ["1 or more"]})
-    chains = [_chain(factor, shelf, sample) for factor in factors]
+    chains = [_chain(factor, glass, sample) for factor in factors]
     below = predictive.below([one.low * factor for one in ranges for factor in factors])
     under = predictive.below([one.high * factor for one in ranges for factor in factors])
     each = [(one, factor, chain) for one in ranges for factor, chain in zip(factors, chains, strict=True)]
     plans = tuple(
-        _plan(one, factor, float(below[i]), 1.0 - float(under[i]), chain, sample)
+        _plan(one, factor, (float(below[i]), 1.0 - float(under[i])), chain, sample, shelf)
         for i, (one, factor, chain) in enumerate(each)
     )
     usable = [p for p in plans if p.usable and p.expected_tubes is not None]

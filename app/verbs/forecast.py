@@ -49,12 +49,12 @@ def _plan(one: Plan) -> dict[str, Any]:
     }
 
 
-def _shelf(given: dict[str, Any]) -> Shelf:
+def _shelf(given: dict[str, Any]) -> Shelf | None:
     told = given["glassware"]
     if given["dilutions"] is None and told is None:
         words = "give dilutions, or glassware to find steps from"
         raise InputError("Nothing was planned.", {"dilutions": [words]})
-    return Shelf(tuple(told["pipettes_ml"]), tuple(told["flasks_ml"])) if told else Shelf()
+    return Shelf(tuple(told["pipettes_ml"]), tuple(told["flasks_ml"])) if told else None
 
 
 def _programme(told: Any) -> Programme:

@@ -2,11 +2,16 @@
 
 from __future__ import annotations
 
+import math
+
 from app.chemistry import rounding
 from app.documents import data as paper
 from app.records.change import Body
 from app.records.laboratory import standards
 from app.records.ledger import Writing
+
+#: 95 % point of the normal distribution.
+Z_95 = 1.6448536269514722
 
 _WORDS = {
     "line": ("calibration line", "scatter of the standards about the curve"),
@@ -68,8 +73,22 @@ def _facts(fitted: Body) -> tuple[paper.Measured, ...]:
     return tuple(facts)
 
 
+def _expected(plan: Body) -> tuple[tuple[float, float], ...]:
+    """Return the density of what was expected at the point, over mg/L.
+
+    The plan keeps the median and the ends that nine in ten lie between; drawn
+    is the lognormal density through them.
+    """
+    low, middle, high = (plan.get(name) for name in ("low", "median", "high"))
+    if not (low and middle and high) or not low < middle < high:
+        return ()
+    spread = math.log(high / low) / (2 * Z_95)
+    steps = [i / 20 for i in range(-60, 61)]
+    return tuple((middle * math.exp(z * spread), math.exp(-0.5 * z * z)) for z in steps)
+
+
 def strip_of(result: Body, recipe: Body, sample: Body) -> paper.Strip:
-    """Return the strip: the method's window for this dilution, the limits and the result."""
+    """Return the strip: what was expected, the window of this dilution, the limits and the result."""
     factor = result["dilution_factor"]
     plan: Body = sample["plan"] or {}
     chance = plan.get("p_in_range") if plan.get("dilution_factor") == factor else None
@@ -90,6 +109,7 @@ def strip_of(result: Body, recipe: Body, sample: Body) -> paper.Strip:
     half = result["expanded_u"] or 0.0
     shown = (result["cod"] - half, result["cod"] + half) if bound is None else (bound, bound)
     return paper.Strip(
+        density=_expected(plan),
         bars=(bar,),
         limits=marks,
         result=(bound if bound is not None else result["cod"], *shown),

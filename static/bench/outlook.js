@@ -42,6 +42,6 @@ export function Outlook({ bottle, factor, recipe }) {
   const best = choiceOf(forecast, recipe.id);
   const other = best && best.expected_tubes < 0.95 * (plan.expected_tubes ?? Infinity) ? ` The forecast would take ${dilution(best.factor)}: ${percent(best.share)}.` : "";
   return html`<div class="stack"><${Strip} predictive=${forecast.predictive} bars=${around(plans, factor)} limit=${limitOf(bottle.place)?.value ?? null} />
-    <p>Expected ${rough(forecast.median)} mg/L, nine in ten between ${rough(forecast.low)} and ${rough(forecast.high)}. <strong>${dilution(factor)}: ${percent(plan.share)} in range</strong>, ${percent(plan.p_over)} over, ${percent(plan.p_below)} under.${other} <span class="soft">${costWords(plan)}</span></p>
+    <p>Expected ${rough(forecast.median)} mg/L, nine in ten between ${rough(forecast.low)} and ${rough(forecast.high)}. <strong>${dilution(factor)}: ${percent(plan.share)} in range</strong>, ${percent(plan.p_over)} over, ${percent(plan.p_below)} under.${other} <span class="soft">${[costWords(plan), ...forecast.split].join(" ")}</span></p>
     ${[...plan.objections, ...forecast.alarms].map((words) => html`<p class="above" key=${words}>▲ ${words}</p>`)}</div>`;
 }

@@ -76,7 +76,7 @@ export function Expected({ point, values, set }) {
       ${plan && html`<${Dilution} plan=${plan} chosen=${true} />`}
       <${Another} forecast=${null} values=${values} set=${set} /></section>`;
   }
-  const soft = [...(plan?.needed_ml ? [`${costWords(plan)} ${bringWords(plan)}`] : []), ...forecast.reasons, ...forecast.notes];
+  const soft = [...(plan?.needed_ml ? [`${costWords(plan)} ${bringWords(plan)}`] : []), ...forecast.reasons, ...forecast.split, ...forecast.notes];
   return html`<section class="card stack" aria-label="Expectation">
     <${Figure} forecast=${forecast} plan=${plan} />
     <${Strip} predictive=${forecast.predictive} bars=${plan ? around(plansOf(forecast), plan.factor) : []} limit=${limitOf(point)?.value ?? null} />

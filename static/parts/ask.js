@@ -113,12 +113,13 @@ export function forecastOf(point, { field, activity = null, at = Date.now(), chl
   const plans = made.plans.map((one_) => told(one_, recipes));
   const choice = made.choice && told(made.choice, recipes);
   const ends = { low: predictive.quantile(0.05), high: predictive.quantile(0.95) };
-  const reasons = choice && [...smallerWords(plans, choice), ...otherWords(plans, choice), ...splitWords(made.split, plans, choice)];
+  const judged = one("trust", point.id);
   return {
     predictive, median: predictive.quantile(0.5), ...ends, plans, choice, factors, shifted: Object.keys(readings).length > 0 || activity !== null,
-    why: choice ? whyOf(choice) : recipes.length ? againstWords(plans) : "", reasons: reasons ?? [], severalRanges: recipes.length > 1,
+    why: choice ? whyOf(choice) : recipes.length ? againstWords(plans) : "", split: choice ? splitWords(made.split, plans, choice) : [],
+    reasons: choice ? [...smallerWords(plans, choice), ...otherWords(plans, choice)] : [], severalRanges: recipes.length > 1,
     worth: seen || !choice ? "" : worthWords(worthMeasuring(outlook.pack, now, made, ranges), ends), alarms: before.bounded.map(boundedWords),
-    notes: [...basisWords(outlook), ...(recipes.length ? [] : ["The laboratory has adopted no recipe yet: the dilution follows once it has."])],
+    notes: [...basisWords(outlook), ...(judged?.predictable === false ? judged.words.slice(0, 1) : []), ...(recipes.length ? [] : ["The laboratory has adopted no recipe yet: the dilution follows once it has."])],
   };
 }
 

@@ -67,7 +67,7 @@ function splitOf(plans, best, replicates) {
   usable.forEach(([a, i], k) => usable.slice(k + 1).forEach(([b, j]) => {
     const shared = Math.min(1 - a.p_over, 1 - b.p_over) - Math.max(a.p_below, b.p_below);
     const together = a.p_in_range + b.p_in_range - Math.max(shared, 0);
-    if (together > chance) [chance, pair] = [together, [i, j]];
+    if (ninth(together) > ninth(chance)) [chance, pair] = [together, [i, j]];
   }));
   const each = Math.max(Math.min(replicates, 2), Math.ceil(replicates / 2));
   const tubes = (2 * each) / Math.max(chance, LEAST_CHANCE);
@@ -111,12 +111,24 @@ export function beyond(predictive, bound, above) {
  */
 export function worthMeasuring(pack, now, { plans, choice }, ranges) {
   if (!choice) return [];
-  const windows = plans.filter((one) => one.usable).map(({ range, dilution_factor: factor }) => {
+  const windowOf = ({ range, dilution_factor: factor }) => {
     const { low, high } = ranges.find((one) => one.name === range);
     return [low * factor, high * factor];
-  });
+  };
+  const windows = plans.filter((one) => one.usable).map(windowOf).sort((a, b) => a[0] - b[0]);
   const shown = (place, node) => expected(pack, { ...now, field: { ...now.field, [READINGS[place]]: METER[place](pack.centre[place] + node * pack.spread[place]) } });
-  const best = (predictive) => Math.max(...windows.map(([low, high]) => predictive.cdf(high) - predictive.cdf(low)));
+  const [low0, high0] = windowOf(choice);
+  /** The largest chance of any window; what cannot beat the best so far is not worked out. */
+  const best = ({ cdf }) => {
+    let found = cdf(high0) - cdf(low0);
+    for (const [low, high] of windows) {
+      const under = cdf(high);
+      const below = under > found ? cdf(low) : 0;
+      if (1 - below <= found) break;
+      found = Math.max(found, under > found ? under - below : 0);
+    }
+    return found;
+  };
   return READINGS.map((field, place) => [field, place]).filter(([field]) => !(field in now.field)).map(([field, place]) => ({
     field, p_in_range_now: choice.p_in_range, place,
     p_in_range_expected: NODES.reduce((sum, [node, share]) => sum + share * best(shown(place, node)), 0),

@@ -21,7 +21,7 @@ function Judged({ judged, zone }) {
     <p><${Stands} judged=${judged} /></p>
     ${judged.words.map((words, i) => html`<p key=${words}>${i ? words : html`<strong>${words}</strong>`}</p>`)}
     <table><thead><tr><th>Rule</th><th class="right">Right</th><th class="right">Over</th><th class="right">Under</th></tr></thead><tbody>
-      ${RULES.map(([key, name]) => html`<tr key=${key}><td>${key === "forecast" ? html`<strong>${name}</strong>` : name}</td><td class="right">${judged[key].right} of ${judged[key].n}</td><td class="right">${judged[key].over}</td><td class="right">${judged[key].below}</td></tr>`)}</tbody></table>
+      ${RULES.map(([key, name]) => html`<tr key=${key}><td>${key === "forecast" ? html`<strong>${name}</strong>` : name}</td><td class="right">${judged[key].right}\u00a0of\u00a0${judged[key].n}</td><td class="right">${judged[key].over}</td><td class="right">${judged[key].below}</td></tr>`)}</tbody></table>
     ${judged.measured > 0 && html`<p>Inside the range that should hold half: ${judged.inside_50} of ${judged.measured}; nine in ten: ${judged.inside_90} of ${judged.measured}.</p>`}
     <p class="soft">Each result was forecast from those before it at its point only, the latest ${judged.latest}; the first ${judged.first} are only learnt from.${unknown > 0 ? ` ${unknown} more are bounds that do not tell which dilution was right.` : ""} Judged by the server on ${day(judged.judged_at, zone)} from ${judged.results} results; made again when a tenth more are known.</p>
   </section>`;

@@ -2,16 +2,19 @@
 
 Each ``measure_*.py`` of this folder offers ``measures()``, which yields a
 :class:`~tests.bench.measure.Measure` for each promise. The exit status is 1
-when a promise is not kept, so that a slow change shows itself.
+when a promise is not kept, so that a slow change shows itself. ``python -m tests.bench forecast
+FOLDER`` prints the long table of the forecast on open series instead.
 """
 
 from __future__ import annotations
 
 import platform
+import sys
 from collections.abc import Iterator
 from importlib import import_module
 from pathlib import Path
 
+from tests.bench import forecast_table
 from tests.bench.measure import Measure
 
 HERE = Path(__file__).resolve().parent
@@ -35,4 +38,6 @@ def main() -> int:
 
 
 if __name__ == "__main__":
+    if sys.argv[1:2] == ["forecast"]:
+        raise SystemExit(forecast_table.main(sys.argv[2] if len(sys.argv) > 2 else "."))
     raise SystemExit(main())

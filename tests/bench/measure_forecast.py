@@ -8,7 +8,9 @@ from collections.abc import Iterator
 from datetime import UTC, datetime, timedelta
 from typing import Any
 
-from app.forecast import Observation, Programme, posterior
+from app.forecast import Observation, Programme, Range, posterior
+from app.forecast.learning import Point
+from app.forecast.trust import backtest_each
 from tests.bench.measure import Measure
 from tests.bench.measure_sums import lines_a_second
 
@@ -70,8 +72,18 @@ def packs() -> float:
     return time.perf_counter() - began
 
 
+def judged() -> float:
+    """Return the seconds that the back-test of a large programme takes, point by point and in all."""
+    points = [Point("dairy", history(200.0 + 10 * i)) for i in range(POINTS)]
+    ranges = (Range("high", 50, 900), Range("low", 10, 150))
+    began = time.perf_counter()
+    backtest_each(Programme.default(), points, ranges, (1, 2, 4, 5, 10, 20, 25, 50, 100))
+    return time.perf_counter() - began
+
+
 def measures() -> Iterator[Measure]:
-    """Time plans with histories of 100 results, and packs for 1,000 points of 24."""
+    """Time plans with histories of 100 results, packs and the back-test for 1,000 points of 24."""
     pace = lines_a_second("plan", plan_line())
     yield Measure("plan, a history of 100 results, one core", pace, 200, "lines/s")
     yield Measure("packs for 1,000 points of 24 results", packs(), 5, "s", more_is_better=False)
+    yield Measure("back-test of 1,000 points of 24 results", judged(), 15, "s", more_is_better=False)

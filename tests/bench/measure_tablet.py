@@ -22,7 +22,7 @@ SLOWED, POINTS = 4, 60
 TIMES = """async ({ packs, ranges, dilutions }) => {
   const { expected } = await import("/parts/forecast.js");
   const { plan, worthMeasuring } = await import("/parts/planning.js");
-  return packs.map((pack) => {
+  const once = (pack) => {
     const began = performance.now();
     const now = { days: 20800, field: { ph: 7.3 }, activity: "production" };
     const predictive = expected(pack, now);
@@ -30,7 +30,8 @@ TIMES = """async ({ packs, ranges, dilutions }) => {
     [0.05, 0.5, 0.95].forEach((p) => predictive.quantile(p));
     worthMeasuring(pack, now, made, ranges);
     return performance.now() - began;
-  });
+  };
+  return packs.map((pack) => [once(pack), once(pack), once(pack)].sort((a, b) => a - b)[1]);
 }"""
 
 
@@ -53,7 +54,7 @@ def _given() -> dict[str, Any]:
 
 
 def _times(page: Page, url: str) -> list[float]:
-    """Return the milliseconds of each point's plan, the first ones with code that never ran before."""
+    """Return the milliseconds of each point's plan, the middle of three."""
     page.goto(f"{url}/units.json")
     session = page.context.new_cdp_session(page)
     session.send("Emulation.setCPUThrottlingRate", {"rate": SLOWED})

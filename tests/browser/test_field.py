@@ -185,7 +185,7 @@ def test_without_a_signal_readings_move_the_range_the_plan_and_what_is_still_wor
     page.get_by_role("link", name="How far to trust this").click()
     expect(page).to_have_url(re.compile(f"/review/trust/{point}"))
     judged = page.get_by_role("row", name="The plan").inner_text()
-    assert re.search(r"\d+ of 11", judged), judged
+    assert re.search(r"\d+\sof\s11", judged), judged
     expect(page.get_by_text("Judged by the server on")).to_be_visible()
     page.get_by_role("link", name="All points together").click()
     expect(page.get_by_role("link", name="Hollin Vale Creamery")).to_contain_text("of 11 right")

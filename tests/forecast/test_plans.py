@@ -102,6 +102,15 @@ def test_a_shelf_gives_the_factors_it_can_make() -> None:
     assert chain_factor(planned.choice.chain.steps) == planned.choice.dilution_factor
 
 
+def test_a_dilution_that_the_shelf_does_not_make_is_not_usable() -> None:
+    """1:7 and 1:13 from 5 and 10 mL into 50 and 100 mL: no chain of two; without a shelf they may be made."""
+    shelf = Shelf((5.0, 10.0), (50.0, 100.0))
+    planned = plan(normal(3000.0, 0.2), (HIGH,), (5.0, 7.0, 13.0), shelf=shelf)
+    assert [one.usable for one in planned.plans] == [True, False, False]
+    assert "does not make" in planned.plans[1].objections[0]
+    assert all(one.usable for one in plan(normal(3000.0, 0.2), (HIGH,), (5.0, 7.0, 13.0)).plans)
+
+
 def test_a_size_that_is_not_made_is_named() -> None:
     with pytest.raises(InputError) as caught:
         plan(normal(3000.0, 0.2), (HIGH,), None, shelf=Shelf((5.0, 7.0), (50.0, 60.0)))
