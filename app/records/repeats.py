@@ -7,7 +7,7 @@ nobody expected) the run's own advice stands, which knows only this tube.
 
 from __future__ import annotations
 
-from app.forecast import Now, Range, Sample, expected, posterior
+from app.forecast import Now, Range, Sample, Shelf, expected, posterior
 from app.forecast.glass import chains_for
 from app.forecast.planning import Plan
 from app.forecast.worth import next_dilution
@@ -52,7 +52,9 @@ def _planned(writing: Stating, result: Body, sample: Body, settings: Body) -> Pl
         solids=sample.get("solids", False),
     )
     bound = result["top"] if result["status"] == "over" else result["reporting_level"]
-    return next_dilution(expected(known, now), bound, result["status"], ranges, settings["dilutions"], needs)
+    return next_dilution(
+        expected(known, now), bound, result["status"], ranges, settings["dilutions"], needs, Shelf()
+    )
 
 
 def _better(plan: Plan, result: Body, recipe: str) -> bool:

@@ -37,6 +37,7 @@ function objections(range, factor, steps, sample) {
   if (volume != null && needed !== null && volume < needed) {
     found.push(`${short(needed)} mL of sample are needed, ${short(volume)} mL are at hand`);
   }
+  if (!steps) found.push("the glassware at hand does not make this dilution");
   return found;
 }
 
@@ -51,7 +52,7 @@ function planOf(range, factor, predictive, sample) {
   const tubes = inside > LEAST_CHANCE ? sample.replicates / inside : null;
   const found = objections(range, factor, steps, sample);
   return {
-    range: range.name, dilution_factor: factor, steps: steps ?? [], made: steps !== null, relative_u: steps && relativeU(steps),
+    range: range.name, dilution_factor: factor, steps: steps ?? [], relative_u: steps && relativeU(steps),
     p_in_range: inside, p_over: over, p_below: below, expected_tubes: tubes, usable: !found.length, objections: found,
     chloride_after: sample.chloride == null ? null : sample.chloride / factor,
     reporting_after: range.reporting == null ? null : range.reporting * factor,

@@ -94,6 +94,7 @@ def test_a_reading_shifts_the_expectation_at_once(card: Page) -> None:
 def test_another_dilution_needs_its_reason_and_both_go_into_the_entry(card: Page) -> None:
     card.get_by_role("button", name="Choose another dilution").click()
     card.get_by_role("radio", name="1:20").click()
+    card.get_by_label("Visible solids").check()
     card.get_by_role("button", name="Take the sample").click()
     card.get_by_role("button", name="No printed label").click()
     card.get_by_role("button", name="Save the sample").click()
@@ -101,9 +102,11 @@ def test_another_dilution_needs_its_reason_and_both_go_into_the_entry(card: Page
     card.get_by_label("Why this one").fill("thick today")
     card.get_by_role("button", name="Save the sample").click()
     expect(card.get_by_text("Saved on this tablet")).to_be_visible()
-    plan = json.loads(tablet.outbox(card)[-1]["text"])["body"]["plan"]
+    body = json.loads(tablet.outbox(card)[-1]["text"])["body"]
+    plan = body["plan"]
     assert (plan["dilution_factor"], plan["reason"], plan["chosen_by"]) == (20, "thick today", "person")
-    assert plan["steps"] == [{"pipette_ml": 5, "flask_ml": 100}]
+    assert body["solids"] is True
+    assert plan["steps"] == [{"pipette_ml": 10, "flask_ml": 200}], "10 mL or more of a sample with solids"
     assert 0 < plan["p_in_range"] < 1 and plan["low"] < plan["median"] < plan["high"]
     tablet.settled(card)
     assert tablet.outbox(card)[-1]["state"] == "server"

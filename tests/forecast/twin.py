@@ -16,6 +16,7 @@ from app.forecast import (
     Programme,
     Range,
     Sample,
+    Shelf,
     bounded_readings,
     expected,
     plan,
@@ -24,6 +25,8 @@ from app.forecast import (
 from app.forecast.predictive import Beyond
 from app.forecast.worth import worth_measuring
 from tests.forecast.made import LADDER, walk
+
+DILUTIONS = (*LADDER, 7.0)
 
 HIGH = Range("high", 20.0, 900.0, 1998.0, 20.0, 33.8)
 LOW = Range("low", 5.0, 150.0, 1998.0, 5.0)
@@ -96,16 +99,20 @@ def _distribution(predictive: Predictive) -> dict[str, Any]:
 def _case(pack: dict[str, Any], now: Now, ranges: tuple[Range, ...], sample: Sample) -> dict[str, Any]:
     known = Posterior.from_json(pack)
     predictive = expected(known, now)
-    planned = plan(predictive, ranges, LADDER, sample)
+    planned = plan(predictive, ranges, DILUTIONS, sample, Shelf())
     after = [
-        {"bound": bound, "above": above, **_planned(plan(Beyond(predictive, bound, above), ranges, LADDER))}
+        {
+            "bound": bound,
+            "above": above,
+            **_planned(plan(Beyond(predictive, bound, above), ranges, DILUTIONS, shelf=Shelf())),
+        }
         for bound, above in ((900.0, True), (400.0, False))
     ]
     return {
         "pack": pack,
         "now": asdict(now),
         "ranges": [asdict(one) for one in ranges],
-        "dilutions": LADDER,
+        "dilutions": DILUTIONS,
         "sample": asdict(sample),
         "bounded": list(bounded_readings(known, now)),
         **_distribution(predictive),
