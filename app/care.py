@@ -6,14 +6,15 @@ What a verb needs is imported when it runs, so that the sums start without it.
 from __future__ import annotations
 
 import argparse
+import json
 import logging
 import os
 import sys
-from collections.abc import Callable
+from collections.abc import Callable, Iterator
 from contextlib import closing
 from functools import wraps
 from pathlib import Path
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, TextIO
 
 from app.errors import WeirbookError
 
@@ -27,11 +28,7 @@ Verb = Callable[[argparse.Namespace], int]
 
 def add_verbs(commands: argparse._SubParsersAction[argparse.ArgumentParser]) -> None:
     """Add the verbs of this module to the command line."""
-    one = commands.add_parser("serve", help="serve the programme in a store")
-    _add_store(one)
-    one.add_argument("--port", type=int, default=PORT)
-    one.add_argument("--example", action="store_true", help="fill an empty store with the invented programme")
-    one.set_defaults(run=serve)
+    _add_serve(commands)
     for name, function, words in (
         ("rebuild", rebuild_records, "derive every record again from the journal"),
         ("verify", verify_chain, "walk the journal's chain and name the first bad entry"),
@@ -47,10 +44,36 @@ def add_verbs(commands: argparse._SubParsersAction[argparse.ArgumentParser]) -> 
         _add_store(one)
         one.add_argument("file", type=Path, help="the copy")
         one.set_defaults(run=function)
+    one = commands.add_parser(
+        "export-journal", help="write every entry with its place and digest, a JSON line each"
+    )
+    _add_store(one)
+    one.add_argument("file", type=Path, help="the file to write; - for standard output")
+    one.set_defaults(run=export_journal)
     one = commands.add_parser("verify-document", help="read a certificate's attached data, without a server")
     one.add_argument("file", type=Path, help="the PDF")
     one.add_argument("--base-url", default=f"http://localhost:{PORT}", help="the address printed on it")
     one.set_defaults(run=verify_document)
+
+
+def _add_serve(commands: argparse._SubParsersAction[argparse.ArgumentParser]) -> None:
+    one = commands.add_parser("serve", help="serve the programme in a store")
+    _add_store(one)
+    one.add_argument("--port", type=int, default=PORT)
+    one.add_argument("--example", action="store_true", help="fill an empty store with the invented programme")
+    one.add_argument(
+        "--backup-folder",
+        type=Path,
+        default=os.environ.get("WEIRBOOK_BACKUP_FOLDER"),
+        help="make verified copies here while serving (or WEIRBOOK_BACKUP_FOLDER)",
+    )
+    one.add_argument(
+        "--backup-hours",
+        type=float,
+        default=float(os.environ.get("WEIRBOOK_BACKUP_HOURS", "24")),
+        help="hours between two copies (or WEIRBOOK_BACKUP_HOURS)",
+    )
+    one.set_defaults(run=serve)
 
 
 def _add_store(one: argparse.ArgumentParser) -> None:
@@ -78,24 +101,29 @@ def serve(arguments: argparse.Namespace) -> int:
 
     from app.journal import chain
     from app.scenarios import load
+    from app.web.backups import Backups
     from app.web.factory import create_app
 
     logging.basicConfig(level=logging.WARNING, format="%(message)s")
     address = f"http://localhost:{arguments.port}"
     fast = os.environ.get("WEIRBOOK_FAST_PASSWORDS") == "1"
-    app = create_app(arguments.store, address, fast_passwords=fast)
+    folder = arguments.backup_folder and Path(arguments.backup_folder)
+    backups = Backups(arguments.store, folder, max(arguments.backup_hours, 0.01))
+    app = create_app(arguments.store, address, fast_passwords=fast, backups=backups)
     store = app.extensions["weirbook"].store
     try:
         if arguments.example and chain.head(store.read()).position == 0:
             load(store)
         server = create_server(app, host="127.0.0.1", port=arguments.port, threads=8, ident=None)
         print(f"Weirbook serves {arguments.store} on {address}", flush=True)
+        backups.start()
         server.run()
     except OSError as error:
         raise WeirbookError(f"Port {arguments.port} cannot be used: {error}.") from error
     except KeyboardInterrupt:
         pass
     finally:
+        backups.stop()
         store.close()
     return 0
 
@@ -152,6 +180,32 @@ def restore_backup(arguments: argparse.Namespace) -> int:
     head = restore(arguments.file, arguments.store)
     print(f"{arguments.store} holds {head.position} entries; devices send again what came after them.")
     return 0
+
+
+@_told
+def export_journal(arguments: argparse.Namespace) -> int:
+    """Write the journal as JSON lines: position, digest, how it came, the text as it was received."""
+    from app.journal import chain
+
+    to_screen = str(arguments.file) == "-"
+    if not to_screen and arguments.file.exists():
+        raise WeirbookError(f"{arguments.file} exists already; nothing was overwritten.")
+    with closing(_open(arguments.store)) as store:
+        if to_screen:
+            _write_lines(sys.stdout, chain.exported(store.read()))
+            return 0
+        with arguments.file.open("w", encoding="utf-8", newline="\n") as file:
+            count = _write_lines(file, chain.exported(store.read()))
+    print(f"{arguments.file} holds {count} entries.")
+    return 0
+
+
+def _write_lines(file: TextIO, rows: Iterator[dict[str, object]]) -> int:
+    count = 0
+    for row in rows:
+        file.write(json.dumps(row) + "\n")
+        count += 1
+    return count
 
 
 @_told

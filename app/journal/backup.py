@@ -69,7 +69,25 @@ def backup(folder: Path, target: Path) -> Head:
     with closing(sqlite3.connect(source, timeout=30)) as here, closing(sqlite3.connect(target)) as there:
         here.backup(there)
         there.execute("pragma journal_mode=delete")
-    return _verified(target)
+    head = _verified(target)
+    _seal(source, head.position)
+    return head
+
+
+def _seal(path: Path, position: int) -> None:
+    """Note in a store that everything up to a position lies in a verified backup."""
+    with closing(sqlite3.connect(path, timeout=30)) as store, store:
+        store.execute(
+            "INSERT INTO meta VALUES ('sealed', ?) ON CONFLICT (key) DO UPDATE SET value = excluded.value "
+            "WHERE CAST(value AS INTEGER) < CAST(excluded.value AS INTEGER)",
+            (str(position),),
+        )
+
+
+def sealed(connection: sqlite3.Connection) -> int:
+    """Return the highest position that lies in a verified backup; 0 without one."""
+    row = connection.execute("SELECT value FROM meta WHERE key = 'sealed'").fetchone()
+    return int(row[0]) if row else 0
 
 
 def restore(copy: Path, folder: Path) -> Head:
@@ -102,5 +120,6 @@ def restore(copy: Path, folder: Path) -> Head:
         here.backup(there)
         there.execute("UPDATE meta SET value = ? WHERE key = 'epoch'", (uuid.uuid4().hex,))
         there.commit()
+    _seal(folder / "weirbook.db", head.position)
     Store(folder).close()
     return head

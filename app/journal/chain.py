@@ -72,3 +72,21 @@ def rows(connection: sqlite3.Connection, after: int = 0) -> Iterator[Row]:
         (after,),
     ):
         yield Row(position, device, carrier, received_at, json.loads(held) if held else None, raw)
+
+
+def exported(connection: sqlite3.Connection) -> Iterator[dict[str, object]]:
+    """Yield each entry with its place, its digest in the chain and its text, oldest first.
+
+    Whoever has the file can walk the chain without this program: ``digest`` is
+    SHA-256 of the digest before it followed by the bytes of ``text``.
+    """
+    query = "SELECT position, digest, received_at, carrier, held, raw FROM journal ORDER BY position"
+    for position, digest, received_at, carrier, held, raw in connection.execute(query):
+        yield {
+            "position": position,
+            "digest": digest,
+            "received_at": received_at,
+            "carrier": carrier,
+            "held": json.loads(held) if held else None,
+            "text": raw.decode("utf-8", "surrogatepass"),
+        }

@@ -9,6 +9,7 @@ from flask import current_app
 
 from app.journal.store import Store
 from app.records.ledger import Ledger
+from app.web.backups import Backups
 from app.web.limits import Attempts
 
 PROTOCOL = 1
@@ -24,6 +25,7 @@ class Context:
     build: str
     base_url: str
     attempts: Attempts
+    backups: Backups
 
 
 def context() -> Context:

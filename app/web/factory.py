@@ -13,6 +13,7 @@ from app.journal.units import STATIC
 from app.records.ledger import Ledger
 from app.records.rebuild import bring_up_to_date
 from app.web import certificates, papers, programme, security, sessions, shell, store_papers, sync
+from app.web.backups import Backups
 from app.web.context import Context
 from app.web.limits import Attempts
 
@@ -24,6 +25,7 @@ def create_app(
     base_url: str = "http://localhost:8700",
     hosts: tuple[str, ...] = (),
     fast_passwords: bool = False,
+    backups: Backups | None = None,
 ) -> Flask:
     """Return the application for the store in a folder.
 
@@ -37,6 +39,8 @@ def create_app(
         Names besides this machine's own under which it may be asked.
     fast_passwords : bool
         Cheap password hashing, for tests only.
+    backups : Backups, optional
+        How and where the server makes copies by itself.
     """
     app = Flask("weirbook", static_folder=str(STATIC), static_url_path="/static")
     app.config.update(
@@ -54,7 +58,7 @@ def create_app(
     bring_up_to_date(store)
     passwords = PasswordHasher.from_parameters(profiles.CHEAPEST) if fast_passwords else PasswordHasher()
     app.extensions["weirbook"] = Context(
-        store, Ledger(store), passwords, shell.build_of(), base_url, Attempts()
+        store, Ledger(store), passwords, shell.build_of(), base_url, Attempts(), backups or Backups(folder)
     )
     security.install(app)
     api = security.OneBodyApi(app)

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import sqlite3
 import uuid
+from dataclasses import asdict
 from ipaddress import ip_address
 from typing import Any
 
@@ -12,8 +13,9 @@ from flask_smorest import Blueprint
 from marshmallow import fields, validate
 
 from app.errors import InputError
+from app.journal.devices import known_devices
 from app.journal.fields import Text
-from app.journal.kinds import ROLES, Body
+from app.journal.kinds import ADMINISTRATOR, COORDINATOR, ROLES, Body
 from app.journal.kinds.programme import known_zone
 from app.journal.kinds.settings import DEFAULTS
 from app.records.change import find
@@ -131,3 +133,31 @@ def add_person(given: dict[str, Any]) -> dict[str, str]:
         body = {"name": given["name"], "roles": given["roles"]}
         writing.state("person.added", id_, body, who.id if who else VISITOR)
     return {"person": id_}
+
+
+class DeviceSchema(Body):
+    """One store of one device, as the journal knows it."""
+
+    device = fields.String()
+    incarnation = fields.String()
+    last = fields.Integer()
+    entries = fields.Integer()
+    missing = fields.Integer()
+    doubled = fields.Integer()
+    breaks = fields.Integer()
+    seen = fields.String()
+    carrier = fields.String()
+
+
+class DevicesSchema(Body):
+    """Every device that ever sent an entry."""
+
+    devices = fields.List(fields.Nested(DeviceSchema))
+
+
+@blueprint.route("/devices")
+@need(COORDINATOR, ADMINISTRATOR)
+@blueprint.response(200, DevicesSchema)
+def devices() -> dict[str, Any]:
+    """How far each device got, what of it is missing, and where its own chain breaks."""
+    return {"devices": [asdict(one) for one in known_devices(context().store.read())]}

@@ -22,6 +22,7 @@ from marshmallow import fields
 
 from app import __version__
 from app.errors import InputError
+from app.journal.backup import sealed
 from app.journal.entry import digest
 from app.journal.fields import Text
 from app.journal.kinds import Body
@@ -65,6 +66,8 @@ class StateSchema(Body):
     epoch = fields.String()
     started = fields.Boolean()
     example = fields.Boolean()
+    sealed = fields.Integer()
+    backup = fields.Dict(allow_none=True)
     server_time = fields.String()
     person = fields.Nested(PersonSchema, allow_none=True)
 
@@ -169,6 +172,8 @@ def state() -> dict[str, Any]:
         "started": bool(programmes),
         "example": bool(programmes and programmes[0][1]["example"]),
         "server_time": datetime.now(UTC).isoformat(timespec="milliseconds"),
+        "sealed": sealed(connection),
+        "backup": context().backups.told(),
         "person": who and {"id": who.id, "name": who.name, "roles": sorted(who.roles)},
     }
 

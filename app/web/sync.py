@@ -16,6 +16,7 @@ from marshmallow import fields, validate
 from app import __version__
 from app.errors import WeirbookError
 from app.journal.append import contiguous
+from app.journal.backup import sealed
 from app.journal.entry import digest
 from app.journal.fields import Id
 from app.journal.kinds import Body
@@ -76,6 +77,7 @@ class PushedSchema(Body):
     weirbook = fields.String()
     epoch = fields.String()
     server_time = fields.String()
+    sealed = fields.Integer()
     digest = fields.String()
     answers = fields.List(fields.Nested(AnswerSchema))
     expect_n = fields.Integer()
@@ -106,6 +108,7 @@ class PulledSchema(Body):
     weirbook = fields.String()
     epoch = fields.String()
     server_time = fields.String()
+    sealed = fields.Integer()
     records = fields.List(fields.Nested(RecordSchema))
     next = fields.Integer()
     more = fields.Boolean()
@@ -116,6 +119,7 @@ def _common() -> dict[str, Any]:
         "weirbook": __version__,
         "epoch": state_name(context().store),
         "server_time": datetime.now(UTC).isoformat(timespec="milliseconds"),
+        "sealed": sealed(context().store.read()),
     }
 
 

@@ -61,6 +61,17 @@ function Storage() {
   </section>`;
 }
 
+/** How the server's own backups go; told with the last contact. */
+function Backups() {
+  const [server, setServer] = useState(null);
+  useEffect(() => { getMeta("server").then(setServer, () => {}); }, []);
+  if (!server) return null;
+  const { backup } = server;
+  return html`<section class="card stack ${backup?.problem ? "stop" : ""}"><h2>Backups of the server</h2>
+    ${!backup ? html`<p>The server makes none by itself: its administrator starts it with a folder for them, or copies it by <code>backup</code>.</p>`
+      : backup.problem ? html`<p><strong>▲ ${backup.problem}</strong></p>` : html`<p>${backup.at ? `Last one ${dayAndTime(backup.at)}, verified, up to entry ${backup.position}` : "None was made yet"}; one every ${backup.hours} h.</p>`}</section>`;
+}
+
 /** The settings page. */
 export function Settings() {
   const { count } = useView(waiting);
@@ -83,7 +94,7 @@ export function Settings() {
         <p>Last contact: ${dayAndTime(health.contact)}. ${health.problem}</p>
         <div class="row"><button type="button" onClick=${exchangeNow}>Exchange now</button><a class="button" href="/waiting">My entries</a></div>
       </section>
-      <${Comfort} /><${Storage} />
+      <${Comfort} /><${Storage} /><${Backups} />
       <p><a href="/emergency">Emergency and first aid</a></p>
     </div>
   <//>`;

@@ -2,18 +2,17 @@
 
 import { html } from "../parts/html.js";
 import { dayAndTime } from "../parts/format.js";
-import { Empty, Frame, exchangeNow } from "../parts/frame.js";
-import { entries, useView } from "../parts/view.js";
+import { Empty, Frame, WORDS, exchangeNow } from "../parts/frame.js";
+import { entries, placeOf, useView } from "../parts/view.js";
 import { kindWords } from "../parts/kinds.js";
-
-const WORDS = new Map([["tablet", "on this tablet"], ["server", "on the server"], ["held", "needs attention"], ["other", "of another programme"]]);
 
 function Row({ row }) {
   const body = JSON.parse(row.text).body;
   const subject = body.bottle ?? body.bottles?.join(", ") ?? body.name ?? (body.position ? `position ${body.position}` : "");
-  const kind = { tablet: "wait", server: "good", held: "stop", other: "wait" }[row.state];
+  const place = placeOf(row);
+  const kind = { tablet: "wait", server: "good", backup: "good", held: "stop", other: "wait" }[place];
   return html`<li class="item"><div class="row spread"><strong>${kindWords(row.kind)} ${subject}</strong>
-      <span class="tag ${kind}">${WORDS.get(row.state)}</span></div>
+      <span class="tag ${kind}">${WORDS[place]}</span></div>
     <span class="soft small">${dayAndTime(row.at)}</span>
     ${row.told && html`<p class="above">▲ ${row.told.message}</p>
       <ul>${Object.entries(row.told.fields ?? {}).map(([path, lines]) => html`<li key=${path}>${path}: ${lines.join(" ")}</li>`)}</ul>
@@ -25,7 +24,7 @@ function Row({ row }) {
 export function Waiting() {
   const rows = useView(entries).slice(0, 200);
   return html`<${Frame} title="My entries" about="from this tablet">
-    <p class="soft"><strong>On this tablet</strong> survives closing and crashing. <strong>On the server</strong> survives losing the tablet.</p>
+    <p class="soft"><strong>On this tablet</strong> survives closing and crashing. <strong>On the server</strong> survives losing the tablet. <strong>In a verified backup</strong> survives losing the server.</p>
     <button type="button" onClick=${exchangeNow}>Exchange now</button>
     ${rows.length ? html`<ul class="plain list">${rows.map((row) => html`<${Row} key=${row.n} row=${row} />`)}</ul>`
       : html`<${Empty} title="Nothing was stated on this tablet yet">What you record in Field or on the Bench appears here.<//>`}

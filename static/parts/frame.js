@@ -20,13 +20,14 @@ export const Mark = () => html`<svg class="mark" viewBox="0 0 36 26" width="36" 
   <path d="M2 2h10l6 13 6-13h10v22H2z" fill="none" stroke="currentColor" stroke-width="2.6" stroke-linejoin="round" />
   <path d="M12.5 6h11" stroke="var(--water)" stroke-width="2.6" /></svg>`;
 
-const WORDS = { tablet: "on this tablet", server: "on the server", held: "needs attention", other: "of another programme" };
+/** The places of an entry in words. */
+export const WORDS = { tablet: "on this tablet", server: "on the server", backup: "in a verified backup", held: "needs attention", other: "of another programme" };
 
 /** Where an entry about a thing is, in words; without an entry of this device, the thing is on the server. */
 export function Where({ about }) {
   const place = useView(() => whereIs(about)) ?? "server";
-  const kind = { tablet: "wait", server: "good", held: "stop", other: "wait" }[place];
-  const sign = { tablet: "◐", server: "●", held: "▲", other: "◐" }[place];
+  const kind = { tablet: "wait", server: "good", backup: "good", held: "stop", other: "wait" }[place];
+  const sign = { tablet: "◐", server: "●", backup: "◉", held: "▲", other: "◐" }[place];
   return html`<span class="tag ${kind}"><span aria-hidden="true">${sign}</span>${WORDS[place]}</span>`;
 }
 

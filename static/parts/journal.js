@@ -47,12 +47,15 @@ async function write(made, tx) {
   );
   if (!person?.id) throw new NotSaved("Nobody has signed in on this device yet, so nothing can be stated here.");
   let last = await meta.get("last");
+  // The store's own number runs on when the device takes a new incarnation, whose entries begin with 1 again.
+  let row = last.row ?? last.n;
   const rows = [];
   for (const { kind, about, body } of made) {
     const text = textOf(kind, about, body, { device, last, person, contact, base: cursor?.position ?? 0 });
     const { id, at, n } = JSON.parse(text);
-    last = { key: "last", n, digest: sha256(text) };
-    rows.push({ n, id, kind, about, at, text, state: "tablet", position: null, told: null });
+    row += 1;
+    last = { key: "last", n, row, digest: sha256(text) };
+    rows.push({ n: row, id, kind, about, at, text, state: "tablet", position: null, told: null });
   }
   for (const row of rows) await tx.objectStore("outbox").add(row);
   await meta.put(last);

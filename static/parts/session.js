@@ -56,7 +56,7 @@ export async function keep(state) {
   if (!state.weirbook) throw new NoContact();
   const skew = Math.round(Date.now() - new Date(state.server_time).getTime());
   await putMeta("contact", { at: new Date().toISOString(), skew_ms: skew });
-  await putMeta("server", { started: state.started, example: state.example, build: state.build });
+  await putMeta("server", { started: state.started, example: state.example, build: state.build, backup: state.backup ?? null });
   if (state.person) await putMeta("person", state.person);
   return state;
 }

@@ -3,7 +3,8 @@
 import { begin, getMeta, putMeta } from "./db.js";
 import { ask, keep, NoContact, Refusal } from "./session.js";
 import { sha256 } from "./sha256.js";
-import { outboxChanged, programme, recordsDropped, recordsPulled, subscribe } from "./view.js";
+import { uuid7 } from "./uuid7.js";
+import { outboxChanged, programme, recordsDropped, recordsPulled, sealedUpTo, subscribe } from "./view.js";
 
 const PROTOCOL = 1;
 const BATCH = 100;
@@ -87,15 +88,36 @@ async function pushAll(state) {
   for (let batch = await nextBatch(); batch.length; batch = await nextBatch()) {
     const { answers } = await push(state, device, batch.map((row) => row.text));
     await acknowledge(answers);
+    const forked = new Set(answers.filter((answer) => answer.code === "device_fork").map((answer) => answer.id));
+    const { incarnation } = await getMeta("device");
+    if (batch.some((row) => forked.has(row.id) && JSON.parse(row.text).incarnation === incarnation)) await becomeAnother();
   }
+}
+
+/**
+ * This device's store is a copy, or was put back to an earlier state: another store has used its numbers. From here on it
+ * is a store of its own, whose entries begin with 1; what was stated under the old name stays as it is.
+ */
+async function becomeAnother() {
+  const tx = await begin("meta", "readwrite");
+  const [device, last] = await Promise.all([tx.store.get("device"), tx.store.get("last")]);
+  await tx.store.put({ ...device, incarnation: uuid7(), before: [...(device.before ?? []), device.incarnation] });
+  await tx.store.put({ key: "last", n: 0, row: last.row ?? last.n, digest: null });
+  await tx.done;
 }
 
 /** A server restored from a backup lacks what it once took: those entries go out again. */
 async function sendAgainWhatIsMissing(state) {
-  const { expect_n: next } = await push(state, await getMeta("device"), []);
+  const [device, last] = await Promise.all([getMeta("device"), getMeta("last")]);
+  const { expect_n: next } = await push(state, device, []);
+  if (next > last.n + 1) await becomeAnother();
   let lost = false;
+  const again_ = (row) => {
+    const { n, incarnation } = JSON.parse(row.text);
+    return incarnation === device.incarnation ? n >= next : row.position > state.sealed;
+  };
   await changeOutbox((row) => {
-    if (row.n < next || (row.state !== "server" && row.state !== "held")) return null;
+    if ((row.state !== "server" && row.state !== "held") || !again_(row)) return null;
     lost = true;
     return { ...row, state: "tablet", position: null, told: null };
   });
@@ -157,6 +179,7 @@ async function exchange() {
     tell({ signIn: state.started, contact: new Date().toISOString(), problem: "" });
     return;
   }
+  sealedUpTo(state.sealed ?? 0);
   const cursor = await getMeta("cursor");
   if (cursor && cursor.epoch !== state.epoch) await beginWith(state);
   if (!compared) await sendAgainWhatIsMissing(state);

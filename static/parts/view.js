@@ -107,9 +107,23 @@ export function waiting() {
   return { count: here.length, oldest: here[0]?.at ?? null, held: outbox.filter((row) => row.state === "held").length };
 }
 
-/** Where the newest entry about a thing is: "tablet", "server" or "held"; null when it was not stated here. */
+let sealed = 0;
+
+/** Everything up to a position of the server lies in a verified backup. */
+export function sealedUpTo(position) {
+  if (position === sealed) return;
+  sealed = position;
+  changed();
+  listeners.forEach((listener) => listener("sealed"));
+}
+
+/** Where an entry of this device is: "tablet", "server", "backup", "held" or "other". */
+export const placeOf = (row) => (row.state === "server" && row.position && row.position <= sealed ? "backup" : row.state);
+
+/** Where the newest entry about a thing is; null when it was not stated here. */
 export function whereIs(about) {
-  return outbox.findLast((row) => row.about === about)?.state ?? null;
+  const row = outbox.findLast((one_) => one_.about === about);
+  return row ? placeOf(row) : null;
 }
 
 /** Draw again when anything changes, and return what a function finds. */
