@@ -244,7 +244,10 @@ def rules_fired(values: Sequence[float], limits: Limits) -> tuple[Fired, ...]:
     for i, value in enumerate(values):
         if not limits.lower_action <= value <= limits.upper_action:
             fired.append(Fired(i, True, f"beyond the action limit of '{limits.baseline}'"))
-        fired += [Fired(i, False, words) for words in _patterns(values[: i + 1], limits)]
+        fired += [
+            Fired(i, False, words)
+            for words in _patterns(values[max(0, i + 1 - RUN_OF_ONE_SIDE) : i + 1], limits)
+        ]
     return tuple(fired)
 
 
