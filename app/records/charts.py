@@ -25,6 +25,8 @@ NAMES = {
     "duplicate": "duplicate",
     "spike": "spike recovery",
 }
+#: The decision that takes a failed check out of the chart's sequences; it stays listed with its cause.
+NOT_USED = "not used"
 _JUDGEMENT: Body = {"fired": [], "stops": False, "average": None, "upper": None, "lower": None}
 
 
@@ -37,9 +39,15 @@ def chart_id(recipe: str, instrument: str, what: str) -> str:
 def points_of(run_id: str, run: Body, what: str) -> list[Body]:
     """Return a calculated run's points on one chart."""
     at = (run.get("heating") or {}).get("started_at") or run["planned_at"]
+    unused = {
+        (one["what"], one["subject"]): one["reason"]
+        for one in (run["closed"] or {}).get("decisions", [])
+        if one["decision"] == NOT_USED
+    }
     return [
         {"run": run_id, "name": run["name"], "at": at, "position": one["position"], "value": one["value"]}
-        | {"ok": one["ok"], "left_out": one["left_out"], "base": False, **_JUDGEMENT}
+        | {"ok": one["ok"], "base": False, "decided": unused.get((what, one["subject"]), "")}
+        | {"left_out": one["left_out"], **_JUDGEMENT}
         for one in run.get("checks") or []
         if one["what"] == what and one["value"] is not None
     ]
@@ -73,6 +81,9 @@ def _joined(old: list[Body], new: list[Body], run_id: str) -> list[Body]:
     for point in new:
         known = before.get(key(point), point)
         said = {"base": known["base"], "left_out": point["left_out"] or known["left_out"]}
+        if point["decided"]:
+            said = {"base": False, "left_out": point["decided"], "stops": known["stops"]}
+            said["fired"] = known["fired"][:1] if known["stops"] else []
         kept.append(point | said)
     return sorted(kept, key=lambda one: (one["at"], one["run"], one["position"] or 0))
 
@@ -85,7 +96,7 @@ def _judged(points: list[Body], baseline: Body | None) -> list[Body]:
     later = [i for i, point in enumerate(points) if i > first and not point["base"] and not point["left_out"]]
     limits = Limits(**baseline["limits"])
     found = judge([points[i]["value"] for i in later], limits, baseline["what"] == "duplicate")
-    judged = [point | _JUDGEMENT for point in points]
+    judged = [point if point["decided"] else point | _JUDGEMENT for point in points]
     for i, one in zip(later, found, strict=True):
         said = asdict(one)
         judged[i] |= {name: said[name] for name in _JUDGEMENT} | {"fired": list(one.fired)}
@@ -147,6 +158,7 @@ def frozen(chart: Body, asked: Body, settings: Body) -> Body:
     limits = range_limits(base) if what == "duplicate" else individuals_limits(base, asked["spread"])
     if limits.sigma <= 0:
         raise InputError("These results are all the same: no limits follow.", {"first": ["No scatter."]})
+    own = limits
     if method:
         limits = no_wider_than(limits, *method)
     if not limits.lower_action <= limits.centre <= limits.upper_action:
@@ -164,7 +176,7 @@ def frozen(chart: Body, asked: Body, settings: Body) -> Body:
         "at": asked["at"],
     }
     body |= {"average": average and [average.lower, average.upper], "decision": CUSUM_DECISION}
-    return body | {"words": _words(body, found, limits)}
+    return body | {"words": _words(body, found, limits, tighter=limits == own)}
 
 
 def _method(what: str, settings: Body) -> list[float] | None:
@@ -177,7 +189,7 @@ def _method(what: str, settings: Body) -> list[float] | None:
     return list(settings["spike_percent"]) if what == "spike" else None
 
 
-def _words(body: Body, found: list[Body], limits: Limits) -> list[str]:
+def _words(body: Body, found: list[Body], limits: Limits, tighter: bool) -> list[str]:
     unit = "mAU" if body["what"] == "blank" else "%"
     how = {
         "standard deviation": f"three standard deviations ({body['sd']:.2f} {unit}) on both sides",
@@ -192,7 +204,7 @@ def _words(body: Body, found: list[Body], limits: Limits) -> list[str]:
         f"{limits.upper_action:.2f}: {how}.",
     ]
     method = body["method"]
-    if method and (limits.lower_action == method[0] or limits.upper_action == method[1]):
+    if method and not tighter:
         words.append(f"No wider than the method's own limits, {method[0]:g} to {method[1]:g} %.")
     return words
 

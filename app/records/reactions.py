@@ -87,6 +87,8 @@ def due(change: Change) -> Iterator[Due]:
         yield Sum.JUDGE_CHECK, f"{about} {change.entry.id}"
     elif kind == "readings.finished" or (kind == "tube.excluded" and _calculated(change)):
         yield Sum.CALCULATE_RUN, about
+    elif kind == "run.closed" and change.body["decisions"]:
+        yield Sum.JUDGE_RUN, about
     elif kind == "baseline.frozen":
         yield Sum.FREEZE, about
     elif kind == "study.result" and change.body["run"] is not None:
@@ -134,6 +136,7 @@ def _points(change: Change) -> Iterator[str]:
     elif kind == "result.recorded":
         yield change.body["point"]
     elif kind == "result.reviewed":
-        yield change.need("result", change.entry.about)["point"]
+        point = change.need("result", change.entry.about)["point"]
+        yield from [point] if point else []
     else:
         yield from sorted({one["point"] for one in change.body["results"] if one["point"]})

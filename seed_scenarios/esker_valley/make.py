@@ -14,6 +14,7 @@ import random
 from pathlib import Path
 from typing import Any
 
+import controls
 import laboratory
 
 HERE = Path(__file__).resolve().parent
@@ -201,7 +202,12 @@ def planned(
         tube = {"role": "sample", "bottle": code, "dilution": dilution}
         start = len(tubes) + 1
         tubes += [{"position": start + i} | tube for i in range(3)]
+    first = next(tube for tube in tubes if tube["role"] == "sample")
+    of = {"bottle": first["bottle"], "dilution": first["dilution"]}
+    extra: list[Body] = [controls.CONTROL, {"role": "duplicate"} | of]
+    tubes += [{"position": len(tubes) + i} | tube for i, tube in enumerate(extra, start=1)]
     body = {
+        "without": [{"role": "spike", "reason": "spiked in the control runs of this week"}],
         "name": name,
         "recipe": "high-range",
         "lot": "lot-14",
@@ -233,6 +239,11 @@ def read(
     story.tell(hours, "calloway", "heating.ended", run, ended)
     story.tell(hours + 0.5, "calloway", "gate.confirmed", run, {"gate": "cooling_done"})
     for tube in tubes:
+        if tube["role"] in ("control", "duplicate"):
+            diluted = true[tube["bottle"]] / tube["dilution"]["factor"] if "bottle" in tube else 0.0
+            body = controls.reading(tube, diluted, shift=0.0165)
+            story.tell(hours + 0.6 + tube["position"] / 100, "calloway", "tube.read", run, body)
+            continue
         cod = {"blank": 0.0, "verification": 495.0}.get(tube["role"])
         in_tube = true[tube["bottle"]] / tube["dilution"]["factor"] if cod is None else cod
         shown = in_tube * (0.62 if tube["position"] == leaked else 1.0)
@@ -264,7 +275,7 @@ def story_of(points: dict[str, Body], codes: list[str]) -> list[Body]:
     hand_over(story, -141, "hand-1", codes[:6], "4471", "3.4")
     for i in range(6):
         receive(story, -140.5 + i / 20, codes[i], warm=i == 4)
-    for one in (*laboratory.study(), *laboratory.measured(codes)):
+    for one in (*laboratory.study(), *laboratory.measured(codes), *controls.runs()):
         story.tell(*one)
     bottles = {codes[i]: factors[name] for i, name in enumerate(first)}
     tubes = planned(story, -124, "run-12", "Run 12, high range", bottles, 2)

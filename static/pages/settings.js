@@ -1,6 +1,7 @@
 // This device: how it looks, what it keeps, who is here.
 
 import { html, useEffect, useState } from "../parts/html.js";
+import { OwnValues } from "../bench/charts.js";
 import { getMeta } from "../parts/db.js";
 import { Check, Choice, useSaving } from "../parts/fields.js";
 import { dayAndTime } from "../parts/format.js";
@@ -83,7 +84,7 @@ export function Settings() {
         <p>Last contact: ${dayAndTime(health.contact)}. ${health.problem}</p>
         <div class="row"><button type="button" onClick=${exchangeNow}>Exchange now</button><a class="button" href="/waiting">My entries</a></div>
       </section>
-      <${Comfort} /><${Storage} />
+      <${OwnValues} /><${Comfort} /><${Storage} />
       <p><a href="/emergency">Emergency and first aid</a></p>
     </div>
   <//>`;
