@@ -260,7 +260,10 @@ def _bracketing(run: Body, answer: Body) -> Body:
     """Return which samples stand between verifications that held; a failed one holds what touches it."""
     judged = iter(check["ok"] for check in answer["checks"]["verifications"])
     events = [
-        Event(tube["bottle"] or "", next(judged) if tube["role"] == "verification" else None)
+        Event(
+            tube["bottle"] or "the laboratory control",
+            next(judged) if tube["role"] == "verification" else None,
+        )
         for tube in run["tubes"]
         if tube["role"] != "blank" and tube["absorbance"] is not None and tube["excluded"] is None
     ]

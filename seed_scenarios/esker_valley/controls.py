@@ -68,6 +68,22 @@ def rack(factor: int) -> list[Body]:
     return [{"position": i} | tube for i, tube in enumerate(tubes, start=1)]
 
 
+NO_SPIKE = [{"role": "spike", "reason": "spiked in the control runs of this week"}]
+
+
+def extra(tubes: list[Body]) -> list[Body]:
+    """Return a control and a duplicate of the first sample for a rack."""
+    first = next(tube for tube in tubes if tube["role"] == "sample")
+    of = {"bottle": first["bottle"], "dilution": first["dilution"]}
+    found: list[Body] = [CONTROL, {"role": "duplicate"} | of]
+    return [{"position": len(tubes) + i} | tube for i, tube in enumerate(found, start=1)]
+
+
+def diluted(tube: Body, true: dict[str, float]) -> float:
+    """Return the COD that a tube's sample has after dilution; 0 where it has none."""
+    return true[tube["bottle"]] / tube["dilution"]["factor"] if "bottle" in tube else 0.0
+
+
 def shift_of(i: int) -> float:
     """Return how far a run's control is off: it fails once, and the last ones drift."""
     return {FAILED: 0.125, RUNS - 2: 0.0165, RUNS - 1: 0.0165}.get(i, 0.0)

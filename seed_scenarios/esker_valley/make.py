@@ -202,12 +202,9 @@ def planned(
         tube = {"role": "sample", "bottle": code, "dilution": dilution}
         start = len(tubes) + 1
         tubes += [{"position": start + i} | tube for i in range(3)]
-    first = next(tube for tube in tubes if tube["role"] == "sample")
-    of = {"bottle": first["bottle"], "dilution": first["dilution"]}
-    extra: list[Body] = [controls.CONTROL, {"role": "duplicate"} | of]
-    tubes += [{"position": len(tubes) + i} | tube for i, tube in enumerate(extra, start=1)]
+    tubes += controls.extra(tubes)
     body = {
-        "without": [{"role": "spike", "reason": "spiked in the control runs of this week"}],
+        "without": controls.NO_SPIKE,
         "name": name,
         "recipe": "high-range",
         "lot": "lot-14",
@@ -240,8 +237,7 @@ def read(
     story.tell(hours + 0.5, "calloway", "gate.confirmed", run, {"gate": "cooling_done"})
     for tube in tubes:
         if tube["role"] in ("control", "duplicate"):
-            diluted = true[tube["bottle"]] / tube["dilution"]["factor"] if "bottle" in tube else 0.0
-            body = controls.reading(tube, diluted, shift=0.0165)
+            body = controls.reading(tube, controls.diluted(tube, true), 0.0165)
             story.tell(hours + 0.6 + tube["position"] / 100, "calloway", "tube.read", run, body)
             continue
         cod = {"blank": 0.0, "verification": 495.0}.get(tube["role"])

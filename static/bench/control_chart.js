@@ -3,7 +3,7 @@
 import { html } from "../parts/html.js";
 import { plain } from "../parts/format.js";
 
-const [W, LEFT, RIGHT, TOP, BOTTOM] = [420, 46, 336, 16, 216];
+const [W, LEFT, RIGHT, TOP, BOTTOM] = [420, 46, 322, 16, 216];
 const MOST = 60;
 
 /** A percentage or a thousandth of an absorbance, with one decimal. */
@@ -55,7 +55,7 @@ export function ControlChart({ chart, view, unit, name }) {
     ${lines.map(([at, words, stop], i) => html`<g key=${i} font-size="12"><line x1=${LEFT} x2=${RIGHT} y1=${y(at)} y2=${y(at)} stroke=${stop ? "var(--stop)" : "var(--soft)"} stroke-width=${stop ? 2 : 1.2} stroke-dasharray=${words === "warning" ? "6 4" : null} />
       <text x=${RIGHT + 5} y=${y(at) + 4} class=${stop ? "above-text" : ""}>${words === "0" ? "" : words} ${digits(at)}</text></g>`)}
     ${rows[0].shown.map((_, k) => html`<polyline key=${k} points=${rows.map((row, i) => [row, i]).filter(([row]) => !row.left_out).map(([row, i]) => `${x(i).toFixed(1)},${y(row.shown[k]).toFixed(1)}`).join(" ")} fill="none" stroke="var(--water)" stroke-width="1.2" />`)}
-    ${rows.map((row, i) => row.left_out && (row.shown[0] > high + room || row.shown[0] < low - room) && html`<text key=${i} x=${x(i)} y=${row.shown[0] > high ? TOP + 16 : BOTTOM - 8} text-anchor="middle" font-size="11">${digits(row.shown[0])}</text>`)}
+    ${rows.map((row, i) => row.left_out && (row.shown[0] > high + room || row.shown[0] < low - room) && html`<text key=${i} x=${x(i) - 7} y=${row.shown[0] > high ? TOP + 4 : BOTTOM + 4} text-anchor="end" font-size="12">${digits(row.shown[0])}</text>`)}
     ${rows.map((row, i) => row.shown.map((value, k) => html`<${Mark} key=${`${i} ${k}`} x=${x(i)} y=${y(value)} point=${row} />`))}
     <text x=${LEFT + 8} y="236" font-size="12">${rows[0].at.slice(0, 10)}</text><text x=${RIGHT} y="236" text-anchor="end" font-size="12">${rows.at(-1).at.slice(0, 10)}</text></svg>`;
 }
