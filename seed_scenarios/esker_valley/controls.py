@@ -111,7 +111,7 @@ def run(i: int, hours: float) -> Iterator[Statement]:
     tubes = rack(factor)
     body: Body = {"name": f"Control run {i + 1}", "recipe": "high-range", "lot": "lot-14"}
     body |= {"instrument": "photometer-2", "block": "block-1", "calibration": "curve-high"}
-    yield hours, who, "run.planned", id_, body | {"container": "container-11", "tubes": tubes, "without": []}
+    yield hours, who, "run.planned", id_, body | {"container": "container-12", "tubes": tubes, "without": []}
     for k, gate in enumerate(GATES):
         yield hours + 0.1 + k / 50, who, "gate.confirmed", id_, {"gate": gate}
     hot = {"text": "150.2", "unit": "Cel"}

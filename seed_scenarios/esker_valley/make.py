@@ -295,7 +295,8 @@ def story_of(points: dict[str, Body], codes: list[str]) -> list[Body]:
     sample(story, -0.6, points["wend-b"], codes[9], 5, "label read in the rain")
     story.told[-1]["about"] = "sample-twice"
     round_of_today(story)
-    care_of_stores(story)
+    for one in laboratory.care():
+        story.tell(*one)
     return sorted(story.told, key=lambda one: one["hours"])
 
 
@@ -378,35 +379,6 @@ def sampler(story: Story, hours: float) -> None:
     body |= {"seal": "4483", "lock": "7"}
     set_up = {"after": 0.3, "kind": "sampler.set", "about": "composite-corrie", "body": body}
     visit(story, hours, "corrie-a", "sampler set", "", "normal", [set_up])
-
-
-def care_of_stores(story: Story) -> None:
-    """Tell a probe in the block, a container that left last quarter, and another waste of the site."""
-    probe: Body = {"what": "block temperature", "on": "@day-20", "wanted": "150", "water_c": None, "note": ""}
-    story.tell(
-        -480,
-        "calloway",
-        "instrument.checked",
-        "block-1",
-        probe | {"found": ["150.6", "149.2"], "next_on": "@day10"},
-    )
-    story.tell(
-        -2400,
-        "calloway",
-        "container.opened",
-        "container-11",
-        {"name": "Container 11, acid COD digest", "capacity_ml": "5000"},
-    )
-    left: Body = {
-        "to": "picked up",
-        "on": "@day-40",
-        "by": "Ridgeline Haulers",
-        "manifest": "014-772",
-        "note": "",
-    }
-    story.tell(-960, "calloway", "container.moved", "container-11", left)
-    other: Body = {"stream": "spent solvent, metals bench", "on": "@day-3", "acute": False, "note": ""}
-    story.tell(-70, "calloway", "waste.added", "waste-1", other | {"mass": measured("3.2", "kg")})
 
 
 def main() -> None:
