@@ -21,11 +21,18 @@ function overWords(sample, run) {
   return `${count[0].toUpperCase()}${count.slice(1)} ${tubes.length === 1 ? "tube" : "tubes"} went green: the dichromate is spent and no number can be given. Keep the caps on.`;
 }
 
+/** What tubes that disagree leave: their median, which of them stands furthest off, and what to do. */
+function disagreeWords({ cod, suspect, sample }, run) {
+  const far = suspect === null ? null : tubesOfSample(run, { sample }).filter((tube) => tube.absorbance)[suspect];
+  const median = cod === null ? "" : ` Their median is ${plain(cod)} mg/L, provisional.`;
+  return `The tubes disagree: they lie further apart than this laboratory's repeatability explains.${median}${far ? ` Position ${far.position} stands furthest off, which convicts nobody: leave it out only for a cause that was seen.` : ""} Repeat this sample.`;
+}
+
 const TOLD = new Map([
   ["ok", (s) => (s.excluded.length ? `${s.used.length} tubes agree, ${s.excluded.length} left out.` : `${s.used.length} ${s.used.length === 1 ? "tube" : "tubes agree"}.`)],
   ["over", overWords],
   ["below", () => "Below the working range at this dilution."],
-  ["disagree", () => "The tubes disagree: the value is provisional. Repeat this sample."],
+  ["disagree", disagreeWords],
 ]);
 
 /** The next dilution as the server stated it beside the result, or what it says instead. */
