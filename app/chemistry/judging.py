@@ -12,7 +12,7 @@ from __future__ import annotations
 from collections.abc import Sequence
 from dataclasses import dataclass
 
-from app.chemistry.control_charts import Limits, cusum, ewma, rules_fired
+from app.chemistry.control_charts import RUN_OF_ONE_SIDE, Limits, cusum, ewma, rules_fired
 
 CUSUM_DECISION = 5.0
 
@@ -42,7 +42,9 @@ class Judged:
     lower: float | None
 
 
-def judge(values: Sequence[float], limits: Limits, ranges: bool = False) -> tuple[Judged, ...]:
+def judge(
+    values: Sequence[float], limits: Limits, ranges: bool = False, before: Sequence[Judged] = ()
+) -> tuple[Judged, ...]:
     """Judge results by frozen limits.
 
     Parameters
@@ -53,6 +55,9 @@ def judge(values: Sequence[float], limits: Limits, ranges: bool = False) -> tupl
         Frozen; their sigma is above zero.
     ranges : bool
         Whether the chart is one of ranges.
+    before : sequence of Judged
+        The results after the baseline that were judged already, at least the
+        last six of them; they are not judged again.
 
     Returns
     -------
@@ -61,14 +66,19 @@ def judge(values: Sequence[float], limits: Limits, ranges: bool = False) -> tupl
     """
     words: list[list[str]] = [[] for _ in values]
     stops = [False] * len(values)
-    for fired in rules_fired(values, limits):
-        words[fired.index].append(fired.words)
-        stops[fired.index] = stops[fired.index] or fired.stops
+    earlier = [one.value for one in before[1 - RUN_OF_ONE_SIDE :]]
+    for fired in rules_fired([*earlier, *values], limits):
+        index = fired.index - len(earlier)
+        if index >= 0:
+            words[index].append(fired.words)
+            stops[index] = stops[index] or fired.stops
     if ranges:
         rows = zip(values, stops, words, strict=True)
         return tuple(Judged(v, stop, tuple(said), None, None, None) for v, stop, said in rows)
-    average = ewma(values, limits.centre, limits.sigma)
-    sums = cusum(values, limits.centre, limits.sigma, h=CUSUM_DECISION)
+    last = before[-1] if before else Judged(0.0, False, (), None, None, None)
+    average = ewma(values, limits.centre, limits.sigma, start=last.average)
+    start = (last.upper or 0.0, last.lower or 0.0)
+    sums = cusum(values, limits.centre, limits.sigma, h=CUSUM_DECISION, start=start)
     for i in average.signals:
         words[i].append("the moving average (EWMA) is beyond its limits")
     for i in sums.signals:

@@ -12,7 +12,7 @@ from typing import Any
 
 from app import __version__
 from app.chemistry.control_charts import Limits, ewma, freeze, individuals_limits, no_wider_than, range_limits
-from app.chemistry.judging import CUSUM_DECISION, judge
+from app.chemistry.judging import CUSUM_DECISION, Judged, judge
 from app.errors import InputError
 from app.journal.entry import digest
 from app.journal.kinds.charts import CHARTS
@@ -27,6 +27,9 @@ NAMES = {
 }
 #: The decision that takes a failed check out of the chart's sequences; it stays listed with its cause.
 NOT_USED = "not used"
+#: Results that a chart shows beside its baseline; older ones stand in the journal and in their runs.
+MOST_POINTS = 200
+_SUMS = ("average", "upper", "lower")
 _JUDGEMENT: Body = {"fired": [], "stops": False, "average": None, "upper": None, "lower": None}
 
 
@@ -69,7 +72,7 @@ def judge_run(writing: Stating, run_id: str) -> None:
         if not new and all(point["run"] != run_id for point in old):
             continue
         baseline = chart["baseline"] if chart else None
-        points = _judged(_joined(old, new, run_id), baseline)
+        points = _judged(_joined(old, new, run_id), baseline, old)
         place = {"recipe": run["recipe"], "instrument": run["instrument"], "what": what}
         _state(writing, id_, place, old, points, baseline)
 
@@ -88,19 +91,36 @@ def _joined(old: list[Body], new: list[Body], run_id: str) -> list[Body]:
     return sorted(kept, key=lambda one: (one["at"], one["run"], one["position"] or 0))
 
 
-def _judged(points: list[Body], baseline: Body | None) -> list[Body]:
-    """Return the points, those outside the baseline and after its first judged by its limits."""
+def _raw(point: Body) -> Body:
+    return {name: value for name, value in point.items() if name not in _JUDGEMENT}
+
+
+def _judged(points: list[Body], baseline: Body | None, known: list[Body]) -> list[Body]:
+    """Return the points, those outside the baseline and after its first judged by its limits.
+
+    What was judged before the first change stands: sums go on from there.
+    """
     first = next((i for i, point in enumerate(points) if point["base"]), None)
     if baseline is None or first is None:
         return points
     later = [i for i, point in enumerate(points) if i > first and not point["base"] and not point["left_out"]]
     limits = Limits(**baseline["limits"])
-    found = judge([points[i]["value"] for i in later], limits, baseline["what"] == "duplicate")
+    same = (_raw(a) == _raw(b) for a, b in zip(known, points, strict=False))
+    fresh = next((i for i, one in enumerate(same) if not one), min(len(known), len(points)))
+    before = [_said(known[i]) for i in later if i < fresh]
+    later = [i for i in later if i >= fresh]
+    values = [points[i]["value"] for i in later]
+    found = judge(values, limits, baseline["what"] == "duplicate", before)
     judged = [point if point["decided"] else point | _JUDGEMENT for point in points]
+    judged[:fresh] = known[:fresh]
     for i, one in zip(later, found, strict=True):
         said = asdict(one)
         judged[i] |= {name: said[name] for name in _JUDGEMENT} | {"fired": list(one.fired)}
     return judged
+
+
+def _said(point: Body) -> Judged:
+    return Judged(point["value"], point["stops"], tuple(point["fired"]), *(point[name] for name in _SUMS))
 
 
 def _state(
@@ -114,6 +134,18 @@ def _state(
     writing.state(
         "chart.judged", id_, body | {"begins": begins, "points": points[begins:], "baseline": baseline}
     )
+
+
+def latest(points: list[Body]) -> list[Body]:
+    """Return a chart's baseline and its latest other results."""
+    gone = len([point for point in points if not point["base"]]) - MOST_POINTS
+    kept = []
+    for point in points:
+        if point["base"] or gone <= 0:
+            kept.append(point)
+        else:
+            gone -= 1
+    return kept
 
 
 def members(chart: Body, asked: Body) -> list[Body]:
@@ -223,4 +255,4 @@ def freeze_baseline(writing: Stating, id_: str) -> None:
             | {"base": bool(one and not one["left_out"]), **({"left_out": one["left_out"]} if one else {})}
         )
     place = {name: chart[name] for name in ("recipe", "instrument", "what")}
-    _state(writing, id_, place, chart["points"], _judged(points, baseline), baseline)
+    _state(writing, id_, place, chart["points"], _judged(points, baseline, []), baseline)

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import json
+import random
 from typing import Any
 
 from hypothesis import HealthCheck, given, settings
@@ -101,3 +102,21 @@ def test_what_is_judged_first_is_judged_the_same_when_more_has_come() -> None:
     assert [judge(values[: i + 1], limits)[-1] for i in range(len(values))] == list(whole)
     assert [i for i, one in enumerate(whole) if one.stops] == [3]
     assert any("moving average" in words for one in whole for words in one.fired)
+
+
+def test_judging_goes_on_where_it_stood_and_says_the_same() -> None:
+    limits = individuals_limits(freeze("b", [99.0, 101.0, 100.5, 99.5] * 5))
+    rng = random.Random(7)
+    values = [100 + rng.gauss(0.3, 1.0) for _ in range(60)]
+    whole = judge(values, limits)
+    for i in (1, 6, 20, 59):
+        assert (*whole[:i], *judge(values[i:], limits, before=whole[:i])) == whole
+    assert any(one.fired for one in whole)
+
+
+def test_a_chart_keeps_its_baseline_and_its_latest_results() -> None:
+    points = [{"n": i, "base": 5 <= i < 25} for i in range(300)]
+    kept = charts.latest(points)
+    assert [one["n"] for one in kept if one["base"]] == list(range(5, 25))
+    assert [one["n"] for one in kept if not one["base"]] == list(range(100, 300))
+    assert charts.latest(kept) == kept

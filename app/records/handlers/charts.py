@@ -30,7 +30,7 @@ def chart_judged(change: Change) -> None:
         before[point["run"]] += [_fired(id_, body["what"], point)] if point["fired"] else []
     for run_id, fired in before.items():
         _tell_run(change, run_id, id_, fired)
-    points = chart["points"][: body["begins"]] + body["points"]
+    points = charts.latest(chart["points"][: body["begins"]] + body["points"])
     old = chart["baselines"]
     new = [body["baseline"]] if body["baseline"] and body["baseline"] != chart["baseline"] else []
     chart |= {name: body[name] for name in ("recipe", "instrument", "what", "baseline")}
