@@ -16,6 +16,7 @@ from app.chemistry.judging import CUSUM_DECISION, Judged, judge
 from app.errors import InputError
 from app.journal.entry import digest
 from app.journal.kinds.charts import CHARTS
+from app.records import controls
 from app.records.change import Body, Stating
 
 NAMES = {
@@ -25,8 +26,6 @@ NAMES = {
     "duplicate": "duplicate",
     "spike": "spike recovery",
 }
-#: The decision that takes a failed check out of the chart's sequences; it stays listed with its cause.
-NOT_USED = "not used"
 #: Results that a chart shows beside its baseline; older ones stand in the journal and in their runs.
 MOST_POINTS = 200
 _SUMS = ("average", "upper", "lower")
@@ -42,11 +41,7 @@ def chart_id(recipe: str, instrument: str, what: str) -> str:
 def points_of(run_id: str, run: Body, what: str) -> list[Body]:
     """Return a calculated run's points on one chart."""
     at = (run.get("heating") or {}).get("started_at") or run["planned_at"]
-    unused = {
-        (one["what"], one["subject"]): one["reason"]
-        for one in (run["closed"] or {}).get("decisions", [])
-        if one["decision"] == NOT_USED
-    }
+    unused = controls.unused(run)
     return [
         {"run": run_id, "name": run["name"], "at": at, "position": one["position"], "value": one["value"]}
         | {"ok": one["ok"], "base": False, "decided": unused.get((what, one["subject"]), "")}

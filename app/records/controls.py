@@ -18,6 +18,16 @@ from app.records.change import Body
 EXTRA = ("duplicate", "spike")
 
 
+#: The decision that takes a failed check out of charts and bias; it stays listed with its cause.
+NOT_USED = "not used"
+
+
+def unused(run: Body) -> dict[tuple[str, str], str]:
+    """Return the checks of a run that a person decided not to use, each with the reason."""
+    decisions = (run.get("closed") or {}).get("decisions", [])
+    return {(d["what"], d["subject"]): d["reason"] for d in decisions if d["decision"] == NOT_USED}
+
+
 def is_extra(name: str) -> bool:
     """Tell whether a sample of an answer is a duplicate or a spiked portion."""
     return name.split(" ")[1:2] in (["duplicate"], ["spike"])

@@ -59,16 +59,22 @@ def _scatter_words(found: LabRepeatability) -> str:
     return f"start values until {ENOUGH_SETS} own sets exist; {found.sets} so far"
 
 
+def _recoveries(run: Body) -> list[float]:
+    """Return the recoveries of a run's controls; one with a found cause says nothing of the bias."""
+    unused = controls.unused(run)
+    return [
+        one["value"]
+        for one in run.get("checks") or []
+        if one["what"] == "control" and not one["left_out"] and one["value"] is not None
+        if (one["what"], one["subject"]) not in unused
+    ]
+
+
 def _bias(runs: list[Body], settings: Body) -> Body:
     given = {"relative_u": settings["bias_relative_u"], "dof": settings["bias_dof"], "own": False}
     if settings["bias_dof"] is not None:
         return given | {"n": None, "words": "set by the programme"}
-    checks = (one for run in runs for one in run.get("checks") or [])
-    recoveries = [
-        one["value"]
-        for one in checks
-        if one["what"] == "control" and not one["left_out"] and one["value"] is not None
-    ]
+    recoveries = [value for run in runs for value in _recoveries(run)]
     n = len(recoveries)
     if n < ENOUGH_CONTROLS:
         return given | {

@@ -211,18 +211,27 @@ def _tubes_found(run: Body, given: Body, answer: Body, capacity: float) -> list[
     blank = answer["checks"]["blank"]
     zero = blank["mean"] if blank else 0.0
     curve = {name: given["calibration"][name] for name in ("standards", "model", "weights")}
-    found = []
-    for tube in run["tubes"]:
-        if tube["absorbance"] is None:
-            continue
-        try:
-            corrected = (_absorbance(tube) or 0.0) - zero
-            cod = verbs.find("fit")(curve | {"read": [[corrected]]})["read"][0]["cod"]
-        except WeirbookError:  # beyond the curve's turning point there is no number
-            cod = None
-        share = None if cod is None else max(0.0, cod / capacity)
-        found.append({"position": tube["position"], "in_tube": cod, "share": share})
-    return found
+    read = [tube for tube in run["tubes"] if tube["absorbance"] is not None]
+    cods = _turned_back(curve, [(_absorbance(tube) or 0.0) - zero for tube in read])
+    return [
+        {
+            "position": tube["position"],
+            "in_tube": cod,
+            "share": None if cod is None else max(0.0, cod / capacity),
+        }
+        for tube, cod in zip(read, cods, strict=True)
+    ]
+
+
+def _turned_back(curve: Body, absorbance: list[float]) -> list[float | None]:
+    """Return the COD of each reading; beyond the curve's turning point there is no number."""
+    try:
+        given = curve | {"read": [[one] for one in absorbance]}
+        return [one["cod"] for one in verbs.find("fit")(given)["read"]]
+    except WeirbookError:
+        if len(absorbance) == 1:
+            return [None]
+    return [cod for one in absorbance for cod in _turned_back(curve, [one])]
 
 
 def calculate_run(writing: Stating, id_: str) -> None:

@@ -83,7 +83,9 @@ def test_another_recipes_tubes_teach_nothing() -> None:
 
 def controlled(*recoveries: float, left_out: str = "") -> dict[str, Any]:
     """Return a run with control samples of these recoveries."""
-    checks = [{"what": "control", "value": one, "left_out": left_out} for one in recoveries]
+    checks = [
+        {"what": "control", "subject": "position 5", "value": one, "left_out": left_out} for one in recoveries
+    ]
     return run(0.01, 0) | {"checks": checks}
 
 
@@ -99,6 +101,14 @@ def test_from_twenty_controls_the_bias_is_the_laboratorys_own() -> None:
     assert found["policy"]["bias_relative_u"] == pytest.approx((0.03**2 + 0.005**2) ** 0.5, rel=1e-12)
     assert (found["policy"]["bias_dof"], found["bias"]["n"]) == (21, 22)
     assert "Nordtest TR 537" in found["bias"]["words"]
+
+
+def test_a_control_that_was_not_used_for_a_cause_says_nothing_of_the_bias() -> None:
+    decision = {"what": "control", "subject": "position 5", "decision": "not used", "reason": "stood open"}
+    spoilt = controlled(150.0) | {"closed": {"decisions": [decision]}}
+    kept = controlled(150.0) | {"closed": {"decisions": [decision | {"decision": "accept with a note"}]}}
+    assert learned(START, controlled(*[98.0] * 19), spoilt)["bias"]["n"] == 19
+    assert learned(START, controlled(*[98.0] * 19), kept)["bias"]["n"] == 20
 
 
 def test_a_bias_with_its_own_degrees_of_freedom_stands() -> None:
