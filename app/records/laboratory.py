@@ -78,7 +78,8 @@ def _looked_at(given: Body, recipe: Body) -> Body:
     """Return what is the matter with a curve, in words, and each reading's residual and leverage."""
     levels = [Standard(one["cod"], tuple(one["absorbance"])) for one in given["standards"]]
     curve = fit(levels, given["model"], given["weights"])
-    found = findings(curve, levels, Recipe(**recipe_input(recipe)))
+    reach = (recipe["working_low"], recipe["working_high"])
+    found = findings(curve, levels, Recipe(**recipe_input(recipe)), reach)
     return {
         "findings": [asdict(one) for one in found],
         "residuals": [asdict(one) for one in residuals(curve, levels)],

@@ -21,7 +21,7 @@ const BRACKET = 10; // verification after at most ten analyses and at the end: E
 const BATCH = 20; // samples, its controls not counted: 40 CFR 136.7, common practice
 const POSITIONS = 25;
 
-const confirmed = (curve) => !programme()?.settings?.second_source_required || curve.checks?.some((check) => check.what === "second source" && check.judged?.ok);
+const confirmed = (curve) => !programme()?.settings?.second_source_required || !curveDoubt(curve);
 const usable = (curve) => confirmed(curve) && !curve.fitted?.error && !curve.fitted?.findings?.some((one_) => one_.severity === "stop");
 
 /** The curves that a run may be read with: of the recipe, and not past their date. */

@@ -121,7 +121,7 @@ const KINDS = new Map(Object.entries({
   }),
   "calibration.made": (layer, { about, at, by }, body) => layer.put("calibration", about, {
     weights: "equal", ...body, wavelength_nm: number(body.wavelength_nm), made_at: at, made_by: layer.name(by), fitted: null,
-    tube: layer.get("recipe", body.recipe)?.tube ?? "", checks: [],
+    tube: layer.get("recipe", body.recipe)?.tube ?? "", checks: [], due: {},
   }, { parent: body.recipe, at }),
   "curve.checked": (layer, { id, about, at, by }, body) => layer.update("calibration", about, (curve) => ({
     checks: [...curve.checks, { ...body, id, at, by: layer.name(by), judged: null }],

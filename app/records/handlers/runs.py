@@ -14,7 +14,7 @@ from app.journal import measured
 from app.records import controls, interferences
 from app.records.change import Body, Change, Refused
 from app.records.handlers import handles
-from app.records.handlers.curves import wrong_curve
+from app.records.handlers.curves import unfit, wrong_curve
 from app.records.handlers.field import bottle, put_bottle
 from app.records.handlers.waste import DIGEST, add_to_month, day_of
 from app.records.laboratory import waste_of
@@ -203,6 +203,17 @@ def heating_ended(change: Change, run: Body) -> None:
     run["state"] = "cooling" if change.body["complete"] else "failed"
 
 
+def _belongs(change: Change, run: Body) -> None:
+    """Refuse a first reading that the run's curve does not serve; the number stays with the held entry."""
+    if found := unfit(change, run):
+        raise Refused(
+            "wrong_curve",
+            f"This curve does not serve this reading: {'; '.join(found)}. The reading is kept, but no result "
+            "follows from it: plan these bottles again with a curve that holds.",
+            {"calibration": found},
+        )
+
+
 @handles("tube.read")
 @_on_run
 def tube_read(change: Change, run: Body) -> None:
@@ -210,6 +221,8 @@ def tube_read(change: Change, run: Body) -> None:
     _in_state(run, "cooling", "reading", "calculated")
     _open_gates(change, run, "before reading")
     tube = _tube(run, change.body["position"])
+    if tube["absorbance"] is None and not change.replayed:
+        _belongs(change, run)
     if tube["absorbance"] is not None and not change.body.get("reason", "").strip():
         raise Refused(
             "reason_needed",
