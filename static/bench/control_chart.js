@@ -21,9 +21,9 @@ function viewed(chart, view) {
   return { rows, lines: chart.what === "duplicate" ? all.slice(0, 3) : all };
 }
 
-function Mark({ x, y, point }) {
+function Mark({ x, y, point, hit }) {
   if (point.left_out) return html`<path d="M${x - 4} ${y - 4}l8 8m0-8l-8 8" stroke="var(--soft)" stroke-width="2" />`;
-  if (point.fired.length) return html`<path d="M${x} ${y - 7}l7 12h-14z" fill="var(--stop)" stroke="var(--card)" />`;
+  if (hit) return html`<path d="M${x} ${y - 7}l7 12h-14z" fill="var(--stop)" stroke="var(--card)" />`;
   return html`<circle cx=${x} cy=${y} r="4" fill=${point.base ? "var(--card)" : "var(--water)"} stroke="var(--water)" stroke-width="1.6" />`;
 }
 
@@ -47,6 +47,7 @@ export function ControlChart({ chart, view, unit, name }) {
   const values = [...rows.flatMap((row) => (row.left_out ? [] : row.shown)), ...lines.map(([at]) => at)];
   const [low, high] = [Math.min(...values), Math.max(...values)];
   const room = (high - low || 1) * 0.1;
+  const beyond = (value) => value > Math.max(...lines.map(([at]) => at)) || value < Math.min(...lines.map(([at]) => at));
   const y = (value) => Math.min(BOTTOM, Math.max(TOP, BOTTOM - ((value - low + room) / (high - low + 2 * room)) * (BOTTOM - TOP)));
   const x = (i) => LEFT + 8 + (i + 0.5) * ((RIGHT - LEFT - 8) / rows.length);
   return html`<svg class="chart" viewBox="0 0 ${W} 246" role="img" aria-label=${chartWords(chart, name)}>
@@ -56,6 +57,6 @@ export function ControlChart({ chart, view, unit, name }) {
       <text x=${RIGHT + 5} y=${y(at) + 4} class=${stop ? "above-text" : ""}>${words === "0" ? "" : words} ${digits(at)}</text></g>`)}
     ${rows[0].shown.map((_, k) => html`<polyline key=${k} points=${rows.map((row, i) => [row, i]).filter(([row]) => !row.left_out).map(([row, i]) => `${x(i).toFixed(1)},${y(row.shown[k]).toFixed(1)}`).join(" ")} fill="none" stroke="var(--water)" stroke-width="1.2" />`)}
     ${rows.map((row, i) => row.left_out && (row.shown[0] > high + room || row.shown[0] < low - room) && html`<text key=${i} x=${x(i) - 7} y=${row.shown[0] > high ? TOP + 4 : BOTTOM + 4} text-anchor="end" font-size="12">${digits(row.shown[0])}</text>`)}
-    ${rows.map((row, i) => row.shown.map((value, k) => html`<${Mark} key=${`${i} ${k}`} x=${x(i)} y=${y(value)} point=${row} />`))}
+    ${rows.map((row, i) => row.shown.map((value, k) => html`<${Mark} key=${`${i} ${k}`} x=${x(i)} y=${y(value)} point=${row} hit=${view === "single" ? row.fired.length > 0 : beyond(value)} />`))}
     <text x=${LEFT + 8} y="236" font-size="12">${rows[0].at.slice(0, 10)}</text><text x=${RIGHT} y="236" text-anchor="end" font-size="12">${rows.at(-1).at.slice(0, 10)}</text></svg>`;
 }
