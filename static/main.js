@@ -1,9 +1,11 @@
 // The client begins here: the device's records are read, the screen is drawn from them, then the exchange starts.
 
 import { html, render, useEffect, useRef, useState } from "./parts/html.js";
-import { getMeta } from "./parts/db.js";
+import { getMeta, keepReserve, store } from "./parts/db.js";
+import { askToKeep, gradeNow } from "./parts/durability.js";
 import { askState } from "./parts/session.js";
 import { startSync } from "./parts/sync.js";
+import { offer } from "./parts/update.js";
 import { loadUnits } from "./parts/units.js";
 import { load } from "./parts/view.js";
 import { go } from "./parts/frame.js";
@@ -24,6 +26,7 @@ const PLACES = new Map([["field", field], ["bench", bench], ["review", review]])
 /** Draw on an emptied root: what index.html shows while opening is not ours to keep. */
 function draw(screen) {
   const root = document.getElementById("app");
+  render(null, root);
   root.replaceChildren();
   render(screen, root);
 }
@@ -72,9 +75,6 @@ function followLinks() {
 async function registerWorker() {
   if (!("serviceWorker" in navigator)) return;
   const registration = await navigator.serviceWorker.register("/sw.js", { updateViaCache: "none" });
-  const offer = (worker) => {
-    if (worker && navigator.serviceWorker.controller) dispatchEvent(new CustomEvent("weirbook-update", { detail: worker }));
-  };
   offer(registration.waiting);
   registration.addEventListener("updatefound", () => {
     const worker = registration.installing;
@@ -95,9 +95,15 @@ async function firstScreen() {
   return null;
 }
 
+/** While the store cannot be opened nothing is drawn but why. */
+function sayTrouble() {
+  if (store.trouble) draw(html`<main class="page"><h1>Weirbook cannot open yet</h1><p role="alert">${store.trouble}</p></main>`);
+}
+
 async function begin() {
   applyComfort();
-  await Promise.all([loadUnits(), load()]);
+  addEventListener("weirbook-store", sayTrouble);
+  await Promise.all([loadUnits(), load(), gradeNow().catch(() => {})]);
   followLinks();
   const open = location.pathname === "/emergency" || location.pathname === "/start";
   const here = await getMeta("person");
@@ -107,9 +113,11 @@ async function begin() {
   } else if (location.pathname === "/") {
     history.replaceState(null, "", "/field");
   }
+  removeEventListener("weirbook-store", sayTrouble);
   draw(html`<${App} />`);
+  askToKeep().catch(() => {});
   await registerWorker().catch(() => {});
-  await navigator.storage?.persist?.().catch(() => false);
+  await keepReserve().catch(() => {});
   await startSync();
 }
 

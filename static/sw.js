@@ -5,11 +5,12 @@ const SHELL = /*__SHELL__*/[];
 const CACHE = `weirbook-${BUILD}`;
 
 async function install() {
+  const before = await caches.has(CACHE);
   const cache = await caches.open(CACHE);
   try {
     await cache.addAll(SHELL.map((path) => new Request(path, { cache: "reload" })));
   } catch (error) {
-    await caches.delete(CACHE);
+    if (!before) await caches.delete(CACHE);
     throw error;
   }
 }

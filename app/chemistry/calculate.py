@@ -28,7 +28,7 @@ from typing import Literal
 from app.chemistry.advice import Advice, NextDilutionRule, Seen, Status, advise, next_dilution_by_rule
 from app.chemistry.calibration import fit
 from app.chemistry.curve import Curve
-from app.chemistry.diagnostics import slope_findings
+from app.chemistry.diagnostics import beyond_standards, slope_findings
 from app.chemistry.quality import (
     BlankCheck,
     DuplicateCheck,
@@ -225,13 +225,8 @@ def _slope_warnings(run: Run, curve: Curve) -> list[str]:
 
 def _range_warnings(run: Run, curve: Curve) -> list[str]:
     words = list(range_warnings(run.recipe, run.working_range))
-    low, high = run.working_range
-    if high > curve.high or low < curve.low:
-        words.append(
-            f"The working range ({low:g} to {high:g} mg/L) reaches beyond the standards "
-            f"({curve.low:g} to {curve.high:g} mg/L): outside them the curve is a guess."
-        )
-    return words
+    beyond = beyond_standards(curve, run.working_range)
+    return [*words, beyond] if beyond else words
 
 
 @dataclass(frozen=True)

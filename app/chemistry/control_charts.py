@@ -244,7 +244,10 @@ def rules_fired(values: Sequence[float], limits: Limits) -> tuple[Fired, ...]:
     for i, value in enumerate(values):
         if not limits.lower_action <= value <= limits.upper_action:
             fired.append(Fired(i, True, f"beyond the action limit of '{limits.baseline}'"))
-        fired += [Fired(i, False, words) for words in _patterns(values[: i + 1], limits)]
+        fired += [
+            Fired(i, False, words)
+            for words in _patterns(values[max(0, i + 1 - RUN_OF_ONE_SIDE) : i + 1], limits)
+        ]
     return tuple(fired)
 
 
@@ -289,7 +292,12 @@ class Ewma:
 
 
 def ewma(
-    values: Sequence[float], centre: float, sigma: float, weight: float = 0.2, width: float = 2.962
+    values: Sequence[float],
+    centre: float,
+    sigma: float,
+    weight: float = 0.2,
+    width: float = 2.962,
+    start: float | None = None,
 ) -> Ewma:
     """Return the EWMA of some results.
 
@@ -302,12 +310,14 @@ def ewma(
     weight, width : float
         lambda and L; 0.2 and 2.962 signal falsely once in 500 results and
         find a shift of one sigma in about ten.
+    start : float, optional
+        The average after the result before the first; the centre where none.
 
     Returns
     -------
     Ewma
     """
-    found, z = [], centre
+    found, z = [], centre if start is None else start
     for value in values:
         z = weight * value + (1.0 - weight) * z
         found.append(z)
@@ -333,7 +343,14 @@ class Cusum:
     signals: tuple[int, ...]
 
 
-def cusum(values: Sequence[float], centre: float, sigma: float, k: float = 0.5, h: float = 5.0) -> Cusum:
+def cusum(
+    values: Sequence[float],
+    centre: float,
+    sigma: float,
+    k: float = 0.5,
+    h: float = 5.0,
+    start: tuple[float, float] = (0.0, 0.0),
+) -> Cusum:
     """Return the cumulative sums of some results.
 
     Parameters
@@ -345,6 +362,8 @@ def cusum(values: Sequence[float], centre: float, sigma: float, k: float = 0.5, 
     k, h : float
         Slack and decision interval in sigma; 0.5 and 5 signal falsely once
         in 465 results and find a shift of one sigma in about ten.
+    start : tuple of float
+        The sums upwards and downwards after the result before the first.
 
     Returns
     -------
@@ -358,7 +377,7 @@ def cusum(values: Sequence[float], centre: float, sigma: float, k: float = 0.5, 
     wrong = Problems()
     wrong.number("sigma", sigma, above=0)
     wrong.stop("A cumulative sum needs a scatter.")
-    upper, lower, high, low = [], [], 0.0, 0.0
+    upper, lower, (high, low) = [], [], start
     for value in values:
         z = (value - centre) / sigma
         high, low = max(0.0, high + z - k), max(0.0, low - z - k)

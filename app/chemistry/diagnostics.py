@@ -18,7 +18,7 @@ from typing import Literal
 from scipy.special import fdtrc, fdtri
 
 from app.chemistry.calibration import Standard
-from app.chemistry.curve import Curve
+from app.chemistry.curve import Curve, FTest
 from app.chemistry.recipe import Recipe, slope_band
 
 Severity = Literal["note", "warning", "stop"]
@@ -173,7 +173,7 @@ class Finding:
         How serious.
     about : str
         A short key: ``slope``, ``scatter``, ``bend``, ``leverage``,
-        ``interval``, ``recovery``.
+        ``interval``, ``recovery``, ``range``.
     words : str
         What is seen and what to do.
     """
@@ -231,20 +231,25 @@ def _scatter(curve: Curve, standards: Sequence[Standard]) -> list[Finding]:
     return [Finding("warning" if curve.weights == "equal" else "note", "scatter", words + remedy)]
 
 
+def _told(test: FTest) -> str:
+    return f"F {test.f:.3g}, p {'under 0.001' if test.p < 0.001 else f'{test.p:.3f}'}"
+
+
 def _bend(curve: Curve) -> list[Finding]:
     found = []
+    mandel = "Mandel" if curve.mandel is None else f"Mandel's test, {_told(curve.mandel)}"
     bent = curve.mandel is not None and curve.mandel.p < SIGNIFICANT
     levels = len({row.cod for row in curve.standards})
     if curve.model == "linear" and bent:
         if levels >= LEVELS_FOR_PARABOLA:
             words = (
-                "The standards follow a bend (Mandel): they have earned a quadratic, or shorten the range."
+                f"The standards follow a bend ({mandel}): they have earned a quadratic, or shorten the range."
             )
         else:
-            words = "The standards seem to follow a bend (Mandel): shorten the range, or add standards."
+            words = f"The standards seem to follow a bend ({mandel}): shorten the range, or add standards."
         found.append(Finding("warning", "bend", words))
     if curve.model == "quadratic" and not bent:
-        words = "The parabola explains no more than a line would (Mandel): a straight line suffices."
+        words = f"The parabola explains no more than a line would ({mandel}): a straight line suffices."
         found.append(Finding("note", "bend", words))
     if (
         curve.lack_of_fit is not None
@@ -252,7 +257,8 @@ def _bend(curve: Curve) -> list[Finding]:
         and not (curve.model == "linear" and bent)
     ):
         words = (
-            "The standards lie further off the curve than their replicates explain: look at single standards."
+            f"The standards lie further off the curve than their replicates explain (lack of fit, "
+            f"{_told(curve.lack_of_fit)}): look at single standards."
         )
         found.append(Finding("warning", "bend", words))
     return found
@@ -260,14 +266,19 @@ def _bend(curve: Curve) -> list[Finding]:
 
 def _recoveries(curve: Curve) -> list[Finding]:
     low, high = RECOVERY_PERCENT
+    seen = [(row.cod, row.recovery_percent) for row in curve.standards if row.cod > 0]
     off = [
-        f"{row.cod:g}"
-        for row in curve.standards
-        if row.cod > 0 and (row.recovery_percent is None or not low <= row.recovery_percent <= high)
+        f"{cod:g} mg/L ({'no number' if share is None else f'{share:.0f} %'})"
+        for cod, share in seen
+        if share is None or not low <= share <= high
     ]
     found = []
     if off:
-        words = f"Standards at {', '.join(off)} mg/L do not find themselves within {low:g} to {high:g} %."
+        weigh = ", or weight by 1/x" if curve.weights == "equal" else ""
+        words = (
+            f"Standards at {', '.join(off)} do not find themselves within {low:g} to {high:g} %: look at "
+            f"them, shorten the range{weigh}."
+        )
         found.append(Finding("warning", "recovery", words))
     rse = curve.relative_standard_error_percent
     if rse is not None and rse > LARGE_RSE:
@@ -276,8 +287,35 @@ def _recoveries(curve: Curve) -> list[Finding]:
     return found
 
 
+def beyond_standards(curve: Curve, working_range: tuple[float, float]) -> str:
+    """Return the words about a working range that no standard covers.
+
+    Parameters
+    ----------
+    curve : Curve
+        Fitted.
+    working_range : tuple of float
+        mg/L in the tube.
+
+    Returns
+    -------
+    str
+        Empty when the standards cover it.
+    """
+    low, high = working_range
+    if curve.low <= low and high <= curve.high:
+        return ""
+    return (
+        f"The working range ({low:g} to {high:g} mg/L) reaches beyond the standards "
+        f"({curve.low:g} to {curve.high:g} mg/L): outside them the curve is a guess."
+    )
+
+
 def findings(
-    curve: Curve, standards: Sequence[Standard], recipe: Recipe | None = None
+    curve: Curve,
+    standards: Sequence[Standard],
+    recipe: Recipe | None = None,
+    working_range: tuple[float, float] | None = None,
 ) -> tuple[Finding, ...]:
     """Say everything that is the matter with a curve, most serious first.
 
@@ -289,6 +327,8 @@ def findings(
         Its standards.
     recipe : Recipe, optional
         For the direction and size of the slope.
+    working_range : tuple of float, optional
+        mg/L in the tube, which the standards should cover.
 
     Returns
     -------
@@ -305,10 +345,12 @@ def findings(
         found.append(Finding("warning", "interval", words))
     rows = residuals(curve, standards)
     limit = LARGE_LEVERAGE * len(curve.coefficients) / curve.n
-    heavy = sorted({row.cod for row in rows if row.leverage > limit})
+    heavy = {row.cod: row.leverage for row in rows if row.leverage > limit}
     if heavy:
-        names = ", ".join(f"{cod:g}" for cod in heavy)
-        words = f"The standard at {names} mg/L carries the curve alone: read it again, or add one beside it."
+        names = ", ".join(f"{cod:g} mg/L (leverage {heavy[cod]:.2f})" for cod in sorted(heavy))
+        words = f"The standard at {names} carries the curve alone: read it again, or add one beside it."
         found.append(Finding("note", "leverage", words))
+    if working_range is not None and (words := beyond_standards(curve, working_range)):
+        found.append(Finding("warning", "range", words))
     order = {"stop": 0, "warning": 1, "note": 2}
     return tuple(sorted(found, key=lambda one: order[one.severity]))

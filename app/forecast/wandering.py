@@ -152,8 +152,12 @@ def _kernels(past: Past, variance: np.ndarray) -> np.ndarray:
     common = (past.constant * variance) @ past.constant.T
     common += SHORT_VARIANCE * np.exp(-apart / SHORT_DAYS)
     common += SLOPE_VARIANCE * np.exp(-apart / SLOPE_DAYS) * (past.slopes @ past.slopes.T)
-    fading = {days: np.exp(-apart / days) for days, _ in MEMORIES}
-    return np.stack([common + size * fading[days] for days, size in MEMORIES])
+    fading = {days: np.exp(-apart / days) for days in {days for days, _ in MEMORIES}}
+    found = np.empty((len(MEMORIES), *apart.shape))
+    for kernel, (days, size) in zip(found, MEMORIES, strict=True):
+        np.multiply(fading[days], size, out=kernel)
+        kernel += common
+    return found
 
 
 def _links(past: Past, variance: np.ndarray) -> tuple[np.ndarray, np.ndarray]:
@@ -214,7 +218,7 @@ class _Rounds:
         start, spread = programme.start(sector)
         self.past, self.start, self.base = past, start, programme.noise**2
         variance = (spread / programme.noise) ** 2
-        self.kernels = _kernels(past, variance)
+        kernels = _kernels(past, variance)
         self.links, self.sizes = _links(past, variance)
         self.own = (1.0 + missing_noise(programme, past.missing))[:, None]
         self.usual = (past.constant @ start)[:, None]
@@ -225,19 +229,26 @@ class _Rounds:
         self.mean, self.signal = np.zeros((n, kinds)), np.zeros((n, kinds))
         self.shape = np.repeat(PRIOR_SHAPE + 0.5 * faded(self.free * 1.0, SPREAD_KEEPS), kinds, axis=1)
         self.spread = np.full((n + 1, kinds), self.base)
+        self.variance = np.diagonal(kernels, axis1=1, axis2=2)
+        self.whole = self._with_rows(kernels)
+
+    def _with_rows(self, kernels: np.ndarray) -> np.ndarray:
+        """Return kernels with a row for the results and rows for the state below, their diagonal far off."""
+        kinds, n, _ = kernels.shape
+        size = n + 1 + self.links.shape[1]
+        whole = np.zeros((kinds, size, size))
+        whole[:, :n, :n] = kernels
+        whole[:, n + 1 :, :n] = self.links
+        whole[:, range(n, size), range(n, size)] = 1e12
+        return whole
 
     def factorise(self, with_state: bool) -> np.ndarray:
         """Predict each result from those before it; return the factor's rows below the results."""
-        n, kinds = self.target.shape
-        extra = 1 + (self.links.shape[1] if with_state else 0)
-        whole = np.zeros((kinds, n + extra, n + extra))
-        whole[:, :n, :n] = self.kernels
-        whole[:, range(n), range(n)] += self.noise.T
-        whole[:, n, :n] = self.target.T
-        if with_state:
-            whole[:, n + 1 :, :n] = self.links
-        whole[:, range(n, n + extra), range(n, n + extra)] = 1e12
-        factor = np.linalg.cholesky(whole)
+        n = len(self.target)
+        size = n + 1 + (self.links.shape[1] if with_state else 0)
+        self.whole[:, range(n), range(n)] = self.variance + self.noise.T
+        self.whole[:, n, :n] = self.target.T
+        factor = np.linalg.cholesky(self.whole[:, :size, :size])
         root = np.diagonal(factor, axis1=1, axis2=2)[:, :n].T
         rows: np.ndarray = factor[:, n:, :n]
         self.mean = self.target - rows[:, 0].T * root

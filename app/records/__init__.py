@@ -9,4 +9,4 @@ own, ``ledger`` is the one write path, ``rebuild`` derives everything again,
 
 #: Raised whenever a handler puts other records than before: a store of another
 #: shape is derived again when it is opened, and each device reads all again.
-SHAPE = 2
+SHAPE = 3

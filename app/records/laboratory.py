@@ -23,7 +23,7 @@ from app.chemistry.recipe import Recipe
 from app.errors import WeirbookError
 from app.journal import measured
 from app.journal.entry import digest
-from app.records import experience, repeats, verdicts
+from app.records import controls, experience, repeats, verdicts
 from app.records.change import Body, Stating
 from app.safety import waste
 
@@ -78,7 +78,8 @@ def _looked_at(given: Body, recipe: Body) -> Body:
     """Return what is the matter with a curve, in words, and each reading's residual and leverage."""
     levels = [Standard(one["cod"], tuple(one["absorbance"])) for one in given["standards"]]
     curve = fit(levels, given["model"], given["weights"])
-    found = findings(curve, levels, Recipe(**recipe_input(recipe)))
+    reach = (recipe["working_low"], recipe["working_high"])
+    found = findings(curve, levels, Recipe(**recipe_input(recipe)), reach)
     return {
         "findings": [asdict(one) for one in found],
         "residuals": [asdict(one) for one in residuals(curve, levels)],
@@ -128,17 +129,13 @@ def _absorbance(tube: Body) -> float | None:
     return measured.value(tube["absorbance"], "AU")
 
 
-def _read(run: Body, role: str) -> list[Body]:
-    return [tube for tube in run["tubes"] if tube["role"] == role and tube["absorbance"] is not None]
-
-
 def sample_names(run: Body) -> dict[str, list[Body]]:
     """Return the read tubes by sample: the bottle's code, and its dilution where it has several."""
     factors: dict[str, set[float]] = {}
-    for tube in _read(run, "sample"):
+    for tube in controls.read_tubes(run, "sample"):
         factors.setdefault(tube["bottle"], set()).add(tube["dilution"]["factor"])
     found: dict[str, list[Body]] = {}
-    for tube in _read(run, "sample"):
+    for tube in controls.read_tubes(run, "sample"):
         code, factor = tube["bottle"], tube["dilution"]["factor"]
         name = code if len(factors[code]) == 1 else f"{code} 1:{factor:g}"
         found.setdefault(name, []).append(tube)
@@ -170,8 +167,10 @@ def _sample_input(name: str, tubes: list[Body]) -> Body:
 
 def run_input(run: Body, recipe: Body, calibration: Body, settings: Body) -> Body:
     """Return what the verb ``calculate`` is given for a run."""
-    blanks = [_absorbance(tube) for tube in _read(run, "blank") if tube["excluded"] is None]
-    checks = [tube for tube in _read(run, "verification") if tube["excluded"] is None]
+    blanks = [_absorbance(tube) for tube in controls.kept(run, "blank")]
+    checks = [*controls.kept(run, "verification"), *controls.kept(run, "control")]
+    samples = sample_names(run)
+    extra = controls.pairs(run, samples)
     return {
         "recipe": recipe_input(recipe),
         "calibration": {
@@ -184,15 +183,16 @@ def run_input(run: Body, recipe: Body, calibration: Body, settings: Body) -> Bod
         "blanks": blanks or None,
         "tubes": [
             _sample_input(name, tubes)
-            for name, tubes in sample_names(run).items()
+            for name, tubes in samples.items()
             if any(tube["excluded"] is None for tube in tubes)
-        ],
+        ]
+        + [_sample_input(name, [tube]) for _, name, tube in extra],
         "verifications": [
             {"expected": measured.read(tube["expected"]).value, "absorbance": [_absorbance(tube)]}
             for tube in checks
         ],
-        "duplicates": [],
-        "spikes": [],
+        "duplicates": controls.duplicates(extra),
+        "spikes": controls.spikes(extra),
         "policy": {
             name: settings[name]
             for name in (
@@ -212,18 +212,27 @@ def _tubes_found(run: Body, given: Body, answer: Body, capacity: float) -> list[
     blank = answer["checks"]["blank"]
     zero = blank["mean"] if blank else 0.0
     curve = {name: given["calibration"][name] for name in ("standards", "model", "weights")}
-    found = []
-    for tube in run["tubes"]:
-        if tube["absorbance"] is None:
-            continue
-        try:
-            corrected = (_absorbance(tube) or 0.0) - zero
-            cod = verbs.find("fit")(curve | {"read": [[corrected]]})["read"][0]["cod"]
-        except WeirbookError:  # beyond the curve's turning point there is no number
-            cod = None
-        share = None if cod is None else max(0.0, cod / capacity)
-        found.append({"position": tube["position"], "in_tube": cod, "share": share})
-    return found
+    read = [tube for tube in run["tubes"] if tube["absorbance"] is not None]
+    cods = _turned_back(curve, [(_absorbance(tube) or 0.0) - zero for tube in read])
+    return [
+        {
+            "position": tube["position"],
+            "in_tube": cod,
+            "share": None if cod is None else max(0.0, cod / capacity),
+        }
+        for tube, cod in zip(read, cods, strict=True)
+    ]
+
+
+def _turned_back(curve: Body, absorbance: list[float]) -> list[float | None]:
+    """Return the COD of each reading; beyond the curve's turning point there is no number."""
+    try:
+        given = curve | {"read": [[one] for one in absorbance]}
+        return [one["cod"] for one in verbs.find("fit")(given)["read"]]
+    except WeirbookError:
+        if len(absorbance) == 1:
+            return [None]
+    return [cod for one in absorbance for cod in _turned_back(curve, [one])]
 
 
 def calculate_run(writing: Stating, id_: str) -> None:
@@ -232,19 +241,27 @@ def calculate_run(writing: Stating, id_: str) -> None:
     recipe = writing.get("recipe", run["recipe"]) or {}
     calibration = writing.get("calibration", run["calibration"]) or {}
     settings = writing.find("programme")[0][1]["settings"]
-    in_force = settings | {"repeatability": experience.repeatability(writing, settings)}
-    given = run_input(run, recipe, calibration, in_force)
+    learned = experience.in_force(writing, settings, run["recipe"])
+    given = run_input(run, recipe, calibration, settings | learned["policy"])
     answer = verbs.find("calculate")(given)
-    capacity = recipe["derived"]["oxidant_capacity"]
+    found = _tubes_found(run, given, answer, recipe["derived"]["oxidant_capacity"])
+    in_tube = {one["position"]: one["in_tube"] for one in found}
+    checks = controls.rows(run, given, answer, sample_names(run))
     body = {
         "software": SOFTWARE,
         "inputs_digest": inputs_digest(given),
         "input": given,
         "answer": answer,
-        "tubes": _tubes_found(run, given, answer, capacity),
-        "results": [_result(writing, id_, run, recipe, settings, one, answer) for one in answer["samples"]],
+        "tubes": found,
+        "results": [
+            _result(writing, id_, run, recipe, settings, one, answer)
+            for one in answer["samples"]
+            if not controls.is_extra(one["sample"])
+        ],
         "waste": waste_of(run, recipe),
         "bracketing": _bracketing(run, answer),
+        "checks": controls.with_left_out(checks, run, in_tube),
+        "experience": {name: learned[name] for name in ("repeatability", "bias")},
     }
     writing.state("run.calculated", id_, body)
 
@@ -253,7 +270,10 @@ def _bracketing(run: Body, answer: Body) -> Body:
     """Return which samples stand between verifications that held; a failed one holds what touches it."""
     judged = iter(check["ok"] for check in answer["checks"]["verifications"])
     events = [
-        Event(tube["bottle"] or "", next(judged) if tube["role"] == "verification" else None)
+        Event(
+            tube["bottle"] or "the laboratory control",
+            next(judged) if tube["role"] == "verification" else None,
+        )
         for tube in run["tubes"]
         if tube["role"] != "blank" and tube["absorbance"] is not None and tube["excluded"] is None
     ]

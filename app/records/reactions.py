@@ -15,7 +15,7 @@ from enum import IntEnum, auto
 from typing import Any
 
 from app.errors import WeirbookError
-from app.records import interferences, laboratory, outlooks, studies, trust
+from app.records import charts, interferences, laboratory, outlooks, studies, trust
 from app.records.change import Change, Stating
 
 Due = tuple[int, str]
@@ -28,6 +28,8 @@ class Sum(IntEnum):
     FIT_CURVE = auto()
     JUDGE_CHECK = auto()
     CALCULATE_RUN = auto()
+    JUDGE_RUN = auto()
+    FREEZE = auto()
     TAKE_TUBE = auto()
     COMPUTE_LIMIT = auto()
     QUALIFY = auto()
@@ -45,6 +47,8 @@ NAMES = {
     Sum.FIT_CURVE: "fit",
     Sum.JUDGE_CHECK: "check",
     Sum.CALCULATE_RUN: "calculate",
+    Sum.JUDGE_RUN: "control charts",
+    Sum.FREEZE: "freeze",
     Sum.TAKE_TUBE: "take",
     Sum.COMPUTE_LIMIT: "detection limit",
     Sum.QUALIFY: "qualify",
@@ -60,6 +64,8 @@ _REACTIONS: dict[int, Callable[[Stating, str], None]] = {
     Sum.FIT_CURVE: laboratory.fit_curve,
     Sum.JUDGE_CHECK: laboratory.judge_check,
     Sum.CALCULATE_RUN: laboratory.calculate_run,
+    Sum.JUDGE_RUN: charts.judge_run,
+    Sum.FREEZE: charts.freeze_baseline,
     Sum.TAKE_TUBE: studies.take_tube,
     Sum.COMPUTE_LIMIT: studies.compute_limit,
     Sum.QUALIFY: interferences.qualify,
@@ -81,6 +87,10 @@ def due(change: Change) -> Iterator[Due]:
         yield Sum.JUDGE_CHECK, f"{about} {change.entry.id}"
     elif kind == "readings.finished" or (kind == "tube.excluded" and _calculated(change)):
         yield Sum.CALCULATE_RUN, about
+    elif kind == "run.closed" and change.body["decisions"]:
+        yield Sum.JUDGE_RUN, about
+    elif kind == "baseline.frozen":
+        yield Sum.FREEZE, about
     elif kind == "study.result" and change.body["run"] is not None:
         yield Sum.TAKE_TUBE, f"{about} {change.body['row']}"
     elif kind == "study.finished":
@@ -90,6 +100,8 @@ def due(change: Change) -> Iterator[Due]:
     elif kind in ("bottle.measured", "sample.taken"):
         yield from ((Sum.QUALIFY, id_) for id_ in interferences.of_bottle(change, change.body["bottle"]))
     elif kind in ("point.registered", "result.recorded", "result.reviewed", "run.calculated"):
+        if kind == "run.calculated":
+            yield Sum.JUDGE_RUN, about
         yield Sum.LEARN, "programme"
         yield Sum.JUDGE, "programme"
         yield from ((Sum.LOOK_AHEAD, point) for point in _points(change))
@@ -124,6 +136,7 @@ def _points(change: Change) -> Iterator[str]:
     elif kind == "result.recorded":
         yield change.body["point"]
     elif kind == "result.reviewed":
-        yield change.need("result", change.entry.about)["point"]
+        point = change.need("result", change.entry.about)["point"]
+        yield from [point] if point else []
     else:
         yield from sorted({one["point"] for one in change.body["results"] if one["point"]})

@@ -13,6 +13,7 @@ from app.documents.corrected import Corrected, Correction
 from app.errors import InputError
 from app.journal.units import table
 from app.records.change import Body
+from app.records.controls import EXTRA
 from app.records.laboratory import SOFTWARE, sample_names
 from app.records.ledger import Writing
 from app.web.certificate_pictures import calibration_of, components_of, strip_of
@@ -167,13 +168,15 @@ def _verdict(one: Body) -> paper.Verdict:
     )
 
 
-def _checks(run: Body) -> tuple[paper.Check, ...]:
+def _checks(run: Body, code: str) -> tuple[paper.Check, ...]:
+    """Return the checks of a run that bear on a bottle: not another bottle's duplicate or spike."""
     decided = {
         (one["what"], one["subject"]): f"{one['decision']}: {one['reason']}"
         for one in run["closed"]["decisions"]
     }
     found = []
-    for index, one in enumerate(run["answer"]["checks"]["verifications"]):
+    known = len(run["input"]["verifications"]) - _controls(run)
+    for index, one in enumerate(run["answer"]["checks"]["verifications"][:known]):
         subject = f"{index + 1}: {one['expected']:g} mg/L"
         found.append(
             paper.Check(
@@ -184,15 +187,43 @@ def _checks(run: Body) -> tuple[paper.Check, ...]:
                 decided.get(("verification", subject), ""),
             )
         )
+    for one in run.get("checks") or []:
+        if one["what"] in NAMED and one["ok"] is not None and _bears_on(one, code):
+            words = decided.get((one["what"], one["subject"]), "")
+            asked = _asked(one["what"], run["input"]["policy"])
+            found.append(paper.Check(NAMED[one["what"]], asked, f"{one['value']:.1f} %", one["ok"], words))
     blank = run["answer"]["checks"]["blank"]
     if blank:
         found.append(paper.Check("Digested blank", "subtracted", f"{blank['mean']:.4f} AU", None))
     return tuple(found)
 
 
+NAMED = {"control": "Laboratory control", "duplicate": "Duplicate", "spike": "Spike"}
+
+
+def _controls(run: Body) -> int:
+    """Return how many controls stand behind the verifications of a run's sum."""
+    return len([one for one in run.get("checks") or [] if one["what"] == "control" and not one["left_out"]])
+
+
+def _asked(what: str, policy: Body) -> str:
+    if what == "duplicate":
+        return f"differ by at most {policy['duplicate_rpd_percent']:g} %"
+    if what == "control":
+        return f"within {policy['verification_percent']:g} %"
+    low, high = policy["spike_percent"]
+    return f"{low:g} to {high:g} %"
+
+
+def _bears_on(check: Body, code: str) -> bool:
+    return check["what"] == "control" or check["subject"].split(" ")[0] == code
+
+
 def _what(tube: Body) -> str:
-    if tube["role"] == "verification":
-        return f"verification {tube['expected']}"
+    if tube["role"] in ("verification", "control"):
+        return f"{tube['role']} {tube['expected']}"
+    if tube["role"] in EXTRA:
+        return f"{tube['bottle']} {tube['role']}"
     return str(tube["bottle"] or tube["role"])
 
 
@@ -210,7 +241,7 @@ def _set_aside(run: Body) -> dict[int, str]:
 
 
 def _tubes(run: Body, code: str) -> tuple[paper.Tube, ...]:
-    told = [tube for tube in run["tubes"] if tube["role"] != "sample" or tube["bottle"] == code]
+    told = [tube for tube in run["tubes"] if tube["bottle"] in (None, code)]
     by_rule = _set_aside(run)
     return tuple(
         paper.Tube(
@@ -268,7 +299,7 @@ def gather(
         "calibration": calibration_of(writing, run, answer),
         "strip": strip_of(result, recipe, sample),
         "components": components_of(result, _dof(writing, run)),
-        "checks": _checks(run),
+        "checks": _checks(run, result["bottle"]),
         "tubes": _tubes(run, result["bottle"]),
         "qualifiers": tuple(paper.Qualifier(**one) for one in result.get("qualifiers", [])),
         "corrected": _corrected(result.get("corrected")),

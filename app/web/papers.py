@@ -90,7 +90,8 @@ def labels(given: dict[str, Any]) -> Response:
 
 
 def _run_tube(tube: change.Body) -> RunTube:
-    what = {"blank": "blank", "verification": "verification"}.get(tube["role"], tube["bottle"])
+    role, code = tube["role"], tube["bottle"]
+    what = {"sample": code, "duplicate": f"{code} duplicate", "spike": f"{code} spike"}.get(role, role)
     return RunTube(
         position=tube["position"],
         what=str(what),

@@ -1,4 +1,4 @@
-"""Today's round, this morning's meters, and the care of the laboratory's stores; invented like the rest.
+"""Today's round and this morning's meters; invented like the rest.
 
 Told by ``make.py``; moments are hours from the moment at which the scenario is told.
 """
@@ -100,32 +100,3 @@ def sampler(story: Teller, hours: float) -> None:
     body |= {"seal": "4483", "lock": "7"}
     set_up = {"after": 0.3, "kind": "sampler.set", "about": "composite-corrie", "body": body}
     visit(story, hours, "corrie-a", "sampler set", "", "normal", [set_up])
-
-
-def care_of_stores(story: Teller) -> None:
-    """Tell a probe in the block, a container that left last quarter, and another waste of the site."""
-    probe: Body = {"what": "block temperature", "on": "@day-20", "wanted": "150", "water_c": None, "note": ""}
-    story.tell(
-        -480,
-        "calloway",
-        "instrument.checked",
-        "block-1",
-        probe | {"found": ["150.6", "149.2"], "next_on": "@day10"},
-    )
-    story.tell(
-        -2400,
-        "calloway",
-        "container.opened",
-        "container-11",
-        {"name": "Container 11, acid COD digest", "capacity_ml": "5000"},
-    )
-    left: Body = {
-        "to": "picked up",
-        "on": "@day-40",
-        "by": "Ridgeline Haulers",
-        "manifest": "014-772",
-        "note": "",
-    }
-    story.tell(-960, "calloway", "container.moved", "container-11", left)
-    other: Body = {"stream": "spent solvent, metals bench", "on": "@day-3", "acute": False, "note": ""}
-    story.tell(-70, "calloway", "waste.added", "waste-1", other | {"mass": measured("3.2", "kg")})

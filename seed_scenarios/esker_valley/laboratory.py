@@ -52,3 +52,17 @@ def measured(codes: list[str]) -> Iterator[Statement]:
         given = {name: mg_l(text) for name, text in species.items()}
         body = {"bottle": code, "species": given, "how": how, "note": ""}
         yield hours, "calloway", "bottle.measured", code, body
+
+
+def care() -> Iterator[Statement]:
+    """Yield a probe in the block, a container that left last quarter, and another waste of the site."""
+    probe: Body = {"what": "block temperature", "on": "@day-20", "wanted": "150", "water_c": None, "note": ""}
+    found = {"found": ["150.6", "149.2"], "next_on": "@day10"}
+    yield -480, "calloway", "instrument.checked", "block-1", probe | found
+    container = {"name": "Container 11, acid COD digest", "capacity_ml": "5000"}
+    yield -2400, "calloway", "container.opened", "container-11", container
+    left: Body = {"to": "picked up", "on": "@day-40", "by": "Ridgeline Haulers", "manifest": "014-772"}
+    yield -960, "calloway", "container.moved", "container-11", left | {"note": ""}
+    other: Body = {"stream": "spent solvent, metals bench", "on": "@day-3", "acute": False, "note": ""}
+    mass = {"mass": {"text": "3.2", "unit": "kg"}}
+    yield -70, "calloway", "waste.added", "waste-1", other | mass

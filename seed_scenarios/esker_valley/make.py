@@ -14,6 +14,7 @@ import random
 from pathlib import Path
 from typing import Any
 
+import controls
 import fieldwork
 import laboratory
 from fieldwork import measured
@@ -198,7 +199,9 @@ def planned(
         tube = {"role": "sample", "bottle": code, "dilution": dilution}
         start = len(tubes) + 1
         tubes += [{"position": start + i} | tube for i in range(3)]
+    tubes += controls.extra(tubes)
     body = {
+        "without": controls.NO_SPIKE,
         "name": name,
         "recipe": "high-range",
         "lot": "lot-14",
@@ -230,6 +233,10 @@ def read(
     story.tell(hours, "calloway", "heating.ended", run, ended)
     story.tell(hours + 0.5, "calloway", "gate.confirmed", run, {"gate": "cooling_done"})
     for tube in tubes:
+        if tube["role"] in ("control", "duplicate"):
+            body = controls.reading(tube, controls.diluted(tube, true), 0.0165)
+            story.tell(hours + 0.6 + tube["position"] / 100, "calloway", "tube.read", run, body)
+            continue
         cod = {"blank": 0.0, "verification": 495.0}.get(tube["role"])
         in_tube = true[tube["bottle"]] / tube["dilution"]["factor"] if cod is None else cod
         shown = in_tube * (0.62 if tube["position"] == leaked else 1.0)
@@ -261,7 +268,7 @@ def story_of(points: dict[str, Body], codes: list[str]) -> list[Body]:
     hand_over(story, -141, "hand-1", codes[:6], "4471", "3.4")
     for i in range(6):
         receive(story, -140.5 + i / 20, codes[i], warm=i == 4)
-    for one in (*laboratory.study(), *laboratory.measured(codes)):
+    for one in (*laboratory.study(), *laboratory.measured(codes), *controls.runs()):
         story.tell(*one)
     bottles = {codes[i]: factors[name] for i, name in enumerate(first)}
     tubes = planned(story, -124, "run-12", "Run 12, high range", bottles, 2)
@@ -285,7 +292,8 @@ def story_of(points: dict[str, Body], codes: list[str]) -> list[Body]:
     sample(story, -0.6, points["wend-b"], codes[9], 5, "label read in the rain")
     story.told[-1]["about"] = "sample-twice"
     fieldwork.round_of_today(story, f"sample-{codes[9]}")
-    fieldwork.care_of_stores(story)
+    for one in laboratory.care():
+        story.tell(*one)
     return sorted(story.told, key=lambda one: one["hours"])
 
 

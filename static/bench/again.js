@@ -8,6 +8,7 @@ function repeated(run, code) {
   const asked = (run.closed?.decisions ?? []).filter((decision) => decision.decision === "repeat");
   if (asked.some((decision) => decision.subject.split(" and ").some((name) => codeOf(name) === code))) return true;
   const touched = (run.bracketing?.held ?? []).some((name) => codeOf(name) === code);
+  if (asked.some((decision) => decision.what === "control")) return true; // a control that fails repeats the whole batch
   return touched && asked.some((decision) => decision.what === "verification");
 }
 

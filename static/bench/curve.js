@@ -39,7 +39,8 @@ export function CurveChart({ curve }) {
   const points = pointsOf(curve);
   const top = Math.max(...points.map((p) => p.cod));
   if (!coefficients) return html`<${Points} points=${points} top=${top} />`;
-  const line = Array.from({ length: 41 }, (_, i) => (top * i) / 40).map((cod) => ({ cod, a: curveAt(coefficients, cod) }));
+  const low = Math.min(...points.map((p) => p.cod));
+  const line = Array.from({ length: 41 }, (_, i) => low + ((top - low) * i) / 40).map((cod) => ({ cod, a: curveAt(coefficients, cod) }));
   const x = scaleOf([0, top], LEFT, RIGHT, 0.04);
   const y = scaleOf([...points, ...line].map((p) => p.a), BOTTOM, TOP);
   const off = points.map((p) => ({ ...p, d: 1000 * (p.a - curveAt(coefficients, p.cod)) }));
@@ -64,5 +65,5 @@ const SIGNS = { stop: "▲", warning: "◇", note: "○" };
 export function Findings({ curve }) {
   const found = curve.fitted?.findings ?? [];
   if (!found.length) return html`<p class="soft">Nothing speaks against this curve.</p>`;
-  return html`<ul class="plain">${found.map((one) => html`<li key=${one.about} class=${one.severity === "stop" ? "above" : ""}>${SIGNS[one.severity]} ${one.words}</li>`)}</ul>`;
+  return html`<ul class="plain">${found.map((one) => html`<li key=${one.words} class=${one.severity === "stop" ? "above" : ""}>${SIGNS[one.severity]} ${one.words}</li>`)}</ul>`;
 }

@@ -15,12 +15,15 @@ const WEIGHTS = { equal: "equal weights", inverse: "weights 1/x", inverse_square
 /** The newest judged check of a kind, or null. */
 const lastCheck = (curve, what) => (curve.checks ?? []).findLast((check) => check.what === what) ?? null;
 
+const late = (due) => due < day(new Date(), programme()?.zone);
+
 /** What speaks against working with a curve though it may be used; "" when nothing does. */
 export function curveDoubt(curve) {
   const check = lastCheck(curve, "second source");
   if (!check) return "no standard of another source yet";
-  if (check.judged && !check.judged.ok) return "its second source was not found again";
-  return check.judged && check.judged.due_on < day(new Date(), programme()?.zone) ? `second source due since ${check.judged.due_on}` : "";
+  if (!check.judged) return "its second source is judged when the server has it";
+  if (!check.judged.ok) return "its second source was not found again";
+  return late(check.judged.due_on) ? `second source due since ${check.judged.due_on}` : "";
 }
 
 /** A curve in the list of the stores. */
@@ -43,12 +46,16 @@ function Numbers({ f }) {
 }
 
 function Levels({ f }) {
-  const leverage = new Map((f.residuals ?? []).map((row) => [`${row.cod} ${row.absorbance}`, row.leverage]));
-  return html`<details><summary>Every standard, read back</summary><table><thead><tr><th>COD</th><th>AU</th><th>found</th><th>recovery</th><th>leverage</th></tr></thead><tbody>${f.standards.map((row, i) => {
+  const leverage = new Map((f.residuals ?? []).map((row) => [row.cod, row.leverage]));
+  return html`<details><summary>Every standard, read back</summary><table><thead><tr><th>COD</th><th>AU</th><th>found</th><th>recovery</th><th>leverage of one reading</th></tr></thead><tbody>${f.standards.map((row, i) => {
     const off = row.recovery_percent !== null && Math.abs(row.recovery_percent - 100) > 10;
-    const weight = leverage.get(`${row.cod} ${row.absorbance}`);
+    const weight = leverage.get(row.cod);
     return html`<tr key=${i}><td class="right">${plain(row.cod)}</td><td class="right">${row.absorbance.toFixed(4)}</td><td class="right">${plain(row.back_calculated, 1)}</td><td class="right ${off ? "above" : ""}">${off ? "▲ " : ""}${share(row.recovery_percent)}</td><td class="right">${weight === undefined ? "–" : weight.toFixed(2)}</td></tr>`;
   })}</tbody></table></details>`;
+}
+
+function Due({ curve }) {
+  return Object.entries(curve.due).map(([what, due]) => html`<p class="tight ${late(due) ? "above" : ""}" key=${what}>${late(due) ? `▲ ${what} was due on ${due}` : `${what} due on ${due}`}</p>`);
 }
 
 function Checks({ curve }) {
@@ -98,7 +105,7 @@ export function CurvePage({ id }) {
       <p class="soft small">A run with another recipe, lot, photometer or tube, or after the last day, does not take it.</p>${curve.local && html`<${Where} about=${id} />`}</section>
     ${f?.error ? html`<section class="card stop"><p><strong>▲ ${f.error}</strong></p></section>` : f ? html`<section class="card stack"><h2>What is the matter with it</h2><${Findings} curve=${curve} /></section>` : html`<p class="soft">Fitted when the server has it.</p>`}
     ${f && html`<section class="card stack"><h2>Curve and residuals</h2><${CurveChart} curve=${curve} />${!f.error && html`<${Numbers} f=${f} /><${Levels} f=${f} />`}</section>`}
-    <section class="card stack"><h2>Other source and range</h2><${Checks} curve=${curve} /><${AddCheck} curve=${curve} /></section>
+    <section class="card stack"><h2>Other source and range</h2><${Due} curve=${curve} /><${Checks} curve=${curve} /><${AddCheck} curve=${curve} /></section>
     <button type="button" onClick=${() => again(curve)}>Another curve from these standards</button>
     <p><a href="/bench/stores">Stores</a> · <a href="/emergency">Emergency and first aid</a></p></div><//>`;
 }

@@ -6,6 +6,7 @@ import { Empty, Frame, Where } from "../parts/frame.js";
 import { all, one, programme, useView } from "../parts/view.js";
 import { useWords } from "../parts/words.js";
 import { again } from "./again.js";
+import { ToLookAt } from "./charts.js";
 import { Due } from "./due.js";
 import { dueList } from "./duties.js";
 import { heatedAt, span, useNow } from "./timer.js";
@@ -68,8 +69,8 @@ export function Home() {
   const done = runs.filter((run) => !OPEN.has(run.state)).slice(0, 6);
   return html`<${Frame} place="bench" title="What waits" about=${settings?.laboratory}>
     <div class="stack">
-      <div class="row"><a class="button" href="/bench/receive">Receive a bottle</a><a class="button" href="/bench/plan">Plan a run</a><a class="button" href="/bench/stores">Stores</a><a class="button" href="/bench/waste">Waste</a><a class="button" href="/bench/measure">Chloride and others</a><a class="button" href="/bench/studies">Detection limits</a></div>
-      <${DueSoon} zone=${settings?.zone} />
+      <div class="row"><a class="button" href="/bench/receive">Receive a bottle</a><a class="button" href="/bench/plan">Plan a run</a><a class="button" href="/bench/stores">Stores</a><a class="button" href="/bench/waste">Waste</a><a class="button" href="/bench/measure">Chloride and others</a><a class="button" href="/bench/studies">Detection limits</a><a class="button" href="/bench/charts">Control charts</a></div>
+      <${DueSoon} zone=${settings?.zone} /><${ToLookAt} />
       <h2>Runs</h2>
       ${open.length ? html`<nav class="list" aria-label="Open runs">${open.map((run) => html`<${RunRow} key=${run.id} run=${run} zone=${settings?.zone} />`)}</nav>`
         : html`<${Empty} title="No run is open">Plan one when bottles were received.<//>`}

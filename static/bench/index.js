@@ -1,6 +1,7 @@
 // The Bench place: what waits, receipt, the run from the rack to its end, the stores.
 
 import { html } from "../parts/html.js";
+import { Chart, Charts } from "./charts.js";
 import { Home } from "./home.js";
 import { Measure } from "./measure.js";
 import { Instrument } from "./instruments.js";
@@ -25,6 +26,7 @@ export function bench([what, id]) {
   if (what === "measure") return html`<${Measure} key=${id} given=${id} />`;
   if (what === "studies") return id === "new" ? html`<${PlanStudy} />` : html`<${Studies} />`;
   if (what === "study") return html`<${Study} key=${id} id=${id} />`;
+  if (what === "charts") return id ? html`<${Chart} key=${id} id=${id} />` : html`<${Charts} />`;
   if (what === "run") return html`<${Run} key=${id} id=${id} />`;
   if (what === "waste") return html`<${Waste} />`;
   if (what === "instrument" && id) return html`<${Instrument} key=${id} id=${id} />`;

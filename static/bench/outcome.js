@@ -8,7 +8,8 @@ import { Problem, say } from "../parts/frame.js";
 import { state } from "../parts/journal.js";
 import { one } from "../parts/view.js";
 import { stepWords } from "../parts/glassware.js";
-import { tubesOfSample } from "./rack.js";
+import { isExtra, tubesOfSample } from "./rack.js";
+import { Experience, Fired } from "./charts.js";
 
 const COUNTS = ["no", "the one", "both", "all three", "all four", "all five"];
 
@@ -20,11 +21,18 @@ function overWords(sample, run) {
   return `${count[0].toUpperCase()}${count.slice(1)} ${tubes.length === 1 ? "tube" : "tubes"} went green: the dichromate is spent and no number can be given. Keep the caps on.`;
 }
 
+/** What tubes that disagree leave: their median, which of them stands furthest off, and what to do. */
+function disagreeWords({ cod, suspect, sample }, run) {
+  const far = suspect === null ? null : tubesOfSample(run, { sample }).filter((tube) => tube.absorbance)[suspect];
+  const median = cod === null ? "" : ` Their median is ${plain(cod)} mg/L, provisional.`;
+  return `The tubes disagree: they lie further apart than this laboratory's repeatability explains.${median}${far ? ` Position ${far.position} stands furthest off, which convicts nobody: leave it out only for a cause that was seen.` : ""} Repeat this sample.`;
+}
+
 const TOLD = new Map([
   ["ok", (s) => (s.excluded.length ? `${s.used.length} tubes agree, ${s.excluded.length} left out.` : `${s.used.length} ${s.used.length === 1 ? "tube" : "tubes agree"}.`)],
   ["over", overWords],
   ["below", () => "Below the working range at this dilution."],
-  ["disagree", () => "The tubes disagree: the value is provisional. Repeat this sample."],
+  ["disagree", disagreeWords],
 ]);
 
 /** The next dilution as the server stated it beside the result, or what it says instead. */
@@ -56,15 +64,21 @@ function Bracketing({ run }) {
     ${open.length > 0 && html`<p>Not closed by a verification after them: ${open.join(", ")}.</p>`}</section>`;
 }
 
-function Checks({ checks }) {
-  const rows = [
-    ...checks.verifications.map((check, i) => [`Verification ${plain(check.expected)}`, plain(check.found), `${plain(check.recovery_percent)} %`, check.ok, i]),
-    ...checks.duplicates.map((check) => [`Duplicate ${check.samples.join(", ")}`, "", `${plain(check.rpd_percent, 1)} %`, check.ok, check.samples.join()]),
-    ...checks.spikes.map((check) => [`Spike ${check.spiked}`, "", `${plain(check.recovery_percent)} %`, check.ok, check.spiked]),
-  ];
-  return html`<section class="card"><h2>Checks</h2><table><thead><tr><th>Check</th><th class="right">Found</th><th>Judged</th></tr></thead><tbody>
-    ${rows.map(([name, found, words, ok, key]) => html`<tr key=${name + key}><td>${name}</td><td class="right">${found}</td><td class=${ok === false ? "above" : ""}>${words}, ${ok === null ? "not judged" : ok ? "holds" : "▲ does not hold"}</td></tr>`)}
-    ${checks.blank && html`<tr><td>Blank</td><td class="right">${checks.blank.mean.toFixed(4)} AU</td><td>subtracted</td></tr>`}</tbody></table></section>`;
+const NAMES = new Map([["verification", "Verification"], ["control", "Laboratory control"], ["duplicate", "Duplicate"], ["spike", "Spike"]]);
+
+/** Each check in words; answers of before they had words come from the sum. */
+function checksOf({ checks, answer }) {
+  if (checks?.length) return checks.filter((check) => !check.left_out);
+  return answer.checks.verifications.map((check, i) => ({ what: "verification", subject: `${i + 1}: ${plain(check.expected)} mg/L`, ok: check.ok, words: `found ${plain(check.found)} mg/L, ${plain(check.recovery_percent)} %` }));
+}
+
+function Checks({ run }) {
+  const rows = checksOf(run);
+  const blank = rows.find((row) => row.what === "blank");
+  return html`<section class="card"><h2>Checks</h2><ul class="plain">
+    ${rows.filter((row) => row !== blank).map((row) => html`<li key=${row.what + row.subject} class=${row.ok === false ? "above" : ""}><strong>${row.ok === false ? "▲ " : ""}${NAMES.get(row.what)} ${row.subject}</strong> ${row.ok === null ? "not judged" : row.ok ? "holds" : "does not hold"}: ${row.words}.</li>`)}</ul>
+    ${blank ? html`<p class="soft">${blank.words[0].toUpperCase()}${blank.words.slice(1)}, subtracted once.</p>` : ""}
+    ${run.without?.length > 0 && html`<p class="soft">${run.without.map(({ role, reason }) => `No ${NAMES.get(role).toLowerCase()}: ${reason}.`).join(" ")}</p>`}</section>`;
 }
 
 const DECISIONS = ["repeat", "accept with a note", "not used"];
@@ -105,10 +119,10 @@ function Waste({ run }) {
 
 /** The results of a run. */
 export function Outcome({ run }) {
-  const samples = [...run.answer.samples].sort((a, b) => Number(b.status !== "ok") - Number(a.status !== "ok"));
+  const samples = run.answer.samples.filter((sample) => !isExtra(sample)).sort((a, b) => Number(b.status !== "ok") - Number(a.status !== "ok"));
   return html`<div class="stack">
     ${samples.map((sample) => html`<${Sample} key=${sample.sample} sample=${sample} run=${run} />`)}
-    <${Checks} checks=${run.answer.checks} /><${Bracketing} run=${run} /><${Waste} run=${run} />
+    <${Checks} run=${run} /><${Fired} run=${run} /><${Experience} found=${run.experience} /><${Bracketing} run=${run} /><${Waste} run=${run} />
     ${run.closed && html`<section class="card"><h2>Closed</h2><p>by ${run.closed.by}</p>${run.closed.decisions.map((d) => html`<p key=${d.what + d.subject}>${d.what}, ${d.subject}: <strong>${d.decision}</strong>. ${d.reason}</p>`)}</section>`}
   </div>`;
 }

@@ -12,14 +12,16 @@ import { stepWords } from "../parts/glassware.js";
 import { curveDoubt } from "./curve_page.js";
 import { dilutionOf } from "./dilutions.js";
 import { waitingBottles } from "./home.js";
+import { CONTROLS, Controls, Places, controlsOf, lackingOf, swapped, withoutOf } from "./controls.js";
 import { ChlorideLine, gateOf } from "./measure.js";
 import { Outlook, firstFactor } from "./outlook.js";
 
 const BLANKS = 3;
 const BRACKET = 10; // verification after at most ten analyses and at the end: EPA 410.4 rev 2.0, 9.3.4
+const BATCH = 20; // samples, its controls not counted: 40 CFR 136.7, common practice
 const POSITIONS = 25;
 
-const confirmed = (curve) => !programme()?.settings?.second_source_required || curve.checks?.some((check) => check.what === "second source" && check.judged?.ok);
+const confirmed = (curve) => !programme()?.settings?.second_source_required || !curveDoubt(curve);
 const usable = (curve) => confirmed(curve) && !curve.fitted?.error && !curve.fitted?.findings?.some((one_) => one_.severity === "stop");
 
 /** The curves that a run may be read with: of the recipe, and not past their date. */
@@ -33,21 +35,26 @@ export const checkLevel = (recipe) => (recipe.working_high >= 500 ? "500" : Stri
 /** The dilution that a bottle would be digested at, or what is wrong with it. */
 const dilutionFor = (bottle, factor) => dilutionOf(factor, bottle.sampled?.plan ?? null, bottle.again?.why ?? "chosen at the bench", { solids: bottle.sampled?.solids, volume_ml: bottle.volume_ml });
 
-/** The tubes of a run, placed by themselves: blanks, each sample's replicates, verifications around every ten. */
-export function tubesOf(recipe, bottles, factors, replicates) {
+/** The tubes of a run, placed by themselves: blanks, verifications around every ten, and in each batch of 20 samples a control, a duplicate, a spike. */
+export function tubesOf(recipe, bottles, factors, replicates, controls = {}) {
   const tubes = Array.from({ length: BLANKS }, () => ({ role: "blank" }));
-  const verify = () => tubes.push({ role: "verification", expected: checkLevel(recipe) });
   let since = 0;
+  const verify = () => { tubes.push({ role: "verification", expected: checkLevel(recipe) }); since = 0; };
+  const add = (tube, count = 1) => {
+    if (since && since + count > BRACKET) verify();
+    for (let i = 0; i < count; i += 1) tubes.push(tube);
+    since += count;
+  };
   verify();
-  for (const bottle of bottles) {
-    const dilution = dilutionFor(bottle, factors[bottle.code]);
-    if (since && since + replicates > BRACKET) {
-      verify();
-      since = 0;
-    }
-    for (let i = 0; i < replicates; i += 1) tubes.push({ role: "sample", bottle: bottle.code, dilution });
-    since += replicates;
-  }
+  bottles.forEach((bottle, i) => {
+    const batch = bottles.slice(i - (i % BATCH), i - (i % BATCH) + BATCH);
+    const chosen = (code) => bottle === (batch.find((one_) => one_.code === code) ?? batch[0]);
+    const of = { bottle: bottle.code, dilution: dilutionFor(bottle, factors[bottle.code]) };
+    if (batch[0] === bottle && controls.control) add({ role: "control", ...controls.control });
+    add({ role: "sample", ...of }, replicates);
+    if (controls.duplicate && chosen(controls.duplicate.bottle)) add({ role: "duplicate", ...of });
+    if (controls.spike && chosen(controls.spike.bottle)) add({ role: "spike", ...of, spike: controls.spike.made });
+  });
   if (since) verify();
   return tubes.map((tube, i) => ({ position: i + 1, ...tube }));
 }
@@ -73,7 +80,7 @@ function options(rows, name = "name") {
   return [["", "choose"], ...rows.map((row) => [row.id, row[name]])];
 }
 
-const BLANK = { name: "", recipe: "", lot: "", instrument: "", block: "", calibration: "", container: "", picked: [], factors: {}, volumes: {} };
+const BLANK = { name: "", recipe: "", lot: "", instrument: "", block: "", calibration: "", container: "", picked: [], factors: {}, volumes: {}, qc: {}, swaps: [] };
 
 /** The only one of its kind is chosen by itself. */
 const chosen = (given, rows) => given || (rows.length === 1 ? rows[0].id : "");
@@ -106,7 +113,9 @@ function PlanForm({ v, set, forget }) {
   const { recipe, curve } = stores;
   const picked = bottles.filter((bottle) => v.picked.includes(bottle.code));
   const factors = Object.fromEntries(picked.map((bottle) => [bottle.code, v.factors[bottle.code] ?? firstFactor(bottle, recipe)]));
-  const tubes = recipe ? tubesOf(recipe, picked, factors, settings?.replicates ?? 3) : [];
+  const controls = controlsOf(v.qc, recipe);
+  const placed = recipe ? tubesOf(recipe, picked, factors, settings?.replicates ?? 3, controls) : [];
+  const tubes = swapped(placed, v.swaps);
   const checks = tubes.filter((tube) => tube.role === "verification").length;
   const room = (stores.block && one("instrument", stores.block)?.positions) || POSITIONS;
   const { save, problem, busy } = useSaving(async () => {
@@ -114,13 +123,15 @@ function PlanForm({ v, set, forget }) {
     const wrong = picked.map((bottle) => [bottle.code, dilutionFor(bottle, factors[bottle.code]).problem]).filter(([, problem]) => problem);
     picked.map(({ code }) => [code, gateOf(code, factors[code], recipe)]).filter(([, gate]) => gate.verdict === "closed").forEach(([code, gate]) => wrong.push([code, gate.words]));
     if (wrong.length) throw new Error(wrong.map(([code, problem]) => `${code}: ${problem}`).join(" "));
+    const lacking = lackingOf(v.qc, controls);
+    if (lacking) throw new Error(lacking);
     if (tubes.length > room) throw new Error(`${tubes.length} tubes do not fit: the block has ${room} positions.`);
     if (!curve) throw new Error("A curve of this recipe is needed: make one under Stores.");
     if (!stores.block || !stores.container) throw new Error("Choose the block and the waste container.");
     const id = newId();
     await state("run.planned", id, {
       name: v.name.trim() || `Run of ${day(new Date(), programme()?.zone)}`, recipe: recipe.id, lot: curve.lot, instrument: curve.instrument,
-      block: stores.block, calibration: curve.id, container: stores.container, tubes,
+      block: stores.block, calibration: curve.id, container: stores.container, tubes, without: withoutOf(v.qc),
     });
     await forget().catch(() => {});
     say("Saved on this tablet.");
@@ -138,8 +149,10 @@ function PlanForm({ v, set, forget }) {
         <${Select} label="Calibration" value=${curve?.id ?? ""} options=${[["", "choose"], ...stores.curves.map((row) => [row.id, `${one("lot", row.lot)?.name}, ${one("instrument", row.instrument)?.name}, until ${row.valid_until}${curveDoubt(row) ? `; ${curveDoubt(row)}` : ""}`])]} onChoose=${(id) => set("calibration", id)} hint="it fixes the reagent lot and the photometer" />
         <${Select} label="Block" value=${stores.block} options=${options(stores.blocks)} onChoose=${(id) => set("block", id)} />
         <${Select} label="Waste container" value=${stores.container} options=${options(stores.containers)} onChoose=${(id) => set("container", id)} /></section>
+      <${Controls} qc=${v.qc} recipe=${recipe} picked=${picked} onChange=${(qc) => set("qc", qc)} />
       <section class="card stack"><h2>The rack</h2>
-        <p>${tubes.length} of ${room} positions: ${BLANKS} blanks, ${checks} ${checks === 1 ? "verification" : "verifications"} of ${checkLevel(recipe)} mg/L, ${picked.length} ${picked.length === 1 ? "sample" : "samples"} in ${settings?.replicates ?? 3} tubes each.</p>
+        <p>${tubes.length} of ${room} positions: ${BLANKS} blanks, ${checks} ${checks === 1 ? "verification" : "verifications"} of ${checkLevel(recipe)} mg/L, ${picked.length} ${picked.length === 1 ? "sample" : "samples"} in ${settings?.replicates ?? 3} tubes each${CONTROLS.filter(([role]) => controls[role] && picked.length).map(([role, words]) => `, a ${words.toLowerCase()}`).join("")}.</p>
+        <${Places} tubes=${tubes} swaps=${v.swaps} onSwap=${(swaps) => set("swaps", swaps)} />
         <p class="soft">${plain(tubes.length * recipe.digestion_solution_ml, 1)} mL digestion solution and ${plain(tubes.length * recipe.acid_reagent_ml, 1)} mL acid reagent; order: ${recipe.order.join(", then ")}.</p></section>
       ${words && html`<section class="card wait"><h2>Reminders</h2><ul>${words.reminders.filter((row) => row.stage === "before tubes").map((row) => html`<li key=${row.id}>${row.words}</li>`)}</ul></section>`}
       <p><a href="/emergency">Emergency and first aid</a></p>

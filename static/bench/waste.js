@@ -33,7 +33,7 @@ function Move({ container }) {
 function Container({ container }) {
   const share = Math.round((100 * container.filled_ml) / container.capacity_ml);
   const words = clockWords(container);
-  return html`<section class="card stack ${words.startsWith("▲") ? "stop" : ""}"><div class="row spread"><h3>${container.name}</h3>${container.local ? html`<${Where} about=${container.id} />` : html`<span class="tag">${container.state ?? "in use"}</span>`}</div>
+  return html`<section class="card stack ${words.startsWith("▲") ? "stop" : ""}"><div class="row spread"><h2>${container.name}</h2>${container.local ? html`<${Where} about=${container.id} />` : html`<span class="tag">${container.state ?? "in use"}</span>`}</div>
     <p><strong>${share} % full</strong>: ${plain(container.filled_ml)} of ${plain(container.capacity_ml)} mL from ${container.tubes} tubes in ${container.runs.length} ${container.runs.length === 1 ? "run" : "runs"}; ${plain(container.mercury_mg / 1000, 2)} g mercury, ${plain(container.chromium_mg / 1000, 2)} g chromium, ${plain(container.silver_mg / 1000, 2)} g silver.</p>
     ${words && html`<p><strong>${words}</strong></p>`}
     ${container.moves?.map((move, i) => html`<p class="soft" key=${i}>${move.on}: ${move.to}${move.by && `, ${move.by}`}${move.manifest && `, manifest ${move.manifest}`}</p>`)}

@@ -82,7 +82,7 @@ export function Expected({ point, values, set }) {
     <${Strip} predictive=${forecast.predictive} bars=${plan ? around(plansOf(forecast), plan.factor) : []} limit=${limitOf(point)?.value ?? null} />
     ${plan && html`<${Dilution} plan=${plan} forecast=${forecast} chosen=${values.factor !== null} />`}
     ${!plan && html`<p class="above">▲ No dilution at hand fits. ${forecast.why}</p>`}
-    ${forecast.worth && html`<p class="dilute worth" role="status">${forecast.worth}</p>`}
+    ${forecast.worth && html`<p class="worth" role="status">${forecast.worth}</p>`}
     ${forecast.alarms.map((words) => html`<p class="above" role="status" key=${words}>▲ ${words}</p>`)}
     ${soft.map((words) => html`<p class="soft" key=${words}>${words}</p>`)}
     <${Another} forecast=${forecast} values=${values} set=${set} />

@@ -1,12 +1,16 @@
 // This device: how it looks, what it keeps, who is here.
 
 import { html, useEffect, useState } from "../parts/html.js";
+import { OwnValues } from "../bench/charts.js";
 import { getMeta } from "../parts/db.js";
-import { Check, Choice, useSaving } from "../parts/fields.js";
+import { askToKeep, durability, gradeWords } from "../parts/durability.js";
+import { saveFile } from "../parts/export.js";
+import { Check, Choice } from "../parts/fields.js";
 import { dayAndTime } from "../parts/format.js";
-import { Frame, Problem, exchangeNow, go } from "../parts/frame.js";
-import { health, signOut } from "../parts/sync.js";
-import { programme, useView, waiting } from "../parts/view.js";
+import { Frame, exchangeNow } from "../parts/frame.js";
+import { health } from "../parts/sync.js";
+import { programme, useView } from "../parts/view.js";
+import { Leave } from "./leave.js";
 
 const PLAIN = { theme: "auto", gloves: false };
 
@@ -47,17 +51,16 @@ function Comfort() {
 function Storage() {
   const [grade, setGrade] = useState(null);
   const look = async () => {
-    const persisted = await navigator.storage?.persisted?.();
     const room = await navigator.storage?.estimate?.();
-    setGrade({ persisted, room });
+    setGrade({ ...durability, room });
   };
   useEffect(() => { look().catch(() => {}); }, []);
-  const protect = () => { navigator.storage.persist().then(look).catch(() => {}); };
+  const protect = () => { askToKeep().then(look).catch(() => {}); };
   if (!grade) return null;
   return html`<section class="card stack"><h2>Storage</h2>
-    <p>${grade.persisted ? "This browser keeps what is recorded here until you delete it." : "This browser may delete what is recorded here when it runs out of room. Send entries soon."}</p>
+    <p>${gradeWords(grade)}</p>
     ${grade.room && html`<p class="soft small">${Math.round(grade.room.usage / 1e5) / 10} of ${Math.round(grade.room.quota / 1e6)} MB used.</p>`}
-    ${!grade.persisted && html`<button type="button" onClick=${protect}>Ask the browser to keep it</button>`}
+    ${!grade.kept && html`<button type="button" onClick=${protect}>Ask the browser to keep it</button>`}
   </section>`;
 }
 
@@ -74,27 +77,21 @@ function Backups() {
 
 /** The settings page. */
 export function Settings() {
-  const { count } = useView(waiting);
   const settings = useView(programme);
   const [person, setPerson] = useState(null);
   useEffect(() => { getMeta("person").then(setPerson, () => {}); }, []);
-  const { save, problem, busy } = useSaving(async () => {
-    if (count > 0) throw new Error(`${count} entries are on this tablet only. Send them before you sign out, so that nothing is stranded.`);
-    await signOut();
-    go("/sign-in");
-  });
   return html`<${Frame} title="Settings" about=${settings?.name}>
     <div class="stack">
       <section class="card stack"><h2>Who is here</h2>
         <p>${person?.name ? html`<strong>${person.name}</strong>, ${person.roles.join(", ")}` : html`Nobody. <a href="/sign-in">Sign in</a>`}</p>
-        <${Problem} words=${problem} />
-        ${person?.id && html`<button type="button" onClick=${save} disabled=${busy}>Sign out</button>`}
+        ${person?.id && html`<${Leave} />`}
       </section>
       <section class="card stack"><h2>Exchange</h2>
         <p>Last contact: ${dayAndTime(health.contact)}. ${health.problem}</p>
         <div class="row"><button type="button" onClick=${exchangeNow}>Exchange now</button><a class="button" href="/waiting">My entries</a></div>
+        <button type="button" class="quiet" onClick=${saveFile}>Save this tablet's entries as a file</button>
       </section>
-      <${Comfort} /><${Storage} /><${Backups} />
+      <${OwnValues} /><${Comfort} /><${Storage} /><${Backups} />
       <p><a href="/emergency">Emergency and first aid</a></p>
     </div>
   <//>`;

@@ -4,13 +4,24 @@ import { openDB } from "../vendor/idb.js";
 import { uuid7 } from "./uuid7.js";
 
 const NAME = "weirbook";
-const VERSION = 1;
-let opening = null;
+const VERSION = 2;
+const MARK = "weirbook-mark";
+const RESERVE_BYTES = 400_000;
+
+/** What is wrong with the store, in words for a banner; empty while it works. */
+export const store = { trouble: "" };
 
 /** What is told when the store cannot be used; forms keep what was typed. */
 export class StoreProblem extends Error {}
 
-function upgrade(db) {
+let opening = null;
+
+function tell(words) {
+  store.trouble = words;
+  dispatchEvent(new Event("weirbook-store"));
+}
+
+function first(db) {
   const records = db.createObjectStore("records", { keyPath: ["type", "id"] });
   records.createIndex("type", "type");
   db.createObjectStore("outbox", { keyPath: "n" });
@@ -18,47 +29,135 @@ function upgrade(db) {
   db.createObjectStore("meta", { keyPath: "key" });
 }
 
+function second(db) {
+  db.createObjectStore("photos", { keyPath: "sha256" });
+}
+
+/** Step n makes a store of version n; the steps of one opening are one transaction: all of them, or none. */
+const STEPS = [first, second];
+
+const upgrade = (db, from) => STEPS.slice(from).forEach((step) => step(db));
+
+/** The device and its last number as they stand outside the store; null when they stand nowhere. */
+function marked() {
+  let text = null;
+  try {
+    text = localStorage.getItem(MARK);
+  } catch { /* refused as the store may be */ }
+  text ??= document.cookie.split("; ").find((one) => one.startsWith(`${MARK}=`))?.slice(MARK.length + 1);
+  const [device, incarnation, n] = text?.split("~") ?? [];
+  return incarnation ? { device, incarnation, n: Number(n) } : null;
+}
+
+/** Note the last number outside the store, so that a store which comes back empty is noticed. */
+export function mark(device, n) {
+  const before = marked();
+  if (before?.incarnation === device.incarnation && before.n > n) return;
+  const text = [device.id, device.incarnation, n].join("~");
+  try {
+    localStorage.setItem(MARK, text);
+  } catch { /* the cookie stands alone then */ }
+  document.cookie = `${MARK}=${text};path=/;max-age=34560000;samesite=strict${location.protocol === "https:" ? ";secure" : ""}`;
+}
+
+/** Room that is given up when an entry has no other. Random, since a store may press repeated bytes to nothing. */
+function reserve() {
+  const filler = new Uint8Array(RESERVE_BYTES);
+  for (let at = 0; at < RESERVE_BYTES; at += 65536) crypto.getRandomValues(filler.subarray(at, at + 65536));
+  return { key: "reserve", filler: filler.buffer };
+}
+
+/** Put a reserve where there is none; without room there is none. */
+export async function keepReserve() {
+  if (await getMeta("reserve")) return;
+  const tx = await begin("meta", "readwrite");
+  tx.store.put(reserve()).catch(() => {});
+  await tx.done;
+}
+
+/** Give the reserve up; false when there is none. */
+export async function freeReserve() {
+  const tx = await begin("meta", "readwrite");
+  const there = await tx.store.get("reserve");
+  await tx.store.delete("reserve");
+  await tx.done;
+  return Boolean(there);
+}
+
+/** A device of its own with nothing numbered yet; `lost` is what stood outside an empty store. */
+export async function newDevice(meta, lost = null) {
+  const device = { key: "device", id: uuid7(), incarnation: uuid7(), made: new Date().toISOString() };
+  await meta.put(device);
+  await meta.put({ key: "last", n: 0, digest: null });
+  if (lost) await meta.put({ ...lost, key: "lost" });
+  return device;
+}
+
+/** Whoever waits for the end hears of an abort; nobody else has to. */
+function handled(tx) {
+  tx.done.catch(() => {});
+  return tx;
+}
+
 async function opened() {
   const db = await openDB(NAME, VERSION, {
     upgrade,
+    blocked() {
+      tell("Another window still holds this tablet's store as an older Weirbook made it. Close that window; this one then goes on by itself.");
+    },
     blocking(_current, _blocked, event) {
       event.target.close();
       opening = null;
+      tell("A newer Weirbook was opened in another window, so this one has let go of the store. Save what is in the form to a file if you must, then reload; what was saved is kept.");
     },
     terminated() {
       opening = null;
     },
   });
-  const tx = db.transaction("meta", "readwrite", { durability: "strict" });
+  const tx = handled(db.transaction("meta", "readwrite", { durability: "strict" }));
   if (!(await tx.store.get("device"))) {
-    await tx.store.put({ key: "device", id: uuid7(), incarnation: uuid7(), made: new Date().toISOString() });
-    await tx.store.put({ key: "last", n: 0, digest: null });
+    const before = marked();
+    const device = await newDevice(tx.store, before?.n ? before : null);
+    await tx.done;
+    mark(device, 0);
+    return db;
   }
   await tx.done;
   return db;
 }
 
+const wordsOf = (error) => (error.name === "VersionError"
+  ? "This tablet's store was made by a newer Weirbook than this page. Reload the page; nothing is lost."
+  : `This browser does not let Weirbook keep anything (${error.name}). Nothing can be recorded here: use another ` +
+    "window that is not private, or free some space.");
+
+async function openedOrTold() {
+  try {
+    const db = await opened();
+    if (store.trouble) tell("");
+    return db;
+  } catch (error) {
+    opening = null;
+    tell(wordsOf(error));
+    throw new StoreProblem(store.trouble);
+  }
+}
+
 /** The open database; opened again once when the browser has closed it. */
 export function open() {
-  opening ??= opened().catch((error) => {
-    opening = null;
-    throw new StoreProblem(
-      `This browser does not let Weirbook keep anything (${error.name}). Nothing can be recorded here: use another ` +
-        "window that is not private, or free some space.",
-    );
-  });
+  opening ??= openedOrTold();
   return opening;
 }
 
 /** Begin a transaction; a handle that the browser closed in the meantime is replaced once. */
 export async function begin(stores, mode = "readonly") {
-  const options = { durability: mode === "readwrite" ? "strict" : "default" };
+  const start = async () => handled((await open()).transaction(stores, mode, { durability: mode === "readwrite" ? "strict" : "default" }));
   try {
-    return (await open()).transaction(stores, mode, options);
+    return await start();
   } catch (error) {
     if (error.name !== "InvalidStateError") throw error;
     opening = null;
-    return (await open()).transaction(stores, mode, options);
+    return start();
   }
 }
 

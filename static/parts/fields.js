@@ -105,6 +105,23 @@ export function Check({ label, checked, onChange }) {
     <label for=${name}>${label}</label></div>`;
 }
 
+/** What stands in forms on this screen and is not saved yet, by the draft's key. */
+export const typed = new Map();
+
+export const TYPING = "weirbook-typing";
+let letGo = null;
+
+/** While something typed is unsaved, a lock says so to every window: a new version waits for it. */
+function noteTyped(key, values) {
+  if (values) typed.set(key, values);
+  else typed.delete(key);
+  if (!typed.size) letGo = void letGo?.();
+  else if (!letGo) {
+    const over = new Promise((end) => { letGo = end; });
+    navigator.locks?.request(TYPING, { mode: "shared" }, () => over).catch(() => {});
+  }
+}
+
 /**
  * A form's values, kept as a draft on every input and restored after the page was killed.
  * Returns [values, set(name, value), forget()]; values is null until the draft was looked for.
@@ -115,15 +132,27 @@ export function useForm(key, initial) {
     let here = true;
     getDraft(key)
       .catch(() => null)
-      .then((draft) => { if (here) setValues({ ...initial, ...draft }); });
-    return () => { here = false; };
+      .then((draft) => {
+        if (!here) return;
+        noteTyped(key, draft);
+        setValues({ ...initial, ...draft });
+      });
+    return () => {
+      here = false;
+      noteTyped(key, null);
+    };
   }, [key]);
   const set = (name, value) => setValues((before) => {
     const after = { ...before, [name]: value };
+    noteTyped(key, after);
     putDraft(key, after).catch(() => {});
     return after;
   });
-  return [values, set, () => dropDraft(key)];
+  const forget = () => {
+    noteTyped(key, null);
+    return dropDraft(key);
+  };
+  return [values, set, forget];
 }
 
 /** Bring what is wrong into view, once it is drawn: the first marked field, else the words. */

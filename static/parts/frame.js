@@ -1,10 +1,14 @@
 // The frame of every screen: the bar with the mark and the place, the banner that says what has not been sent,
 // the three places, and the toast.
 
+import { durability } from "./durability.js";
+import { TYPING } from "./fields.js";
 import { ago, clock } from "./format.js";
 import { html, useEffect, useState } from "./html.js";
 import { usePerson } from "./person.js";
+import { Loss, Trouble } from "./store_notes.js";
 import { health, sync, watch } from "./sync.js";
+import { update } from "./update.js";
 import { programme, useView, waiting, whereIs } from "./view.js";
 
 export const PLACES = [["field", "Field"], ["bench", "Bench"], ["review", "Review"]];
@@ -37,8 +41,6 @@ function useHealth() {
   return health;
 }
 
-const HOUR_MS = 3_600_000;
-
 /** What waits on this tablet and when the server was last heard. */
 export function Banner() {
   const { count, oldest, held } = useView(waiting);
@@ -50,7 +52,7 @@ export function Banner() {
   }
   if (!count && !held && !problem) return html`<div role="status" class="unseen">Everything is on the server.</div>`;
   return html`<div class="banner ${held || refused ? "stop" : ""}" role="status">
-    ${count > 0 && html`<strong>${count} ${count === 1 ? "entry" : "entries"} on this tablet only</strong>${oldest && Date.now() - new Date(oldest) > HOUR_MS && `, the oldest from ${ago(oldest)}`}. `}
+    ${count > 0 && html`<strong>${count} ${count === 1 ? "entry" : "entries"} on this tablet only</strong>${oldest && Date.now() - new Date(oldest) > durability.warnAfterMs && `, the oldest from ${ago(oldest)}`}. `}
     ${held > 0 && html`<strong><a href="/waiting">${held} ${held === 1 ? "entry needs" : "entries need"} attention.</a></strong> `}
     ${refused && html`<strong>${refused}</strong> `}${problem && !refused && count === 0 && html`<span>Working from what is on this tablet. </span>`}${said} </div>`;
 }
@@ -73,15 +75,23 @@ function Toast() {
 }
 
 function Update() {
-  const [worker, setWorker] = useState(null);
+  const [worker, setWorker] = useState(update.worker);
+  const [waits, setWaits] = useState(false);
   useEffect(() => {
-    const show = (event) => setWorker(event.detail);
+    const show = () => setWorker(update.worker);
+    show();
     addEventListener("weirbook-update", show);
     return () => removeEventListener("weirbook-update", show);
   }, []);
   if (!worker) return null;
-  return html`<div class="banner" role="status">A new version is ready.
-    <button type="button" class="quiet" onClick=${() => worker.postMessage("update")}>Use it now</button></div>`;
+  const use = async () => {
+    const locks = (await navigator.locks?.query())?.held ?? [];
+    const open = locks.some((lock) => lock.name === TYPING);
+    setWaits(open);
+    if (!open) worker.postMessage("update");
+  };
+  return html`<div class="banner" role="status">A new version is ready. ${waits && html`<strong>It waits: a form holds something that is not saved. Save it or leave it first.</strong>`}
+    <button type="button" class="quiet" onClick=${use}>Use it now</button></div>`;
 }
 
 const ROLES = { field: "inspector", bench: "analyst", review: "coordinator" };
@@ -103,7 +113,7 @@ export function Frame({ place, title, about, wide = false, children }) {
     <a class="skip" href="#main">To the content</a>
     <header class="bar"><${Mark} /><span class="place">${words}</span><span class="about">${about ?? (here?.example ? `Example: ${here.name}` : here?.name) ?? ""}</span>
       <a class="gear" href="/settings" aria-label="Settings">☰</a></header>
-    <${Banner} /><${RoleNote} place=${place} /><${Update} />
+    <${Trouble} /><${Loss} /><${Banner} /><${RoleNote} place=${place} /><${Update} />
     ${wide ? children : html`<main class="screen" id="main" tabindex="-1"><h1>${title}</h1>${children}</main>`}
     <nav class="places" aria-label="Places">${PLACES.map(([key, name]) => html`<a key=${key} href="/${key}" aria-current=${key === place ? "page" : undefined}>${name}</a>`)}</nav>
     <${Toast} />

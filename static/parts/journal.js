@@ -1,7 +1,7 @@
 // Making entries. The number, the digest of the entry before and the entry itself are written in one transaction;
 // a promise of this module is fulfilled only when that transaction is complete.
 
-import { begin } from "./db.js";
+import { begin, freeReserve, mark, StoreProblem } from "./db.js";
 import { versionOf } from "./kinds.js";
 import { sha256 } from "./sha256.js";
 import { uuid7 } from "./uuid7.js";
@@ -20,7 +20,7 @@ export function withOffset(moment = new Date()) {
   return `${local}${sign}${pad(Math.floor(Math.abs(offset) / 60))}:${pad(Math.abs(offset) % 60)}`;
 }
 
-function textOf(kind, about, body, { device, last, person, contact, base }) {
+function textOf({ kind, about, body, blobs = [] }, { device, last, person, contact, base }) {
   return JSON.stringify({
     id: uuid7(),
     device: device.id,
@@ -36,7 +36,7 @@ function textOf(kind, about, body, { device, last, person, contact, base }) {
     by: person.id,
     base,
     body,
-    blobs: [],
+    blobs,
   });
 }
 
@@ -50,8 +50,9 @@ async function write(made, tx) {
   // The store's own number runs on when the device takes a new incarnation, whose entries begin with 1 again.
   let row = last.row ?? last.n;
   const rows = [];
-  for (const { kind, about, body } of made) {
-    const text = textOf(kind, about, body, { device, last, person, contact, base: cursor?.position ?? 0 });
+  for (const one of made) {
+    const { kind, about } = one;
+    const text = textOf(one, { device, last, person, contact, base: cursor?.position ?? 0 });
     const { id, at, n } = JSON.parse(text);
     row += 1;
     last = { key: "last", n, row, digest: sha256(text) };
@@ -62,38 +63,51 @@ async function write(made, tx) {
   return rows;
 }
 
+async function attempt(made) {
+  const tx = await begin(["meta", "outbox"], "readwrite");
+  try {
+    const rows = await write(made, tx);
+    const device = await tx.objectStore("meta").get("device");
+    await tx.done;
+    mark(device, rows.at(-1)?.n ?? 0);
+    return rows;
+  } catch (error) {
+    try {
+      tx.abort();
+    } catch { /* the browser has ended it already */ }
+    throw await tx.done.then(() => error, (cause) => (error.name === "AbortError" && cause ? cause : error));
+  }
+}
+
+const isFull = (error) => error.name === "QuotaExceededError";
+
+function notSaved(error) {
+  if (error instanceof NotSaved) return error;
+  if (error instanceof StoreProblem) return new NotSaved(`Not saved. ${error.message} What you typed is still in the form.`);
+  return new NotSaved(
+    isFull(error)
+      ? "Not saved: this device has no room left. What you typed is still in the form; free some space and save again."
+      : `Not saved (${error.name}). What you typed is still in the form; save again.`,
+  );
+}
+
 /**
- * State several things at once: all are kept, or none.
- * @param {{kind: string, about: string, body: object}[]} made
+ * State several things at once: all are kept, or none. A full device gives up its reserve once.
+ * @param {{kind: string, about: string, body: object, blobs?: string[]}[]} made
  */
 export async function stateAll(made) {
-  let rows;
-  try {
-    const tx = await begin(["meta", "outbox"], "readwrite");
-    try {
-      rows = await write(made, tx);
-    } catch (error) {
-      tx.abort();
-      await tx.done.catch(() => {});
-      throw error;
-    }
-    await tx.done;
-  } catch (error) {
-    if (error instanceof NotSaved) throw error;
-    const full = error.name === "QuotaExceededError";
-    throw new NotSaved(
-      full
-        ? "Not saved: this device has no room left. What you typed is still in the form; free some space and save again."
-        : `Not saved (${error.name}). What you typed is still in the form; save again.`,
-    );
-  }
+  const again = async (error) => {
+    if (!isFull(error) || !(await freeReserve().catch(() => false))) throw error;
+    return attempt(made);
+  };
+  const rows = await attempt(made).catch(again).catch((error) => { throw notSaved(error); });
   entryAdded(rows);
   return rows;
 }
 
-/** State one thing. */
-export async function state(kind, about, body) {
-  return (await stateAll([{ kind, about, body }]))[0];
+/** State one thing; `blobs` are the digests of its photos. */
+export async function state(kind, about, body, blobs = []) {
+  return (await stateAll([{ kind, about, body, blobs }]))[0];
 }
 
 /** A new identity for a thing. */

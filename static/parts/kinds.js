@@ -12,11 +12,11 @@ const KINDS = new Map(Object.entries({
   "visit.ended": "Visit ended", "gas.tested": "Gas tested", "gas.confirmed": "Confirmed after a gas alarm", "flow.measured": "Flow measured",
   "sampler.set": "Sampler set", "sample.split": "Sample split", "meter.checked": "Meter checked",
   "bottle.measured": "Measured beside the COD", "study.planned": "Study planned",
-  "study.result": "Result of a study", "study.finished": "Study finished",
+  "study.result": "Result of a study", "study.finished": "Study finished", "baseline.frozen": "Baseline frozen",
 }));
 
 /** The version of a kind's body as this build makes it, where it is no longer the first. */
-const VERSIONS = { "sample.taken": 2, "custody.handed_over": 2 };
+const VERSIONS = { "run.planned": 2, "sample.taken": 2, "custody.handed_over": 2 };
 
 /** The version that this build states of a kind. */
 export const versionOf = (kind) => VERSIONS[kind] ?? 1;

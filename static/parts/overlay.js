@@ -74,7 +74,7 @@ const RECIPE_NUMBERS = [
 ];
 
 const newTube = (tube) => ({
-  bottle: null, expected: null, dilution: null, ...tube, absorbance: null, colour: null, remaining_oxidant: null,
+  bottle: null, expected: null, source: null, dilution: null, spike: null, ...tube, absorbance: null, colour: null, remaining_oxidant: null,
   excluded: null, in_tube: null, share: null, readings: [],
 });
 
@@ -121,7 +121,7 @@ const KINDS = new Map(Object.entries({
   }),
   "calibration.made": (layer, { about, at, by }, body) => layer.put("calibration", about, {
     weights: "equal", ...body, wavelength_nm: number(body.wavelength_nm), made_at: at, made_by: layer.name(by), fitted: null,
-    tube: layer.get("recipe", body.recipe)?.tube ?? "", checks: [],
+    tube: layer.get("recipe", body.recipe)?.tube ?? "", checks: [], due: {},
   }, { parent: body.recipe, at }),
   "curve.checked": (layer, { id, about, at, by }, body) => layer.update("calibration", about, (curve) => ({
     checks: [...curve.checks, { ...body, id, at, by: layer.name(by), judged: null }],
@@ -168,8 +168,8 @@ const KINDS = new Map(Object.entries({
   "run.planned": (layer, { about, at, by }, body) => {
     layer.put("run", about, {
       ...body, state: "planned", tubes: [...body.tubes].sort((a, b) => a.position - b.position).map(newTube), gates: {},
-      heating: null, answer: null, input: null, questions: [], problem: null, waste: null, bracketing: null, closed: null,
-      planned_by: layer.name(by), planned_at: at,
+      heating: null, answer: null, input: null, questions: [], problem: null, waste: null, bracketing: null, checks: [], experience: null,
+      fired: [], closed: null, planned_by: layer.name(by), planned_at: at,
     }, { at });
     for (const code of new Set(body.tubes.map((tube) => tube.bottle).filter(Boolean))) {
       const runs = layer.get("bottle", code)?.runs ?? [];
@@ -226,6 +226,7 @@ const KINDS = new Map(Object.entries({
   "study.finished": (layer, { about, at, by }, body) => layer.update("study", about, () => ({
     finished: { ...body, by: layer.name(by), at },
   })),
+  "baseline.frozen": (layer, { about, at, by }, body) => layer.update("chart", about, () => ({ asked: { ...body, by: layer.name(by), at } })),
   "entry.settled": (layer, { about }, body) => layer.update("held", about, () => ({
     state: body.decision === "admit" ? "admitted" : "set aside",
   })),

@@ -30,10 +30,13 @@ function hill(predictive, { from, to, x }) {
   return points.map(([px, d]) => `${px.toFixed(1)},${(BASE - (d / most) * (BASE - TOP - 8)).toFixed(1)}`);
 }
 
+/** The powers of ten on the axis; on a short one twos and fives as well. */
 function ticks({ from, to }) {
   const found = [];
-  for (let e = Math.ceil(from); e <= to; e += 1) found.push(10 ** e);
-  return found;
+  for (let e = Math.floor(from); e <= to; e += 1) found.push(...[1, 2, 5].map((k) => k * 10 ** e));
+  const on = found.filter((value) => Math.log10(value) >= from && Math.log10(value) <= to);
+  const tens = on.filter((value) => Number.isInteger(Math.log10(value)));
+  return tens.length > 1 ? tens : on;
 }
 
 function Bar({ bar, index, x }) {

@@ -70,7 +70,8 @@ async function acknowledge(answers) {
   });
 }
 
-async function push(state, device, texts) {
+/** Push texts of a device; what is no answer to them throws. */
+export async function push(state, device, texts) {
   const answer = await ask("POST", "/api/push", {
     protocol: PROTOCOL,
     build: state.build,

@@ -28,7 +28,7 @@ function List({ id }) {
   const results = useView(() => all("result"));
   const held = useView(() => all("held")).filter((entry) => entry.state === "held");
   const points = useView(() => all("point")).sort((a, b) => (a.discharger_name < b.discharger_name ? -1 : 1));
-  const open = results.filter((result) => result.source === "run" && OPEN.has(stageOf(result))).reverse();
+  const open = results.filter((result) => result.source === "run" && OPEN.has(stageOf(result)) && (result.sample || stageOf(result) === "to review")).reverse();
   const latest = new Map(results.map((result) => [result.point, result]));
   const found = points.filter((point) => `${point.discharger_name} ${point.name}`.toLowerCase().includes(words.toLowerCase()));
   return html`<div class="screen stack">

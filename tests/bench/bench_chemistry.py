@@ -14,7 +14,7 @@ import random
 import subprocess
 import sys
 import time
-from collections.abc import Callable, Sequence
+from collections.abc import Callable, Iterator, Sequence
 from pathlib import Path
 from typing import Any
 
@@ -146,8 +146,8 @@ def side_by_side(
     return best[0], best[1]
 
 
-def bench_fit() -> None:
-    """Print the ratio of ``fit`` to bare NumPy."""
+def fit_times() -> Iterator[tuple[str, int, float, float]]:
+    """Yield model, readings, and the seconds of ``fit`` and of bare NumPy for the same outputs."""
     rng = random.Random(3)
     for replicates, model, degree in (
         (1, "linear", 1),
@@ -166,9 +166,14 @@ def bench_fit() -> None:
         def theirs(x: Any = x, y: Any = y, degree: int = degree) -> dict[str, Any]:
             return bare_numpy(x, y, READS, degree)
 
-        mine, bare = side_by_side(ours, theirs)
+        yield model, len(x), *side_by_side(ours, theirs)
+
+
+def bench_fit() -> None:
+    """Print the ratio of ``fit`` to bare NumPy."""
+    for model, n, mine, bare in fit_times():
         times = f"{mine * 1e6:6.0f} us, bare numpy {bare * 1e6:6.0f} us, {mine / bare:.2f} x"
-        print(f"fit {model:9} n={len(x):3}: {times} (at most 1.50)")
+        print(f"fit {model:9} n={n:3}: {times} (at most 1.50)")
 
 
 def bench_calculate() -> None:

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import json
+import random
 import subprocess
 import sys
 import time
@@ -10,6 +11,7 @@ from collections.abc import Iterator
 from pathlib import Path
 from typing import Any
 
+from tests.bench.bench_chemistry import fit_times, one_run
 from tests.bench.measure import Measure
 
 ROOT = Path(__file__).resolve().parents[2]
@@ -87,10 +89,18 @@ def lines_a_second(verb: str, line: dict[str, Any]) -> float:
 
 
 def measures() -> Iterator[Measure]:
-    """Time a whole run of 25 tubes."""
+    """Time a whole run of 25 tubes, as triplicates and as 25 samples, and the fit beside bare NumPy."""
+    worst = max(mine / bare for _, _, mine, bare in fit_times())
+    yield Measure("fit / bare NumPy with the same outputs, worst case", worst, 1.5, "x", more_is_better=False)
     yield Measure(
         "calculate, a run of 25 tubes, one core",
         lines_a_second("calculate", run_of_25_tubes()),
+        300,
+        "lines/s",
+    )
+    yield Measure(
+        "calculate, 25 samples of one tube, one core",
+        lines_a_second("calculate", one_run(random.Random(25), 25, 1)),
         300,
         "lines/s",
     )

@@ -27,10 +27,11 @@ def free_port() -> int:
 class Server:
     """``python -m app serve`` on one store and one port, through any number of lives."""
 
-    def __init__(self, store: Path, port: int, log: Path) -> None:
+    def __init__(self, store: Path, port: int, log: Path, house: Path = ROOT) -> None:
         self.store = store
         self.port = port
         self.log = log
+        self.house = house
         self.url = f"http://localhost:{port}"
         self._process: subprocess.Popen[bytes] | None = None
 
@@ -41,7 +42,7 @@ class Server:
         with self.log.open("ab") as log:
             self._process = subprocess.Popen(
                 [*command, *options],
-                cwd=ROOT,
+                cwd=self.house,
                 env=os.environ | {"WEIRBOOK_FAST_PASSWORDS": "1", "PYTHONUNBUFFERED": "1"},
                 stdin=subprocess.DEVNULL,
                 stdout=log,

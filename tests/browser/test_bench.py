@@ -17,7 +17,7 @@ from playwright.sync_api import BrowserContext, Page, expect
 from tests.browser import chromium, told
 from tests.browser.server import Server
 from tests.browser.test_offline import PATIENT_MS, open_field
-from tests.browser.test_whole_path import CODE, GATES, _records, confirm, plan, receive
+from tests.browser.test_whole_path import CODE, GATES, _records, confirm, plan, receive, without_controls
 from tests.tools import devices
 
 Contexts = Callable[..., BrowserContext]
@@ -148,6 +148,7 @@ def test_an_over_range_sample_is_decided_upon_and_waits_at_the_advised_dilution(
     page.goto("/bench/plan")
     page.get_by_label(re.compile(CODE)).first.check()
     expect(page.get_by_label(f"Dilution of {CODE}")).to_have_value(f"{advised:g}")
+    without_controls(page)
     page.get_by_role("button", name="Save the plan").click()
     page.wait_for_url("**/bench/run/**")
     _sent(page)
@@ -178,6 +179,7 @@ def test_an_interrupted_digestion_fails_with_its_reason_and_its_bottle_waits_aga
     page.goto("/bench/plan")
     page.get_by_label(re.compile(CODE)).first.check()
     expect(page.get_by_label(f"Dilution of {CODE}")).to_have_value("5")
+    without_controls(page)
     page.get_by_role("button", name="Save the plan").click()
     page.wait_for_url("**/bench/run/**")
     _sent(page)
@@ -230,6 +232,7 @@ def test_a_dilution_that_no_known_glassware_makes_is_not_planned(bench: Page) ->
     expect(
         page.get_by_text("No class A pipette and flask are known here that make 1:3").first
     ).to_be_visible()
+    without_controls(page)
     page.get_by_role("button", name="Save the plan").click()
     expect(page.get_by_role("alert")).to_contain_text("choose another dilution")
     assert "/bench/plan" in page.url

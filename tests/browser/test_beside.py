@@ -15,7 +15,7 @@ from app.chemistry.detection_study import months_later
 from tests.browser import chromium, told
 from tests.browser.server import Server
 from tests.browser.test_offline import PATIENT_MS, open_field
-from tests.browser.test_whole_path import _records, _text_of
+from tests.browser.test_whole_path import _records, _text_of, without_controls
 from tests.tools import devices
 from tests.tools.devices import CODES
 
@@ -145,6 +145,7 @@ def test_chloride_over_what_the_mercury_masks_stops_the_plan_and_asks_at_the_gat
     page.goto("/bench/plan")
     page.get_by_label(re.compile(CODE)).first.check(timeout=PATIENT_MS)
     page.get_by_label(f"Dilution of {CODE}").select_option("2")
+    without_controls(page)
     expect(page.get_by_text("4500 mg/L chloride in the tube is more than the 1998 mg/L")).to_be_visible()
     page.get_by_role("button", name="Save the plan").click()
     expect(page.get_by_role("alert")).to_contain_text("dilute at least 4.5 times")

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import re
 from collections.abc import Callable
 from datetime import date, timedelta
 
@@ -32,17 +33,27 @@ def test_a_bent_series_earns_its_parabola_and_is_confirmed(
         page.get_by_label(f"Absorbances of level {level}").fill("x" if cod == 500 else _seen(cod))
     page.get_by_role("button", name="Save on this tablet").click()
     expect(page.get_by_role("alert")).to_contain_text("Not a number: x.")
+    page.get_by_label("Absorbances of level 5").fill("19.0")
+    page.get_by_label("COD of level 4").fill("-250")
+    page.get_by_role("button", name="Save on this tablet").click()
+    expect(page.get_by_role("alert")).to_contain_text("No absorbance between -1 and 5: 19.0.")
+    expect(page.get_by_role("alert")).to_contain_text("cannot hold less than 0")
+    page.get_by_label("COD of level 4").fill("250")
     page.get_by_label("Absorbances of level 5").fill(_seen(500))
     page.get_by_role("button", name="Save on this tablet").click()
     expect(page.get_by_text("they have earned a quadratic")).to_be_visible(timeout=15000)
+    expect(page.get_by_text("Mandel's test, F")).to_be_visible()
     expect(page.get_by_text("No standard of another source was read")).to_be_visible()
+    expect(page.get_by_text(f"second source due on {date.today().isoformat()}")).to_be_visible()
     page.get_by_role("button", name="Another curve from these standards").click()
     page.get_by_role("radio", name="quadratic").click()
     page.get_by_role("button", name="Save on this tablet").click()
     expect(page.get_by_text("quadratic, equal weights")).to_be_visible()
     expect(page.get_by_text("Nothing speaks against this curve")).to_be_visible(timeout=15000)
     page.get_by_text("Every standard, read back").click()
-    expect(page.get_by_role("row").filter(has_text="900").first).to_contain_text("%")
+    cells = page.get_by_role("row").filter(has_text="900").first.get_by_role("cell")
+    expect(cells.nth(3)).to_contain_text("%")
+    expect(cells.nth(4)).to_have_text(re.compile(r"0\.\d\d"))
     page.get_by_text("Record a check of this curve").click()
     page.get_by_label("Standard", exact=True).fill("ampoule K-3")
     page.get_by_label("Its COD").fill("400")

@@ -93,11 +93,13 @@ def test_a_held_entry_is_kept_and_shown_with_its_reason(
 def test_recording_goes_on_when_the_session_has_ended(
     context_factory: Callable[..., BrowserContext], server: Server
 ) -> None:
+    """F59: a 401 on push; capture goes on, the queue is intact, the entries go out under their author."""
     context = context_factory(base_url=server.url)
     page = context.new_page()
     tablet.begin(page, server.url)
     point = tablet.register_point(page)
     tablet.settled(page)
+    author = json.loads(tablet.outbox(page)[0]["text"])["by"]
     context.clear_cookies()
     page.goto("/field")
     tablet.take_sample(page, point)
@@ -106,6 +108,10 @@ def test_recording_goes_on_when_the_session_has_ended(
     tablet.sign_in(page, server.url)
     tablet.settled(page)
     assert {row["state"] for row in tablet.outbox(page)} == {"server"}
+    assert {json.loads(row["text"])["by"] for row in tablet.outbox(page)} == {author}
+    epoch = context.request.get("/api/state").json()["epoch"]
+    there = context.request.get(f"/api/pull?epoch={epoch}&after=0").json()["records"]
+    assert [one["body"]["by"] for one in there if one["type"] == "sample"] == [author]
 
 
 def _entries(response: Response) -> int:

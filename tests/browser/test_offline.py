@@ -32,6 +32,12 @@ DRAFTS_HOLD = """(text) => new Promise((found) => {
 })"""
 
 
+ENTER_AND_TAP = """() => {
+  document.querySelector("form").requestSubmit();
+  document.querySelector("form button.main").click();
+}"""
+
+
 def wait_until_kept(page: Page, text: str) -> None:
     """Wait until the last keystroke is in the store: what is drawn is a moment ahead of it."""
     for _ in range(100):
@@ -81,7 +87,7 @@ def test_the_client_can_be_installed(server: Server, profile_factory: Callable[.
 def test_a_sample_outlives_the_browser_and_the_dead_server(
     server: Server, profile_factory: Callable[..., Profile]
 ) -> None:
-    """F01, F21, F59: server dead, browser killed after "saved", a cold start, then the entry arrives once."""
+    """F01, F21: server dead, browser killed after "saved", a cold start, then the entry arrives once."""
     options: dict[str, Any] = {**chromium.PHONE, "base_url": server.url}
     profile = profile_factory(**options)
     page = profile.open()
@@ -127,7 +133,7 @@ def test_what_is_typed_outlives_the_browser(server: Server, profile_factory: Cal
 
 
 def test_two_taps_make_one_entry(server: Server, context_factory: Callable[..., BrowserContext]) -> None:
-    """F11."""
+    """F11: a double tap, and Enter with a tap, make one entry each."""
     context = context_factory(**chromium.DESK, base_url=server.url)
     told.set_up(context)
     page = context.new_page()
@@ -136,8 +142,12 @@ def test_two_taps_make_one_entry(server: Server, context_factory: Callable[..., 
     page.get_by_label("Bottle", exact=True).fill(CODES[4])
     page.get_by_role("button", name="Save the sample").dblclick()
     expect(page.get_by_text("Saved on this tablet")).to_be_visible()
+    page.goto("/field/point/outlet-b/take")
+    page.get_by_label("Bottle", exact=True).fill(CODES[5])
+    page.evaluate(ENTER_AND_TAP)
+    expect(page.get_by_text("Saved on this tablet")).to_be_visible()
     page.goto("/waiting")
-    expect(page.get_by_text(re.compile("Sample taken"))).to_have_count(1)
+    expect(page.get_by_text(re.compile("Sample taken"))).to_have_count(2)
 
 
 def test_a_bottle_that_is_taken_is_refused_with_words_and_the_form_is_kept(

@@ -39,6 +39,8 @@ SCREENS = (
     "/bench/stores/calibration",
     "/bench/plan",
     "/bench/run/run-1",
+    "/bench/charts",
+    "/bench/charts/ver:high:photometer",
     "/bench/measure",
     f"/bench/measure/{CODES[0]}",
     "/bench/studies",

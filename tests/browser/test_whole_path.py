@@ -40,11 +40,19 @@ def receive(page: Page) -> None:
     page.wait_for_url("**/bench")
 
 
+def without_controls(page: Page) -> None:
+    """Leave control, duplicate and spike out of the rack, with the reason."""
+    for name in ("Laboratory control", "Duplicate", "Spike"):
+        page.get_by_label(name, exact=True).uncheck()
+        page.get_by_label(f"Why no {name.lower()}").fill("a single bottle, tried out")
+
+
 def plan(page: Page) -> None:
     """Plan a run with the bottle at 1:5; the rack fills itself."""
     page.goto("/bench/plan")
     page.get_by_label(re.compile(CODE)).first.check()
     page.get_by_label(f"Dilution of {CODE}").select_option("5")
+    without_controls(page)
     expect(page.get_by_text("8 of 25 positions")).to_be_visible()
     page.get_by_role("button", name="Save the plan").click()
     page.wait_for_url("**/bench/run/**")

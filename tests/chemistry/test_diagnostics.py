@@ -55,6 +55,8 @@ def test_a_bend_earns_a_quadratic_only_with_enough_levels() -> None:
     assert len(words) == 1
     assert "earned a quadratic" in words[0]
     few = CURVED[::2] + CURVED[-2:-1]
+    assert "Mandel's test, F " in words[0]
+    assert "p under 0.001" in words[0]
     assert "add standards" in next(f.words for f in findings(fit(few), few) if f.about == "bend")
 
 
@@ -125,3 +127,22 @@ def test_leverage_equals_statsmodels() -> None:
     rows = residuals(fit(CURVED, "quadratic"), CURVED)
     assert [r.leverage for r in rows] == pytest.approx(influence.hat_matrix_diag, rel=1e-9)
     assert [r.standardised for r in rows] == pytest.approx(influence.resid_studentized_internal, rel=1e-6)
+
+
+@pytest.mark.parametrize(("reach", "told"), [((20, 900), False), ((20, 901), True), ((0, 900), False)])
+def test_a_working_range_beyond_the_standards_is_told(reach, told) -> None:
+    found = findings(fit(STANDARDS), STANDARDS, HIGH, reach)
+    assert [one.about for one in found] == (["range"] if told else [])
+
+
+@pytest.mark.parametrize("weights", ["equal", "inverse"])
+def test_a_standard_that_does_not_find_itself_is_named_with_what_it_found(weights) -> None:
+    off = [
+        Standard(50.0, (0.0200,)),
+        *(Standard(x, (SLOPE * x,)) for x in (100.0, 250.0, 500.0, 750.0, 900.0)),
+    ]
+    off[1] = Standard(100.0, (SLOPE * 125.0,))
+    words = [one.words for one in findings(fit(off, "linear", weights), off) if one.about == "recovery"]
+    share = next(r.recovery_percent for r in fit(off, "linear", weights).standards if r.cod == 100.0)
+    assert f"100 mg/L ({share:.0f} %)" in words[0]
+    assert ("weight by 1/x" in words[0]) is (weights == "equal")

@@ -154,7 +154,8 @@ def _running() -> Iterator[tuple[str, str, dict[str, Any]]]:
         "block": "i2",
         "container": "c1",
     }
-    yield "run.planned", "u1", {**plan, "calibration": "k1", "tubes": TUBES}
+    without = [{"role": role, "reason": "a trial"} for role in ("control", "duplicate", "spike")]
+    yield "run.planned", "u1", {**plan, "calibration": "k1", "tubes": TUBES, "without": without}
     for gate in GATES:
         yield "gate.confirmed", "u1", {"gate": gate.id, "value": {"text": "150", "unit": "Cel"}}
     started = {"started_at": "2026-11-03T09:00:00-06:00", "minutes": 120}

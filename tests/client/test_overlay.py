@@ -21,7 +21,7 @@ DEVICE = {"device": bottle.DEVICE, "incarnation": bottle.INCARNATION}
 # Known on the server alone: its own sums, and the holding time by the rule of the programme's zone.
 ONLY_THE_SERVER = {
     "recipe": {"derived"},
-    "calibration": {"fitted"},
+    "calibration": {"fitted", "due"},
     "sample": {"hold_until"},
     "meter": {"samples"},
     "container": {"clock"},

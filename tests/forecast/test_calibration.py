@@ -11,6 +11,7 @@ from hypothesis import strategies as st
 
 from app.forecast import Programme, posterior
 from app.forecast.calibration import FIRST_WEIGHTS, TAIL_DOF, WIDTHS, correction
+from app.forecast.trust import one_step_ahead
 from app.forecast.wandering import Filtered, Past, filtered, past_of
 from tests.forecast.made import walk
 
@@ -65,3 +66,16 @@ def test_bounds_and_an_empty_past_ask_for_nothing() -> None:
 def test_a_forecast_from_a_long_past_keeps_the_tails_of_ln_cod() -> None:
     assert posterior(START, None, walk(100)).dof == TAIL_DOF
     assert posterior(START, None, walk(2)).dof < TAIL_DOF
+
+
+@pytest.mark.parametrize("share", [0.7, 0.5])
+def test_the_range_holds_where_many_results_were_over(share: float) -> None:
+    """Everything above a station's 70 % or 50 % point told as "over" only, judged on what it really was."""
+    inside = []
+    for seed in range(12):
+        true = walk(60, seed, noise=0.6)
+        top = float(np.quantile([one.cod for one in true], share))
+        told = [replace(one, cod=top, state="over") if one.cod > top else one for one in true]
+        ahead = one_step_ahead(START, None, told)[10:]
+        inside += [abs(e.cdf(one.cod) - 0.5) < 0.45 for e, one in zip(ahead, true[10:], strict=True)]
+    assert 0.86 <= np.mean(inside) <= 0.95

@@ -5,7 +5,16 @@ from __future__ import annotations
 import numpy as np
 import pytest
 
-from app.chemistry.control_charts import cusum, ewma, freeze, individuals_limits, range_limits
+from app.chemistry.control_charts import (
+    D2_OF_TWO,
+    RANGE_ACTION,
+    RANGE_WARNING,
+    cusum,
+    ewma,
+    freeze,
+    individuals_limits,
+    range_limits,
+)
 from app.chemistry.quality import duplicate_check, spike_check, spike_recovery, verifications_needed
 
 pytestmark = pytest.mark.published
@@ -47,6 +56,64 @@ def test_range_chart_factors() -> None:
     """Source: tables of control chart constants, ranges of two: D4 3.267; warning at 2.512."""
     limits = range_limits(freeze("ranges", [1.0, 3.0] * 10))
     assert (limits.upper_action, limits.upper_warning) == (pytest.approx(6.534), pytest.approx(5.024))
+
+
+def test_the_constants_of_ranges_of_two_follow_from_the_normal_distribution() -> None:
+    """Source: |N(0, 2)| has mean 2 / sqrt(pi) and variance 2 - 4 / pi: d2, d3; D4 = 1 + 3 d3 / d2."""
+    d2, d3 = 2 / np.sqrt(np.pi), np.sqrt(2 - 4 / np.pi)
+    assert pytest.approx(d2, abs=5e-5) == D2_OF_TWO
+    assert pytest.approx(2.66, abs=0.002) == 3 / D2_OF_TWO
+    assert pytest.approx(1 + 3 * d3 / d2, abs=6e-4) == RANGE_ACTION
+    # the tables' 2.512 is made of d2 1.128 and d3 0.853; the exact value is 2.511
+    assert pytest.approx(1 + 2 * 0.853 / 1.128, abs=6e-4) == RANGE_WARNING
+
+
+FLOW = [49.6, 47.6, 49.9, 51.3, 47.8, 51.2, 52.6, 52.4, 53.6, 52.1]
+
+
+def test_the_handbooks_individuals_chart() -> None:
+    """Source: NIST/SEMATECH e-Handbook 6.3.2.2, ten batches: mean 50.81, mean moving range 1.8778.
+
+    Limits 55.8041 and 45.8159 with d2 1.128; mean, range and limits through a
+    public copy, the ten values from memory.
+    """
+    baseline = freeze("ten batches", FLOW, fewest=10)
+    assert (baseline.mean, baseline.mean_moving_range) == (
+        pytest.approx(50.81),
+        pytest.approx(1.8778, abs=5e-5),
+    )
+    limits = individuals_limits(baseline, "moving range")
+    assert limits.upper_action == pytest.approx(55.8041, abs=0.002)  # d2 1.1284 here, 1.128 there
+    assert limits.lower_action == pytest.approx(45.8159, abs=0.002)
+
+
+MOVING = [52.0, 47.0, 53.0, 49.3, 50.1, 47.0, 51.0, 50.1, 51.2, 50.5, *FLOW]
+
+
+def test_the_handbooks_moving_average_by_the_bench() -> None:
+    """Source: NIST/SEMATECH 6.3.2.4: weight 0.3, s 2.0539; limits 52.5884 and 47.4115, no signal."""
+    found = ewma(MOVING, 50.0, 2.0539, weight=0.3, width=3.0)
+    assert (found.upper, found.lower) == (pytest.approx(52.5884, abs=2e-4), pytest.approx(47.4115, abs=2e-4))
+    assert found.values[:5] == pytest.approx((50.60, 49.52, 50.56, 50.18, 50.16), abs=0.0051)
+    assert found.values[-3:] == pytest.approx((51.23, 51.94, 51.99), abs=0.0051)
+    assert found.signals == ()
+
+
+GROUPS = [324.925, 324.675, 324.725, 324.350, 325.350, 325.225, 324.125, 324.525, 325.225, 324.600]
+GROUPS += [324.625, 325.150, 328.325, 327.250, 327.825, 328.500, 326.675, 327.775, 326.875, 328.350]
+
+
+def test_the_handbooks_cumulative_sum() -> None:
+    """Source: NIST/SEMATECH e-Handbook 6.3.2.3, all from memory: target 325, k 0.3175, h 4.1959.
+
+    The upper sum is 3.01 at the thirteenth group and 4.94 at the fourteenth,
+    which signals, as does every one after it; it ends at 19.04.
+    """
+    found = cusum(GROUPS, 325.0, 1.0, k=0.3175, h=4.1959)
+    assert found.upper[12:16] == pytest.approx((3.01, 4.94, 7.45, 10.63), abs=0.011)
+    assert found.upper[-1] == pytest.approx(19.04, abs=0.011)
+    assert found.lower[6:11] == pytest.approx((0.56, 0.72, 0.17, 0.25, 0.31), abs=0.011)
+    assert found.signals == tuple(range(13, 20))
 
 
 def test_ewma_by_hand() -> None:

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import json
+from datetime import timedelta
 from typing import Any
 
 import pytest
@@ -55,6 +56,36 @@ def test_a_run_refuses_a_curve_of_another(ready: Desk, changed: dict[str, Any], 
     assert words in " ".join(answer.hold.fields["calibration"])
 
 
+@pytest.mark.parametrize("namesake", [("lot", "lot-2"), ("instrument", "other")], ids=["lot", "photometer"])
+def test_a_run_refuses_the_curve_of_a_namesake(ready: Desk, namesake: tuple[str, str]) -> None:
+    """Two lots may bear one name on the bottle: what counts is which one it is."""
+    d = ready.device
+    lot = {name: ready.get("lot", "lot-1")[name] for name in ("recipe", "name", "made_on", "expires_on")}
+    photometer = {name: ready.get("instrument", "photometer")[name] for name in ("name", "what")}
+    assert ready.held(d.make("lot.made", "lot-2", lot), d.make("instrument.added", "other", photometer)) == [
+        None,
+        None,
+    ]
+    (answer,) = ready.tell(devices.planned(d, "r", CODES[0], **dict([namesake])))
+    assert answer.hold is not None
+    assert "another of that name" in " ".join(answer.hold.fields["calibration"])
+
+
+def test_a_reading_after_the_curves_last_day_is_kept_as_held(ready: Desk) -> None:
+    """The run began in time; a tube read the day after gets no result, one read before may be corrected."""
+    d = ready.device
+    ready.tell(calibration(ready, "short", valid_until="2031-06-01"), devices.sample(d, "s", CODES[0]))
+    planned = devices.planned(d, "r", CODES[0], calibration="short")
+    assert set(ready.held(planned, *devices.heated(d, "r"), devices.reading(d, "r", 1, "0.010"))) == {None}
+    d.now += timedelta(days=1)
+    (answer,) = ready.tell(devices.reading(d, "r", 2, "0.012"))
+    assert answer.hold is not None
+    assert answer.hold.code == "wrong_curve"
+    assert "is valid from 2031-06-01 to 2031-06-01" in answer.hold.message
+    seen = {"absorbance": devices.measured("0.011", "AU"), "colour": None, "reason": "misread"}
+    assert ready.held(d.make("tube.read", "r", {"position": 1} | seen)) == [None]
+
+
 def test_a_run_refuses_a_curve_past_its_day_and_an_expired_lot(ready: Desk) -> None:
     d = ready.device
     old = {"recipe": "high", "name": "D-29-001", "made_on": "2029-05-01", "expires_on": "2031-05-01"}
@@ -93,6 +124,67 @@ def test_a_programme_may_ask_for_a_second_source(ready: Desk) -> None:
     assert ready.held(devices.planned(d, "r", CODES[0])) == ["wrong_plan"]
     ready.tell(checked(ready, "500", ["0.190"]))
     assert ready.held(devices.planned(d, "r", CODES[0])) == [None]
+
+
+def test_the_newest_second_source_counts_until_it_is_due_again(ready: Desk) -> None:
+    d = ready.device
+    asked = {"settings": {"second_source_required": True}, "reason": "accreditation"}
+    ready.tell(d.make("settings.changed", "programme", asked), checked(ready, "500", ["0.190"]))
+    assert ready.held(checked(ready, "600", ["0.190"]), devices.planned(d, "r", CODES[0]))[1] == "wrong_plan"
+    assert ready.held(checked(ready, "500", ["0.190"]), devices.planned(d, "r2", CODES[0])) == [None, None]
+    d.now += timedelta(days=93)
+    (answer,) = ready.tell(devices.planned(d, "r3", CODES[0]))
+    assert answer.hold is not None
+    assert "due again on 2031-09-01" in " ".join(answer.hold.fields["calibration"])
+
+
+def test_what_is_due_stands_with_the_curve_from_its_first_day(ready: Desk) -> None:
+    """EPA 410.4 revision 2.0, 9.2: another source at once and every quarter, the range every half year."""
+    assert ready.get("calibration", "curve")["due"] == {
+        "second source": "2031-06-01",
+        "linear range": "2031-12-01",
+    }
+    ready.tell(checked(ready, "600", ["0.190"]))
+    assert ready.get("calibration", "curve")["due"]["second source"] == "2031-06-01"
+    ready.tell(checked(ready, "500", ["0.190"]))
+    assert ready.get("calibration", "curve")["due"]["second source"] == "2031-09-01"
+
+
+def test_a_falling_curve_reads_a_run_of_the_low_range(ready: Desk) -> None:
+    """At 420 nm absorbance falls with COD; 0.26 AU and 1/436 AU per mg/L as for a 1 cm cell."""
+    d = ready.device
+    low = devices.RECIPE | {
+        "name": "Low range",
+        "dichromate_g_per_l": "1.0216",
+        "wavelength_nm": "420",
+        "working_low": "5",
+        "working_high": "90",
+    }
+    lot = {"recipe": "low", "name": "L-1", "made_on": "2031-05-01", "expires_on": "2032-05-01"}
+    standards = [
+        {"cod": f"{cod}", "absorbance": [f"{-cod / 436 + wobble:.4f}" for wobble in (0.0002, -0.0002)]}
+        for cod in (0, 5, 10, 25, 50, 75, 90)
+    ]
+    ready.tell(d.make("recipe.adopted", "low", low), d.make("lot.made", "lot-low", lot))
+    curve = calibration(ready, "falls", recipe="low", lot="lot-low", wavelength_nm="420", standards=standards)
+    assert ready.held(curve) == [None]
+    fitted = ready.get("calibration", "falls")["fitted"]
+    assert fitted["coefficients"][1] == pytest.approx(-1 / 436, rel=0.01)
+    assert [one for one in fitted["findings"] if one["severity"] == "stop"] == []
+    dilution = {"factor": 2.0, "steps": [], "relative_u": 0.001, "reason": ""}
+    tubes = [
+        {"position": 1, "role": "blank"},
+        *[{"position": at, "role": "sample", "bottle": CODES[0], "dilution": dilution} for at in (2, 3)],
+    ]
+    changed = {"recipe": "low", "lot": "lot-low", "calibration": "falls", "tubes": tubes}
+    ready.tell(devices.sample(d, "s", CODES[0]))
+    assert set(ready.held(devices.planned(d, "r", CODES[0], **changed), *devices.heated(d, "r"))) == {None}
+    for at, text in ((1, "0.260"), (2, "0.168"), (3, "0.1684")):
+        assert ready.held(devices.reading(d, "r", at, text)) == [None]
+    assert ready.held(d.make("readings.finished", "r", {})) == [None]
+    (sample,) = ready.get("run", "r")["answer"]["samples"]
+    assert sample["status"] == "ok"
+    assert sample["cod"] == pytest.approx(2 * 436 * (0.260 - 0.1682), rel=0.01)
 
 
 def test_weights_and_leverage_reach_curve_and_run(ready: Desk) -> None:

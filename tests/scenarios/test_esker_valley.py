@@ -121,7 +121,7 @@ def test_the_history_has_values_and_bounds() -> None:
 
 
 def test_the_files_are_what_their_maker_makes(tmp_path: Path) -> None:
-    for name in ("make.py", "fieldwork.py", "laboratory.py", "programme.json"):
+    for name in ("make.py", "fieldwork.py", "laboratory.py", "controls.py", "programme.json"):
         (tmp_path / name).write_bytes((HERE / name).read_bytes())
     subprocess.run([sys.executable, str(tmp_path / "make.py")], check=True)
     for name in ("history.csv", "story.json"):

@@ -160,7 +160,7 @@ def test_pages_neither_skip_nor_repeat(browser: Browser, device: Device, limit: 
 
 
 def test_typed_texts_come_back_as_they_were_typed(browser: Browser, device: Device) -> None:
-    """F10."""
+    """The store, the journal and the answer hold the text."""
     browser.push(devices.setting_up(device))
     typed = ["1,5", "< 0.5", "1.50", "-0.0", "1e3", "0012", "9007199254740993"]
     for i, text in enumerate(typed):

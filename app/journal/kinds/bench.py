@@ -2,10 +2,12 @@
 
 from __future__ import annotations
 
+from typing import Any
+
 from marshmallow import fields, validate
 
 from app.journal.fields import Day, Id, Measured, Number, Text, When
-from app.journal.kinds import ADMINISTRATOR, ANALYST, SERVER, Body, kind
+from app.journal.kinds import ADMINISTRATOR, ANALYST, SERVER, Body, kind, upcaster
 from app.journal.kinds.field import Step, bottle_code
 
 
@@ -151,17 +153,39 @@ class TubeDilution(Body):
     reason = Text(required=True, blank=True, longest=500)
 
 
+CONTROLS = ("control", "duplicate", "spike")
+
+
+class TubeSpike(Body):
+    """What a spiked tube was filled from: so much of a solution in so much of the diluted sample."""
+
+    sample_ml = Number(low=0.01, high=10_000, required=True)
+    spike_ml = Number(low=0.0001, high=1000, required=True)
+    spike_mg_l = Number(low=0.1, high=1_000_000, required=True)
+
+
 class Tube(Body):
     """What a position of the rack holds."""
 
     position = fields.Integer(required=True, strict=True, validate=validate.Range(min=1, max=200))
-    role = fields.String(required=True, validate=validate.OneOf(["blank", "verification", "sample"]))
+    role = fields.String(
+        required=True, validate=validate.OneOf(["blank", "verification", "sample", *CONTROLS])
+    )
     bottle = fields.String(allow_none=True, validate=bottle_code)
     expected = Number(low=0, allow_none=True)
+    source = Text(allow_none=True, longest=200)
     dilution = fields.Nested(TubeDilution, allow_none=True)
+    spike = fields.Nested(TubeSpike, allow_none=True)
 
 
-@kind("run.planned", ANALYST)
+class Without(Body):
+    """A control that this rack does without, and why."""
+
+    role = fields.String(required=True, validate=validate.OneOf(CONTROLS))
+    reason = Text(required=True, longest=300)
+
+
+@kind("run.planned", ANALYST, version=2)
 class RunPlanned(Body):
     """A digestion is planned: these tubes in these positions."""
 
@@ -173,6 +197,13 @@ class RunPlanned(Body):
     calibration = Id(required=True)
     container = Id(required=True)
     tubes = fields.List(fields.Nested(Tube), required=True, validate=validate.Length(min=1, max=200))
+    without = fields.List(fields.Nested(Without), required=True, validate=validate.Length(max=3))
+
+
+@upcaster("run.planned", 1)
+def _run_before_controls(body: dict[str, Any]) -> dict[str, Any]:
+    why = "planned before racks had them"
+    return body | {"without": [{"role": role, "reason": why} for role in CONTROLS]}
 
 
 @kind("gate.confirmed", ANALYST)
@@ -246,6 +277,8 @@ class RunCalculated(Body):
     results = fields.List(fields.Dict(), required=True)
     waste = fields.Dict(required=True)
     bracketing = fields.Dict()
+    checks = fields.List(fields.Dict())
+    experience = fields.Dict()
 
 
 class Decision(Body):

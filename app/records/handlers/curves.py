@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from datetime import date
 
-from app.chemistry.validity import Conditions, Validity, refusals
+from app.chemistry.validity import Conditions, Validity, due_again, refusals
 from app.journal import measured
 from app.records.change import Body, Change, Refused
 from app.records.handlers import handles
@@ -31,10 +31,11 @@ def calibration_made(change: Change) -> None:
         "made_at": change.entry.at,
         "made_by": change.name_of(change.entry.by),
     }
+    begun = {"fitted": None, "tube": recipe.get("tube", ""), "checks": [], "due": {}}
     change.put(
         "calibration",
         change.entry.about,
-        {"weights": "equal"} | body | made | {"fitted": None, "tube": recipe.get("tube", ""), "checks": []},
+        {"weights": "equal"} | body | made | begun,
         parent=body["recipe"],
         at=change.entry.at,
     )
@@ -42,9 +43,16 @@ def calibration_made(change: Change) -> None:
 
 @handles("calibration.fitted")
 def calibration_fitted(change: Change) -> None:
-    """The curve, as the server fitted it."""
+    """The curve, as the server fitted it, and when it is to be checked."""
     body = change.need("calibration", change.entry.about)
-    change.update("calibration", change.entry.about, body | {"fitted": change.body["fitted"]})
+    made_on = date.fromisoformat(body["made_at"][:10])
+    due = {"second source": made_on, "linear range": due_again("linear range", made_on)}
+    first = {what: day.isoformat() for what, day in due.items()}
+    change.update(
+        "calibration",
+        change.entry.about,
+        body | {"fitted": change.body["fitted"], "due": first | body["due"]},
+    )
 
 
 @handles("curve.checked")
@@ -71,57 +79,67 @@ def curve_judged(change: Change) -> None:
         check | {"judged": judged} if check["id"] == change.body["check"] else check
         for check in curve["checks"]
     ]
-    change.update("calibration", change.entry.about, curve | {"checks": checks})
+    what = next(check["what"] for check in checks if check["id"] == change.body["check"])
+    due = curve["due"] | ({what: change.body["due_on"]} if change.body["ok"] else {})
+    change.update("calibration", change.entry.about, curve | {"checks": checks, "due": due})
 
 
-def _conditions(change: Change, body: Body, wavelength_nm: float, tube: str) -> Conditions:
-    """Return the conditions of a curve or of a run, in the names that people know."""
+def _conditions(change: Change, body: Body, curve: Body, wavelength_nm: float, tube: str) -> Conditions:
+    """Return the conditions of a curve or of a run, in the names that people know.
 
-    def name(type_: str, id_: str) -> str:
-        return str(change.need(type_, id_)["name"])
+    Two things may bear one name: one that is not the curve's says so.
+    """
 
-    return Conditions(
-        name("recipe", body["recipe"]),
-        wavelength_nm,
-        name("instrument", body["instrument"]),
-        tube,
-        name("lot", body["lot"]),
-    )
+    def name(type_: str) -> str:
+        known = str(change.need(type_, body[type_])["name"])
+        namesake = body[type_] != curve[type_] and change.need(type_, curve[type_])["name"] == known
+        return f"{known} (another of that name)" if namesake else known
+
+    return Conditions(name("recipe"), wavelength_nm, name("instrument"), tube, name("lot"))
 
 
-def wrong_curve(change: Change, body: Body) -> list[str]:
-    """Return why the readings of a run would refuse its curve.
+def unfit(change: Change, body: Body) -> list[str]:
+    """Return why a curve does not belong to the tubes of a run on the day of an entry.
 
     Parameters
     ----------
     change : Change
-        The entry that plans or heats the run.
+        The entry that plans the run or reads a tube.
     body : dict
         Names ``calibration``, ``recipe``, ``lot`` and ``instrument``.
     """
     curve, recipe = change.need("calibration", body["calibration"]), change.need("recipe", body["recipe"])
     tube = curve.get("tube", "")
-    mine = _conditions(change, curve, recipe["wavelength_nm"], tube)
-    theirs = _conditions(change, body, recipe["wavelength_nm"], recipe.get("tube", ""))
+    mine = _conditions(change, curve, curve, recipe["wavelength_nm"], tube)
+    theirs = _conditions(change, body, curve, recipe["wavelength_nm"], recipe.get("tube", ""))
     made_on, until = (date.fromisoformat(text[:10]) for text in (curve["made_at"], curve["valid_until"]))
     today = date.fromisoformat(change.entry.at[:10])
     # Clocks of two tablets differ: only the last day of a curve is held against a run.
     validity = Validity(mine, min(made_on, today), until)
-    found = [words for reasons in refusals(validity, theirs, today).values() for words in reasons]
+    return [words for reasons in refusals(validity, theirs, today).values() for words in reasons]
+
+
+def wrong_curve(change: Change, body: Body) -> list[str]:
+    """Return why a run may not be planned with its curve; takes what :func:`unfit` takes."""
+    curve, today = change.need("calibration", body["calibration"]), date.fromisoformat(change.entry.at[:10])
     fitted = curve["fitted"] or {}
+    found = unfit(change, body)
     found += [fitted["error"]] if "error" in fitted else []
     found += [one["words"] for one in fitted.get("findings", []) if one["severity"] == "stop"]
-    return found + _unchecked(change, curve) + _old_lot(change, body, today)
+    return found + _unchecked(change, curve, today) + _old_lot(change, body, today)
 
 
-def _unchecked(change: Change, curve: Body) -> list[str]:
-    settings = change.find("programme")[0][1]["settings"]
-    held = any(
-        (check["judged"] or {}).get("ok") for check in curve["checks"] if check["what"] == "second source"
-    )
-    if held or not settings.get("second_source_required"):
+def _unchecked(change: Change, curve: Body, today: date) -> list[str]:
+    """Return what the newest standard of another source leaves open, where the programme asks for one."""
+    if not change.find("programme")[0][1]["settings"].get("second_source_required"):
         return []
-    return ["no standard of another source has confirmed this curve, and the programme asks for one"]
+    checks = [check for check in curve["checks"] if check["what"] == "second source"]
+    judged = (checks[-1]["judged"] or {}) if checks else {}
+    if not judged.get("ok"):
+        return ["no standard of another source has confirmed this curve, and the programme asks for one"]
+    if judged["due_on"] < today.isoformat():
+        return [f"its standard of another source was due again on {judged['due_on']}"]
+    return []
 
 
 def _old_lot(change: Change, body: Body, today: date) -> list[str]:

@@ -11,15 +11,22 @@ from collections.abc import Callable
 from typing import Any
 
 from app.journal import measured
-from app.records import interferences
+from app.records import controls, interferences
 from app.records.change import Body, Change, Refused
 from app.records.handlers import handles
-from app.records.handlers.curves import wrong_curve
+from app.records.handlers.curves import unfit, wrong_curve
 from app.records.handlers.field import bottle, put_bottle
 from app.records.handlers.waste import DIGEST, add_to_month, day_of
 from app.records.laboratory import waste_of
 from app.safety import gates as safety
 
+NEEDS = {
+    "sample": ("bottle", "dilution"),
+    "verification": ("expected",),
+    "control": ("expected", "source"),
+    "duplicate": ("bottle", "dilution"),
+    "spike": ("bottle", "dilution", "spike"),
+}
 STAGES = ("planned", "heating", "cooling", "reading", "calculated", "closed", "failed")
 
 
@@ -67,16 +74,29 @@ def _wrong_tubes(tubes: list[Body]) -> dict[str, list[str]]:
     for index, tube in enumerate(tubes):
         if positions.count(tube["position"]) > 1:
             wrong[f"tubes.{index}.position"] = ["Two tubes cannot stand in one position."]
-        for name in {"sample": ("bottle", "dilution"), "verification": ("expected",)}.get(tube["role"], ()):
+        for name in NEEDS.get(tube["role"], ()):
             if tube.get(name) is None:
                 wrong[f"tubes.{index}.{name}"] = [f"A {tube['role']} tube needs it."]
+    own = {tube.get("bottle") for tube in tubes if tube["role"] == "sample"}
+    for index, tube in enumerate(tubes):
+        if tube["role"] in controls.EXTRA and tube.get("bottle") not in own:
+            wrong[f"tubes.{index}.bottle"] = [f"A {tube['role']} needs its sample in the same rack."]
     return wrong
+
+
+def _missing_controls(body: Body) -> dict[str, list[str]]:
+    """Return the controls that are neither in a rack with samples nor left away with a reason."""
+    there = {tube["role"] for tube in body["tubes"]}
+    left = {"control", *controls.EXTRA} - there - {one["role"] for one in body["without"]}
+    if "sample" not in there or not left:
+        return {}
+    return {"without": [f"No {role} stands in the rack: say why." for role in sorted(left)]}
 
 
 def _check_plan(change: Change, body: Body) -> None:
     for name, type_ in (("recipe", "recipe"), ("block", "instrument"), ("container", "container")):
         change.need(type_, body[name])
-    wrong = _wrong_tubes(body["tubes"])
+    wrong = _wrong_tubes(body["tubes"]) | _missing_controls(body)
     if curve := wrong_curve(change, body):
         wrong["calibration"] = curve
     if change.need("container", body["container"])["state"] != "in use":
@@ -88,7 +108,7 @@ def _check_plan(change: Change, body: Body) -> None:
 
 
 def _new_tube(tube: Body) -> Body:
-    empty = {"bottle": None, "expected": None, "dilution": None}
+    empty = {"bottle": None, "expected": None, "source": None, "dilution": None, "spike": None}
     read = {"absorbance": None, "colour": None, "remaining_oxidant": None, "excluded": None}
     return empty | tube | read | {"in_tube": None, "share": None, "readings": []}
 
@@ -113,6 +133,9 @@ def run_planned(change: Change) -> None:
         "problem": None,
         "waste": None,
         "bracketing": None,
+        "checks": [],
+        "experience": None,
+        "fired": [],
         "closed": None,
         "planned_by": change.name_of(change.entry.by),
         "planned_at": change.entry.at,
@@ -180,6 +203,17 @@ def heating_ended(change: Change, run: Body) -> None:
     run["state"] = "cooling" if change.body["complete"] else "failed"
 
 
+def _belongs(change: Change, run: Body) -> None:
+    """Refuse a first reading that the run's curve does not serve; the number stays with the held entry."""
+    if found := unfit(change, run):
+        raise Refused(
+            "wrong_curve",
+            f"This curve does not serve this reading: {'; '.join(found)}. The reading is kept, but no result "
+            "follows from it: plan these bottles again with a curve that holds.",
+            {"calibration": found},
+        )
+
+
 @handles("tube.read")
 @_on_run
 def tube_read(change: Change, run: Body) -> None:
@@ -187,6 +221,8 @@ def tube_read(change: Change, run: Body) -> None:
     _in_state(run, "cooling", "reading", "calculated")
     _open_gates(change, run, "before reading")
     tube = _tube(run, change.body["position"])
+    if tube["absorbance"] is None and not change.replayed:
+        _belongs(change, run)
     if tube["absorbance"] is not None and not change.body.get("reason", "").strip():
         raise Refused(
             "reason_needed",
@@ -234,23 +270,19 @@ def readings_finished(change: Change, run: Body) -> None:
         )
 
 
-def questions(answer: Body) -> list[dict[str, Any]]:
-    """Return what a person must decide before the run can be closed."""
+def _questions(body: Body) -> list[dict[str, Any]]:
+    """Return what must be decided; answers of before the checks had words are read from the sum."""
+    if "checks" in body:
+        return controls.questions(body)
+    answer = body["answer"]
     found = [
         {"what": one["status"], "subject": one["sample"]}
         for one in answer["samples"]
         if one["status"] in ("over", "disagree")
     ]
-    checks = answer["checks"]
-    for index, one in enumerate(checks["verifications"]):
+    for index, one in enumerate(answer["checks"]["verifications"]):
         if not one["ok"]:
             found.append({"what": "verification", "subject": f"{index + 1}: {one['expected']:g} mg/L"})
-    found += [
-        {"what": "duplicate", "subject": " and ".join(one["samples"])}
-        for one in checks["duplicates"]
-        if one["ok"] is False
-    ]
-    found += [{"what": "spike", "subject": one["spiked"]} for one in checks["spikes"] if one["ok"] is False]
     return found
 
 
@@ -265,10 +297,13 @@ def run_calculated(change: Change) -> None:
         "state": "calculated",
         "answer": change.body["answer"],
         "input": change.body["input"],
-        "questions": questions(change.body["answer"]),
+        "questions": _questions(change.body),
         "problem": None,
         "waste": change.body["waste"],
         "bracketing": change.body.get("bracketing"),
+        "checks": change.body.get("checks", []),
+        "experience": change.body.get("experience"),
+        "fired": [],
     }
     change.update("run", change.entry.about, run)
     for result in change.body["results"]:
