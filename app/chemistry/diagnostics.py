@@ -232,7 +232,8 @@ def _scatter(curve: Curve, standards: Sequence[Standard]) -> list[Finding]:
 
 
 def _told(test: FTest) -> str:
-    return f"F {test.f:.3g}, p {'under 0.001' if test.p < 0.001 else f'{test.p:.3f}'}"
+    f = f"{test.f:.3g}" if test.f < 1000 else "over 1000"
+    return f"F {f}, p {'under 0.001' if test.p < 0.001 else f'{test.p:.3f}'}"
 
 
 def _bend(curve: Curve) -> list[Finding]:

@@ -19,7 +19,7 @@ class Hold:
     ----------
     code : str
         ``unreadable``, ``invalid``, ``not_permitted``, ``id_conflict``,
-        ``device_fork``, ``unknown_kind``, ``newer_version`` or a reason of the
+        ``device_fork``, ``unknown_kind``, ``newer_version``, ``from_file`` or a reason of the
         kind's handler.
     message : str
         What happened and what to do, in words.

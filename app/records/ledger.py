@@ -68,11 +68,18 @@ class Ledger:
             yield writing
             writing.react()
 
-    def push(self, texts: Sequence[str], carrier: str, device: str, incarnation: str) -> list[Answer]:
-        """Take the entries of a device, in their order; each is answered."""
+    def push(
+        self,
+        texts: Sequence[str],
+        carrier: str,
+        device: str,
+        incarnation: str,
+        hold: Hold | None = None,
+    ) -> list[Answer]:
+        """Take the entries of a device, in their order; each is answered. With ``hold`` none is in force."""
         with self.transaction() as writing:
             return [
-                writing.take(text.encode("utf-8", "surrogatepass"), carrier, device, incarnation)
+                writing.take(text.encode("utf-8", "surrogatepass"), carrier, device, incarnation, hold)
                 for text in texts
             ]
 
@@ -122,18 +129,21 @@ class Writing:
         """Return the present in UTC, as entries carry it."""
         return self.now().astimezone(UTC).isoformat(timespec="milliseconds")
 
-    def take(self, raw: bytes, carrier: str, device: str, incarnation: str) -> Answer:
+    def take(
+        self, raw: bytes, carrier: str, device: str, incarnation: str, hold: Hold | None = None
+    ) -> Answer:
         """Take one entry of a device: stored, duplicate or held, never dropped."""
         try:
-            entry, hold = parse(raw), None
+            entry, unread = parse(raw), None
         except InputError as error:
             entry = append.unreadable(raw, device, incarnation, carrier)
-            hold = Hold("unreadable", error.message, error.fields)
+            unread = Hold("unreadable", error.message, error.fields)
         before = append.known(self.connection, entry)
         if before:
             position, held = before
             return Answer(entry.id, "duplicate", position, held)
-        hold = hold or append.collision(self.connection, entry) or self._objection(entry)
+        objection = unread or append.collision(self.connection, entry) or self._objection(entry)
+        hold = objection or hold
         hold = self._enter(entry, carrier, hold)
         position = self.head.position
         self.react(reactions.AT_ONCE)

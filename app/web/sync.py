@@ -15,7 +15,7 @@ from marshmallow import fields, validate
 
 from app import __version__
 from app.errors import WeirbookError
-from app.journal.append import contiguous
+from app.journal.append import Hold, contiguous
 from app.journal.backup import sealed
 from app.journal.entry import digest
 from app.journal.fields import Id
@@ -60,6 +60,12 @@ class PushSchema(Body):
     entries = fields.List(fields.String(), required=True, validate=validate.Length(max=200))
 
 
+class TabletFileSchema(Body):
+    """The entries of a tablet that cannot send them itself, each as the text that the tablet made."""
+
+    entries = fields.List(fields.String(), required=True, validate=validate.Length(min=1, max=5000))
+
+
 class AnswerSchema(Body):
     """What became of one entry."""
 
@@ -81,6 +87,13 @@ class PushedSchema(Body):
     digest = fields.String()
     answers = fields.List(fields.Nested(AnswerSchema))
     expect_n = fields.Integer()
+
+
+class TakenInSchema(Body):
+    """What became of a tablet's file."""
+
+    weirbook = fields.String()
+    answers = fields.List(fields.Nested(AnswerSchema))
 
 
 class PullSchema(Body):
@@ -160,3 +173,22 @@ def pull(given: dict[str, Any]) -> dict[str, Any]:
         )
     found = page(context().store.read(), given["after"], given["limit"])
     return _common() | {"records": found.records, "next": found.next, "more": found.more}
+
+
+FILE_HOLD = Hold(
+    "from_file",
+    "It came in a file saved from a tablet, not from the tablet; a coordinator decides entry by entry.",
+)
+
+
+@blueprint.route("/tablet-file", methods=["POST"])
+@need("administrator")
+@blueprint.arguments(TabletFileSchema)
+@blueprint.response(200, TakenInSchema)
+def tablet_file(given: dict[str, Any]) -> dict[str, Any]:
+    """Take in what a tablet saved as a file: author and bytes stay, who brings it carries, all is held."""
+    who = person()
+    answers = context().ledger.push(
+        given["entries"], who.id if who else "", "tablet-file", "tablet-file", FILE_HOLD
+    )
+    return {"weirbook": __version__, "answers": [answer.body() for answer in answers]}

@@ -39,7 +39,7 @@ export function CurveRow({ curve }) {
 const share = (value) => (value === null || value === undefined ? "–" : `${plain(value, 1)} %`);
 
 function Numbers({ f }) {
-  const test = (found) => (found ? `F ${found.f.toPrecision(3)}, p ${found.p < 0.001 ? "< 0.001" : found.p.toFixed(3)}` : "–");
+  const test = (found) => (found ? `F ${found.f < 1000 ? Number(found.f.toPrecision(3)) : "over 1000"}, p ${found.p < 0.001 ? "< 0.001" : found.p.toFixed(3)}` : "–");
   return html`<dl class="facts"><dt>Coefficients</dt><dd>${f.coefficients.map((b, i) => `b${i} ${b.toPrecision(5)} ± ${f.standard_errors[i].toPrecision(2)}`).join("; ")}</dd>
     <dt>Residual scatter</dt><dd>${(f.residual_sd * 1000).toFixed(2)} mAU, ${f.dof} degrees of freedom</dd><dt>Relative standard error</dt><dd>${share(f.relative_standard_error_percent)}</dd>
     <dt>Lack of fit</dt><dd>${test(f.lack_of_fit)}</dd><dt>Line or parabola (Mandel)</dt><dd>${test(f.mandel)}</dd><dt>R²</dt><dd>${f.r_squared.toFixed(6)}; by itself it proves nothing</dd></dl>`;
@@ -47,10 +47,10 @@ function Numbers({ f }) {
 
 function Levels({ f }) {
   const leverage = new Map((f.residuals ?? []).map((row) => [row.cod, row.leverage]));
-  return html`<details><summary>Every standard, read back</summary><table><thead><tr><th>COD</th><th>AU</th><th>found</th><th>recovery</th><th>leverage of one reading</th></tr></thead><tbody>${f.standards.map((row, i) => {
+  return html`<details><summary>Every standard, read back</summary><p class="soft small">Recovery in %; lever: the leverage of one reading.</p><table><thead><tr><th>COD</th><th>AU</th><th>found</th><th>recovery</th><th>lever</th></tr></thead><tbody>${f.standards.map((row, i) => {
     const off = row.recovery_percent !== null && Math.abs(row.recovery_percent - 100) > 10;
     const weight = leverage.get(row.cod);
-    return html`<tr key=${i}><td class="right">${plain(row.cod)}</td><td class="right">${row.absorbance.toFixed(4)}</td><td class="right">${plain(row.back_calculated, 1)}</td><td class="right ${off ? "above" : ""}">${off ? "▲ " : ""}${share(row.recovery_percent)}</td><td class="right">${weight === undefined ? "–" : weight.toFixed(2)}</td></tr>`;
+    return html`<tr key=${i}><td class="right">${plain(row.cod)}</td><td class="right">${row.absorbance.toFixed(4)}</td><td class="right">${plain(row.back_calculated, 1)}</td><td class="right ${off ? "above" : ""}">${off ? "▲" : ""}${plain(row.recovery_percent, 1)}</td><td class="right">${weight === undefined ? "–" : weight.toFixed(2)}</td></tr>`;
   })}</tbody></table></details>`;
 }
 

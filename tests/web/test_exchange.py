@@ -172,3 +172,20 @@ def test_typed_texts_come_back_as_they_were_typed(browser: Browser, device: Devi
         json.loads(body["text"])["body"]["field"] for (kind, _), body in records.items() if kind == "held"
     ]
     assert sorted(field["turbidity_ntu"]["text"] for field in kept + held) == sorted(typed)
+
+
+def test_a_tablets_file_is_held_under_its_author_with_its_carrier(
+    app: Flask, browser: Browser, device: Device
+) -> None:
+    """What is brought in a file is not in force until a coordinator says so; bytes and author stay."""
+    texts = devices.setting_up(device)
+    answers = browser.ask("POST", "/api/tablet-file", {"entries": texts}).get_json()["answers"]
+    assert {(one["result"], one["code"]) for one in answers} == {("held", "from_file")}
+    held = [body for (kind, _), body in browser.records().items() if kind == "held"]
+    assert sorted(one["text"] for one in held) == sorted(texts)
+    assert {(one["by"], one["carrier"]) for one in held} == {(device.by, device.by)}
+    assert not any(kind == "point" for kind, _ in browser.records())
+    again = browser.ask("POST", "/api/tablet-file", {"entries": texts}).get_json()["answers"]
+    assert {one["result"] for one in again} == {"duplicate"}
+    stranger = Browser(app).ask("POST", "/api/tablet-file", {"entries": texts})
+    assert stranger.status_code == 401

@@ -40,6 +40,7 @@ NEEDS = {
     "papers.waste_label": set(ROLES),
     "sync.push": set(ROLES),
     "sync.pull": set(ROLES),
+    "sync.tablet_file": {"administrator"},
 }
 REQUESTS = {
     "programme.add_person": ("POST", "/api/people"),
@@ -55,6 +56,7 @@ REQUESTS = {
     "store_papers.reagent_label": ("GET", "/api/papers/lot/none.pdf"),
     "sync.push": ("POST", "/api/push"),
     "sync.pull": ("GET", "/api/pull"),
+    "sync.tablet_file": ("POST", "/api/tablet-file"),
 }
 
 
