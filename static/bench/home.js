@@ -1,8 +1,9 @@
 // What waits at the bench: runs first, then bottles by the time they have left.
 
 import { html } from "../parts/html.js";
-import { clock, day, dilution, left } from "../parts/format.js";
+import { clock, day, dilution } from "../parts/format.js";
 import { Empty, Frame, Where } from "../parts/frame.js";
+import { Hold } from "../parts/hold.js";
 import { all, one, programme, useView } from "../parts/view.js";
 import { useWords } from "../parts/words.js";
 import { again } from "./again.js";
@@ -48,7 +49,7 @@ function BottleRow({ bottle }) {
   const to = bottle.state === "received" || bottle.again ? "/bench/plan" : `/bench/receive/${bottle.code}`;
   return html`<a href=${to}><strong>${bottle.code}</strong>
     <span class="under"><span>${bottle.place ? `${bottle.place.discharger_name}, ${bottle.place.name}` : "its sample has not arrived yet"}</span><span>${bottle.again ? html`<strong>▲ ${bottle.again.why}</strong>` : bottle.state}</span></span>
-    ${bottle.sampled && html`<span class="under"><span>${dilutionWords(bottle)}</span><span>analysis to start: ${left(bottle.sampled.hold_until)}</span></span>`}</a>`;
+    ${bottle.sampled && html`<span class="under"><span>${dilutionWords(bottle)}</span><${Hold} sample=${bottle.sampled} /></span>`}</a>`;
 }
 
 const SOON_MS = 14 * 86400000;

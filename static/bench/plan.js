@@ -4,6 +4,7 @@ import { html } from "../parts/html.js";
 import { Check, Select, TextField, useForm, useSaving } from "../parts/fields.js";
 import { day, dilution, plain } from "../parts/format.js";
 import { Empty, Frame, Problem, go, say } from "../parts/frame.js";
+import { Hold } from "../parts/hold.js";
 import { newId, state } from "../parts/journal.js";
 import { read } from "../parts/measured.js";
 import { all, one, programme, useView } from "../parts/view.js";
@@ -68,6 +69,7 @@ function Bottle({ bottle, v, set, factors, recipe }) {
   return html`<div class="item stack">
     <${Check} label=${html`<strong>${bottle.code}</strong> ${name} (${bottle.again?.why ?? bottle.state})`} checked=${picked}
       onChange=${(on) => set("picked", on ? [...v.picked, bottle.code] : v.picked.filter((code) => code !== bottle.code))} />
+    <${Hold} sample=${bottle.sampled} />
     ${picked && html`<${Select} label="Dilution of ${bottle.code}" value=${String(factor)} options=${options} onChoose=${(text) => set("factors", { ...v.factors, [bottle.code]: Number(text) })}
       hint=${`${problem ? `▲ ${problem} ` : ""}${steps?.length ? `${stepWords(steps)}. ` : ""}${bottle.sampled?.plan ? `At the manhole: ${dilution(bottle.sampled.plan.dilution_factor)}, ${bottle.sampled.plan.reason}` : "Nothing was planned at the manhole."}`} />
       <${TextField} label="Sample left in ${bottle.code}, mL" inputmode="decimal" value=${v.volumes[bottle.code] ?? ""} onInput=${(text) => set("volumes", { ...v.volumes, [bottle.code]: text })} hint="Empty: not judged." />

@@ -4,8 +4,9 @@ import { html } from "../parts/html.js";
 import { readCode } from "../parts/bottle_code.js";
 import { CodeField } from "../parts/code_field.js";
 import { Check, Choice, LongField, NumberField, TextField, measuredOf, useForm, useSaving } from "../parts/fields.js";
-import { dayAndTime, left } from "../parts/format.js";
+import { dayAndTime } from "../parts/format.js";
 import { Frame, Problem, go, say } from "../parts/frame.js";
+import { Hold } from "../parts/hold.js";
 import { state } from "../parts/journal.js";
 import { read } from "../parts/measured.js";
 import { one, programme, useView } from "../parts/view.js";
@@ -63,7 +64,7 @@ export function Receive({ given }) {
     <form class="stack" onSubmit=${save} novalidate>
       <section class="card stack"><${CodeField} label="Bottle" value=${v.code} onInput=${(text) => set("code", text)}
           wrong=${v.code.length >= 6 && wrong ? wrong : ""} hint=${code ? `Read as ${code}.` : "The six characters on its label."} />
-        ${code && (point ? html`<p><strong>${point.discharger_name}, ${point.name}</strong><br />taken ${dayAndTime(sample.collected_at, zone)} by ${sample.by_name}<br />analysis to start: ${left(sample.hold_until)}</p>`
+        ${code && (point ? html`<p><strong>${point.discharger_name}, ${point.name}</strong><br />taken ${dayAndTime(sample.collected_at, zone)} by ${sample.by_name}<br /><${Hold} sample=${sample} /></p>`
           : html`<p class="soft">The entry of this sample has not arrived yet. Receive the bottle all the same: they meet when it does.</p>`)}</section>
       <section class="card stack">
         <${NumberField} label="Temperature on receipt" unit="Cel" value=${v.temperature} onInput=${(text) => set("temperature", text)} />

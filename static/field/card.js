@@ -4,6 +4,7 @@ import { html, useState } from "../parts/html.js";
 import { Choice, NumberField, useForm } from "../parts/fields.js";
 import { ago, day, dayAndTime, plain, reported } from "../parts/format.js";
 import { Empty, Where, go } from "../parts/frame.js";
+import { Hold } from "../parts/hold.js";
 import { shown } from "../parts/units.js";
 import { all, one, programme, useView } from "../parts/view.js";
 import { useWords } from "../parts/words.js";
@@ -58,7 +59,7 @@ function Past({ point }) {
   if (!recent.length && !taken.length) return html`<p class="soft">No sample was taken here yet.</p>`;
   const zone = programme()?.zone;
   return html`<ul class="plain past">
-    ${[...taken].reverse().map((sample) => html`<li key=${sample.id} class="row spread"><span>${day(sample.collected_at, zone)}, bottle <strong>${sample.bottle}</strong>, ${sample.state}</span><${Where} about=${sample.id} /></li>`)}
+    ${[...taken].reverse().map((sample) => html`<li key=${sample.id} class="row spread"><span>${day(sample.collected_at, zone)}, bottle <strong>${sample.bottle}</strong>, ${sample.state} <${Hold} sample=${sample} /></span><${Where} about=${sample.id} /></li>`)}
     ${[...recent].reverse().map((result) => html`<li key=${result.at} class="row spread"><span class="soft">${day(result.at, zone)}</span><span>${reported(result.shown)} mg/L</span></li>`)}
   </ul>`;
 }

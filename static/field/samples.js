@@ -1,20 +1,12 @@
 // The samples of this person: where each one is, and which bottles are still in hand.
 
 import { html } from "../parts/html.js";
-import { dayAndTime, dilution, left } from "../parts/format.js";
+import { dayAndTime, dilution } from "../parts/format.js";
 import { Empty, Where } from "../parts/frame.js";
+import { Hold } from "../parts/hold.js";
 import { usePerson } from "../parts/person.js";
 import { all, one, programme, useView } from "../parts/view.js";
 import { cardOf, nameOf } from "./point.js";
-
-const DAY_MS = 86400000;
-const SHORT_DAYS = 7;
-
-function Hold({ sample }) {
-  if (!sample.hold_until || !["taken", "handed over", "received"].includes(sample.state)) return null;
-  const short = new Date(sample.hold_until).getTime() - Date.now() < SHORT_DAYS * DAY_MS;
-  return html`<span class=${short ? "above" : "soft"}>${short ? "▲ " : ""}holding time: ${left(sample.hold_until)}</span>`;
-}
 
 function Row({ sample }) {
   const point = one("point", sample.point);

@@ -4,6 +4,7 @@ import { html, useState } from "../parts/html.js";
 import { Check, Choice, LongField, TextField, useForm, useSaving } from "../parts/fields.js";
 import { clock, plain } from "../parts/format.js";
 import { Empty, Problem, Where, go, say } from "../parts/frame.js";
+import { Hold } from "../parts/hold.js";
 import { newId, state, withOffset } from "../parts/journal.js";
 import { Sign, Signed, UNSIGNED, signatureOf } from "../parts/sign.js";
 import { all, one, programme, useView } from "../parts/view.js";
@@ -62,7 +63,7 @@ export function Arrive({ id, stop, round }) {
 function SampleList({ visit }) {
   const samples = all("sample", visit.point).filter((sample) => sample.visit === visit.id);
   if (!samples.length) return null;
-  return html`<ul class="plain past">${samples.map((sample) => html`<li key=${sample.id} class="row spread"><span><strong class="code">${sample.bottle}</strong> ${sample.purpose === "sample" ? sample.sample_kind : sample.purpose}${sample.split ? `; split, receipt ${sample.split.receipt}` : ""}</span>
+  return html`<ul class="plain past">${samples.map((sample) => html`<li key=${sample.id} class="row spread"><span><strong class="code">${sample.bottle}</strong> ${sample.purpose === "sample" ? sample.sample_kind : sample.purpose}${sample.split ? `; split, receipt ${sample.split.receipt}` : ""} <${Hold} sample=${sample} /></span>
       <span class="row">${!sample.split && html`<a class="button" href="/field/split/${sample.id}">Split</a>`}<${Where} about=${sample.id} /></span></li>`)}</ul>`;
 }
 

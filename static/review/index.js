@@ -1,6 +1,7 @@
 // The Review place: results beside their limits, certificates, points, people, held entries.
 
 import { html } from "../parts/html.js";
+import { Devices } from "./devices.js";
 import { Held } from "./held.js";
 import { People } from "./people.js";
 import { PointReview } from "./point.js";
@@ -21,6 +22,7 @@ export function review([what, id, more]) {
   if (what === "register") return html`<${Register} />`;
   if (what === "people") return html`<${People} />`;
   if (what === "trust") return html`<${Trust} id=${id} />`;
+  if (what === "devices") return html`<${Devices} />`;
   if (what === "held") return html`<${Held} />`;
   return html`<${Overview} />`;
 }

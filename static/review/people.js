@@ -33,5 +33,6 @@ export function People() {
   return html`<${Frame} place="review" title="People"><div class="stack">
     <section class="card"><table><thead><tr><th>Name</th><th>Roles</th></tr></thead><tbody>
       ${people.map((person) => html`<tr key=${person.id}><td>${person.name}${person.active ? "" : " (no longer)"}</td><td>${person.roles.join(", ")}</td></tr>`)}</tbody></table></section>
+    <p><a href="/review/devices">Devices that sent entries</a></p>
     <${Add} /></div><//>`;
 }

@@ -52,6 +52,7 @@ SCREENS = (
     RESULT,
     "/review/register",
     "/review/people",
+    "/review/devices",
     "/review/held",
     "/review/trust",
     "/review/trust/outlet-b",
