@@ -294,7 +294,7 @@ def whole_path(person: str, code: str = CODES[0], run: str = "run-1") -> list[st
 
 
 def visiting(person: str) -> list[str]:
-    """Return a round with one stop, its visit going on after a gas alarm, a flow and a split sample."""
+    """Return a round with one stop, its visit going on after a gas alarm that was confirmed, and a flow."""
     d = Device(person)
     at = "2031-05-29T08:00:00-06:00"
     stop = {"id": "stop-1", "point": "outlet-b", "sample_kind": "grab", "bottles": 1, "note": ""}
@@ -320,5 +320,6 @@ def visiting(person: str) -> list[str]:
         d.make("visit.begun", "visit-1", begun | present | {"production": "", "weather": "dry"}),
         d.make("gas.tested", "visit-1", gas | {"h2s_ppm": "12"}),
         d.make("gas.tested", "visit-1", gas | {"h2s_ppm": "1"}),
+        d.make("gas.confirmed", "visit-1", {"note": "aired for five minutes"}),
         d.make("flow.measured", "visit-1", flow),
     ]
