@@ -5,6 +5,8 @@ STORE ?= data
 DEMO_STORE ?= data-demo
 PORT ?= 8700
 ARGS ?=
+# Tests run side by side; each browser test has a server of its own.
+WORKERS ?= 2
 
 # The first Python that fits; PYTHON=/path/to/python overrides the search.
 FITS := import sys, venv, ensurepip; sys.exit(not (3, 11) <= sys.version_info < (3, 15))
@@ -28,7 +30,7 @@ demo: install
 	@exec $(PY) -m app serve --example --store $(DEMO_STORE) --port $(PORT)
 
 test: install-test
-	$(PY) -m pytest $(ARGS)
+	$(PY) -m pytest -n $(WORKERS) --dist worksteal $(ARGS)
 
 lint: install-lint
 	$(PY) -m ruff check .
