@@ -72,9 +72,22 @@ function followLinks() {
   });
 }
 
+const TRIES = 3;
+const TRY_AGAIN_MS = 3000;
+
+/** A first install that fails (one file did not come) leaves nothing behind: it is tried again while the page is open. */
+async function install(tries = TRIES) {
+  const registration = await navigator.serviceWorker.register("/sw.js", { updateViaCache: "none" });
+  const worker = registration.installing;
+  worker?.addEventListener("statechange", () => {
+    if (worker.state === "redundant" && !registration.active && tries > 0) setTimeout(() => { install(tries - 1).catch(() => {}); }, TRY_AGAIN_MS);
+  });
+  return registration;
+}
+
 async function registerWorker() {
   if (!("serviceWorker" in navigator)) return;
-  const registration = await navigator.serviceWorker.register("/sw.js", { updateViaCache: "none" });
+  const registration = await install();
   offer(registration.waiting);
   registration.addEventListener("updatefound", () => {
     const worker = registration.installing;
