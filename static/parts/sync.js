@@ -113,12 +113,9 @@ async function sendAgainWhatIsMissing(state) {
   const { expect_n: next } = await push(state, device, []);
   if (next > last.n + 1) await becomeAnother();
   let lost = false;
-  const again_ = (row) => {
-    const { n, incarnation } = JSON.parse(row.text);
-    return incarnation === device.incarnation ? n >= next : row.position > state.sealed;
-  };
   await changeOutbox((row) => {
-    if ((row.state !== "server" && row.state !== "held") || !again_(row)) return null;
+    const { n, incarnation } = JSON.parse(row.text);
+    if ((row.state !== "server" && row.state !== "held") || incarnation !== device.incarnation || n < next) return null;
     lost = true;
     return { ...row, state: "tablet", position: null, told: null };
   });
@@ -127,9 +124,17 @@ async function sendAgainWhatIsMissing(state) {
 
 const OTHER = "It was made for another programme than the one this server runs now. It is kept on this tablet only.";
 
-/** The server is in another state than the one this device knew: read all again, then see what it lacks. */
-async function beginWith(state) {
+const offered = (row) => (row.state === "server" || row.state === "held" ? { ...row, state: "tablet", position: null, told: null } : null);
+
+/**
+ * The server is in another state than the one this device knew: read all again, and after a restore offer every entry again.
+ * Its positions are given anew from the copy on, so none that this device knew says anything any more; the same bytes
+ * answer as duplicates.
+ */
+async function beginWith(state, epoch) {
   const before = programme()?.id;
+  // Before the new epoch is kept: a device that stops in between offers them all the same.
+  if (epoch.split(".")[0] !== state.epoch.split(".")[0]) await changeOutbox(offered);
   await pullAll(state.epoch);
   const now = programme()?.id;
   if (before && now && before !== now) {
@@ -182,7 +187,7 @@ async function exchange() {
   }
   sealedUpTo(state.sealed ?? 0);
   const cursor = await getMeta("cursor");
-  if (cursor && cursor.epoch !== state.epoch) await beginWith(state);
+  if (cursor && cursor.epoch !== state.epoch) await beginWith(state, cursor.epoch);
   if (!compared) await sendAgainWhatIsMissing(state);
   compared = true;
   await pushAll(state);

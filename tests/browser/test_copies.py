@@ -3,14 +3,18 @@
 from __future__ import annotations
 
 import json
+import shutil
+import subprocess
+import sys
 import time
 from collections.abc import Callable
+from pathlib import Path
 from typing import Any
 
 from playwright.sync_api import BrowserContext, Page, expect
 
 from tests.browser import chromium, tablet
-from tests.browser.server import Server
+from tests.browser.server import ROOT, Server
 
 _META = """async (given) => {
   const { begin } = await import("/static/parts/db.js");
@@ -106,3 +110,39 @@ def test_of_two_copies_both_streams_are_kept_and_one_takes_another_name(
     )
     assert _rows(copy)[-1][0] == 1
     assert _firms(first) == {"First Firm", "Of the First", "Afterwards"}
+
+
+def _care(*command: str) -> None:
+    subprocess.run([sys.executable, "-m", "app", *command], check=True, capture_output=True, cwd=ROOT)
+
+
+def test_after_a_restore_entries_of_every_name_of_a_tablet_are_offered_again(
+    server: Server, context_factory: Callable[..., BrowserContext], tmp_path: Path
+) -> None:
+    """A position that was given twice, before and after the restore, never passes for the same entry."""
+    context = context_factory(**chromium.PHONE, base_url=server.url)
+    page = context.new_page()
+    tablet.begin(page, server.url)
+    tablet.settled(page)
+    _care("backup", "--store", str(server.store), str(tmp_path / "copy.db"))
+    _firm(page, "After the Copy")
+    tablet.settled(page)
+    device, last = _meta(page)
+    renamed = device | {"incarnation": "another-name", "before": [device["incarnation"]]}
+    _meta(page, [renamed, last | {"n": 0, "row": last.get("row", last["n"]), "digest": None}])
+    server.kill()
+    shutil.rmtree(server.store)
+    _care("restore", "--store", str(server.store), str(tmp_path / "copy.db"))
+    server.start()
+    other = context_factory(**chromium.PHONE, base_url=server.url).new_page()
+    tablet.sign_in(other, server.url)
+    for i in range(3):
+        _firm(other, f"Of the Other {i}")
+    tablet.settled(other)
+    _care("backup", "--store", str(server.store), str(tmp_path / "later.db"))
+    assert "After the Copy" not in _firms(other.context)
+    page.goto("/waiting")
+    expect(page.get_by_role("listitem").filter(has_text="After the Copy")).to_contain_text(
+        "on the server", timeout=20000
+    )
+    assert "After the Copy" in _firms(context)
