@@ -130,6 +130,7 @@ def test_after_a_restore_entries_of_every_name_of_a_tablet_are_offered_again(
     device, last = _meta(page)
     renamed = device | {"incarnation": "another-name", "before": [device["incarnation"]]}
     _meta(page, [renamed, last | {"n": 0, "row": last.get("row", last["n"]), "digest": None}])
+    context.set_offline(True)
     server.kill()
     shutil.rmtree(server.store)
     _care("restore", "--store", str(server.store), str(tmp_path / "copy.db"))
@@ -141,6 +142,7 @@ def test_after_a_restore_entries_of_every_name_of_a_tablet_are_offered_again(
     tablet.settled(other)
     _care("backup", "--store", str(server.store), str(tmp_path / "later.db"))
     assert "After the Copy" not in _firms(other.context)
+    context.set_offline(False)
     page.goto("/waiting")
     expect(page.get_by_role("listitem").filter(has_text="After the Copy")).to_contain_text(
         "on the server", timeout=20000
