@@ -64,7 +64,11 @@ export function AddCalibration() {
     go(`/bench/curve/${id}`);
   });
   if (!v) return html`<${Frame} place="bench" title="Enter a calibration"><//>`;
-  const change = (i, name) => (event) => set("rows", rows.map((one_, k) => (k === i ? { ...one_, [name]: event.target.value } : one_)));
+  const change = (i, name) => (event) => {
+    const text = event.target.value;
+    // Two fields may change before the next drawing: each change begins with what the form holds by then.
+    set("rows", (held) => (held.length ? held : levelsOf(recipe).map(row)).map((one_, k) => (k === i ? { ...one_, [name]: text } : one_)));
+  };
   const choose = (id) => {
     set("recipe", id);
     set("lot", "");

@@ -143,7 +143,7 @@ export function useForm(key, initial) {
     };
   }, [key]);
   const set = (name, value) => setValues((before) => {
-    const after = { ...before, [name]: value };
+    const after = { ...before, [name]: typeof value === "function" ? value(before[name]) : value };
     noteTyped(key, after);
     putDraft(key, after).catch(() => {});
     return after;
