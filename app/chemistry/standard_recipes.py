@@ -126,5 +126,10 @@ def in_tube(recipe: Recipe, tube: str) -> Recipe:
     Recipe
         The same strengths; capacity and limits stay, metals scale.
     """
-    sample_ml, digestion_ml, acid_ml = TUBES_ML[tube]
-    return replace(recipe, sample_ml=sample_ml, digestion_solution_ml=digestion_ml, acid_reagent_ml=acid_ml)
+    scale = TUBES_ML[tube][0] / recipe.sample_ml
+    return replace(
+        recipe,
+        sample_ml=recipe.sample_ml * scale,
+        digestion_solution_ml=recipe.digestion_solution_ml * scale,
+        acid_reagent_ml=recipe.acid_reagent_ml * scale,
+    )

@@ -115,6 +115,7 @@ function numbersOf(v) {
 function problemsOf(v) {
   const missing = [["name", "name"], ["source", "source"], ...RECIPE_FIELDS].filter(([name]) => !v[name].trim()).map(([, label]) => label.toLowerCase());
   const wrong = [...RECIPE_FIELDS, ["final_ml", "final volume"]].filter(([name]) => v[name].trim() && read(v[name]).problem).map(([, label]) => label);
+  if (!(value(v, "final_ml") > 0)) wrong.push("the volume that the digestion solution is made up to");
   return [missing.length && `Still missing: ${missing.join(", ")}.`, wrong.length && `Not a number: ${wrong.join(", ")}.`].filter(Boolean).join(" ");
 }
 
@@ -148,7 +149,12 @@ export function AddRecipe() {
   };
   const fit = (name) => {
     set("tube", name);
-    (words.tubes[name] ?? []).forEach((ml, i) => set(["sample_ml", "digestion_solution_ml", "acid_reagent_ml"][i], String(ml)));
+    const tube = words.tubes[name];
+    if (!tube) return;
+    const volumes = ["sample_ml", "digestion_solution_ml", "acid_reagent_ml"];
+    const own = volumes.map((field) => value(v, field));
+    const kept = own.every((ml) => ml > 0);
+    volumes.forEach((field, i) => set(field, String(kept ? Number(((own[i] * tube[0]) / own[0]).toPrecision(12)) : tube[i])));
   };
   const line = (name, label, hint) => html`<${TextField} key=${name} label=${label} inputmode="decimal" value=${v[name]} onInput=${(text) => set(name, text)} hint=${hint} />`;
   const labels = new Map(RECIPE_FIELDS);
@@ -156,7 +162,7 @@ export function AddRecipe() {
     <${Select} label="Begin from a published form" value=${v.form} options=${[["", "none: type every number"], ...forms.map((form) => [form.name, form.name])]} onChoose=${take}
       hint="What the method does not state stays blank. Check the amounts against the method's own text and your lot." />
     <${TextField} label="Name" value=${v.name} onInput=${(text) => set("name", text)} /><${LongField} label="Source" value=${v.source} onInput=${(text) => set("source", text)} />
-    <section class="card stack"><h2>The tube</h2><${Select} label="Tube" value=${v.tube} options=${[["", "another one"], ...Object.keys(words?.tubes ?? {}).map((name) => [name, name])]} onChoose=${fit} hint="keeps the ratio 1 : 0.6 : 1.4 of the larger published tubes" />
+    <section class="card stack"><h2>The tube</h2><${Select} label="Tube" value=${v.tube} options=${[["", "another one"], ...Object.keys(words?.tubes ?? {}).map((name) => [name, name])]} onChoose=${fit} hint="keeps the ratios of the volumes, and so capacity and limits" />
       ${["sample_ml", "digestion_solution_ml", "acid_reagent_ml"].map((name) => line(name, labels.get(name)))}</section>
     <section class="card stack"><h2>The reagents</h2>${line("final_ml", "Digestion solution made up to, mL", "the grams below are for this volume; some methods print them for 500 mL")}
       ${PER_LITRE.map((name) => line(name, `${labels.get(name)} in that volume`))}${line("digestion_acid_ml_per_l", "Sulfuric acid in a litre of digestion solution, mL", "for the preparation sheet; may stay empty")}${line("silver_sulfate_g_per_l", labels.get("silver_sulfate_g_per_l"))}</section>

@@ -150,3 +150,12 @@ def test_common_practice() -> None:
     assert (high.response, low.response) == ("rises", "falls")
     assert round(high.oxidant_capacity) == 1000
     assert high.tube_volume_ml == 7.5
+
+
+@pytest.mark.parametrize("one", STANDARD_RECIPES, ids=lambda one: one.name)
+@pytest.mark.parametrize("tube", ["16 x 100 mm", "20 x 150 mm", "25 x 150 mm"])
+def test_another_tube_keeps_the_ratios_and_so_the_limits(one, tube):
+    """EPA 410.4, 2.2: other volumes are allowed where the molar ratios stay."""
+    mine, scaled = derive(one.recipe), derive(in_tube(one.recipe, tube))
+    assert scaled.oxidant_capacity == pytest.approx(mine.oxidant_capacity, rel=1e-12)
+    assert scaled.chloride_limit == pytest.approx(mine.chloride_limit, rel=1e-12)
