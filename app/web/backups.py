@@ -3,7 +3,9 @@
 from __future__ import annotations
 
 import logging
+import sqlite3
 import threading
+from contextlib import suppress
 from dataclasses import dataclass, field
 from datetime import UTC, datetime
 from pathlib import Path
@@ -16,6 +18,12 @@ KEPT = 30
 _PATTERN = "weirbook-*.db"
 
 log = logging.getLogger("weirbook")
+
+
+def _discard(target: Path) -> None:
+    """Remove what a failed backup left: a file that was never verified must not pass for a copy."""
+    with suppress(OSError):
+        target.unlink(missing_ok=True)
 
 
 @dataclass
@@ -49,11 +57,13 @@ class Backups:
         now = datetime.now(UTC)
         said: dict[str, Any] = {"at": now.isoformat(timespec="seconds"), "position": None, "problem": ""}
         assert self.folder is not None
+        target = self.folder / f"weirbook-{now:%Y%m%d-%H%M%S-%f}.db"
         try:
-            name = f"weirbook-{now:%Y%m%d-%H%M%S-%f}.db"
-            said["position"] = backup(self.store, self.folder / name).position
+            said["position"] = backup(self.store, target).position
             self._tidy()
-        except (WeirbookError, OSError) as error:
+        except (WeirbookError, OSError, sqlite3.Error) as error:
+            if said["position"] is None:
+                _discard(target)
             said["problem"] = f"The backup failed: {error}"
             log.error(said["problem"])
         self.last = said

@@ -85,7 +85,10 @@ def _form(one: StandardRecipe) -> dict[str, str]:
         "minutes": f"{60 * COMMON_PRACTICE_HOURS:g}",
     }
     practice["digestion_acid_ml_per_l"] = f"{one.digestion_acid_ml_per_l:g}"
-    return {"name": one.name, "source": one.source} | numbers | told | practice
+    source = one.source
+    if one.stated_chloride is not None:
+        source += f" The method itself allows at most {one.stated_chloride:g} mg/L of chloride in the sample."
+    return {"name": one.name, "source": source} | numbers | told | practice
 
 
 @blueprint.get("/healthz")

@@ -31,7 +31,7 @@ const rangeOf = (recipe) => `${plain(recipe.working_low)} to ${plain(recipe.work
 export function RecipeRow({ recipe }) {
   const warnings = recipe.derived?.warnings.length ?? 0;
   return html`<li><a href="/bench/recipe/${encodeURIComponent(recipe.id)}"><strong>${recipe.name}</strong><span class="under"><span>${rangeOf(recipe)}</span>
-    <span>${recipe.derived ? `capacity ${plain(recipe.derived.oxidant_capacity)} mg/L` : "not computed yet"}${warnings ? html` <strong class="above">▲ ${warnings} to read</strong>` : ""}</span></span></a></li>`;
+    <span>${recipe.derived ? `capacity ${plain(recipe.derived.oxidant_capacity, 1)} mg/L` : "not computed yet"}${warnings ? html` <strong class="above">▲ ${warnings} to read</strong>` : ""}</span></span></a></li>`;
 }
 
 function Facts({ recipe, d }) {

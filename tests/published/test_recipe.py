@@ -6,9 +6,12 @@ volume), done apart from this program.
 
 from __future__ import annotations
 
+from dataclasses import replace
+
 import pytest
 
 from app.chemistry.atoms import DICHROMATE
+from app.chemistry.calibration import Standard, fit
 from app.chemistry.recipe import (
     COMMON_PRACTICE_C,
     COMMON_PRACTICE_HIGH_NM,
@@ -159,3 +162,21 @@ def test_another_tube_keeps_the_ratios_and_so_the_limits(one, tube):
     mine, scaled = derive(one.recipe), derive(in_tube(one.recipe, tube))
     assert scaled.oxidant_capacity == pytest.approx(mine.oxidant_capacity, rel=1e-12)
     assert scaled.chloride_limit == pytest.approx(mine.chloride_limit, rel=1e-12)
+
+
+def test_too_little_sample_reads_as_its_share():
+    """Arithmetic: 2.0 mL pipetted instead of 2.5 mL reads (2.0/7.0)/(2.5/7.5) = 0.857 of the true value."""
+    short = replace(SM_HIGH.recipe, sample_ml=2.0)
+    share = chromium_mmol_per_l(short, 500) / chromium_mmol_per_l(SM_HIGH.recipe, 500)
+    assert share == pytest.approx(0.857, abs=0.0005)
+
+
+def test_a_slope_turns_an_absorbance_into_its_cod():
+    """Arithmetic: 0.200 AU at 3.80e-4 AU per mg/L and no intercept is 526.3 mg/L."""
+    curve = fit([Standard(float(x), (3.80e-4 * x,)) for x in (0, 100, 300, 500, 700, 900)])
+    assert curve.read([0.200]).cod == pytest.approx(526.3, abs=0.05)
+
+
+def test_an_exhausted_tube_shows_the_capacity_and_no_more():
+    """Arithmetic: the slope 3.80e-4 times the capacity, 0.380 AU, for any sample above 1000 mg/L."""
+    assert 3.80e-4 * derive(SM_HIGH.recipe).oxidant_capacity == pytest.approx(0.380, abs=0.002)

@@ -8,11 +8,14 @@ import subprocess
 import sys
 from pathlib import Path
 
+import pytest
+
 from app.journal.backup import backup, restore, sealed
 from app.journal.devices import known_devices
-from app.journal.store import Store
+from app.journal.store import Store, StoreError
 from app.records.change import find
 from app.records.ledger import Ledger
+from app.web import backups
 from app.web.backups import Backups
 from tests.records.conftest import Desk
 from tests.tools import devices
@@ -76,6 +79,21 @@ def test_the_server_makes_its_own_backups_and_tells_of_a_failure(ready: Desk, tm
     broken = Backups(ready.store.folder, tmp_path / "file", hours=1)
     assert "The backup failed" in broken.make()["problem"]
     assert broken.told() is not None
+
+
+def test_a_copy_that_failed_does_not_lie_among_the_good_ones(
+    ready: Desk, tmp_path: Path, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    def half(_: Path, target: Path) -> None:
+        target.parent.mkdir(exist_ok=True)
+        target.write_bytes(b"half a copy")
+        raise StoreError("no whole copy")
+
+    monkeypatch.setattr(backups, "backup", half)
+    said = Backups(ready.store.folder, tmp_path / "copies").make()
+    assert (said["position"], said["problem"]) == (None, "The backup failed: no whole copy")
+    assert list((tmp_path / "copies").iterdir()) == []
+    assert sealed(ready.store.read()) == 0
 
 
 def test_only_its_own_old_copies_are_removed(ready: Desk, tmp_path: Path) -> None:

@@ -8,7 +8,7 @@ from pathlib import Path
 
 from app.journal import kinds
 from app.journal.units import STATIC
-from app.web.shell import build_of, shell_files
+from app.web.shell import build_of, shell_files, words_text
 from tests.web.conftest import Browser
 
 
@@ -86,3 +86,10 @@ def test_no_script_writes_markup_or_evaluates_text() -> None:
         assert not re.search(
             r"innerHTML|insertAdjacentHTML|\beval\(|new Function|document\.write|console\.log", text
         ), path
+
+
+def test_a_methods_own_chloride_limit_stands_in_the_source_that_is_adopted() -> None:
+    """ISO 15705 states 1000 mg/L, less than its mercury(II) sulfate would mask at ten to one."""
+    sources = {one["name"]: one["source"] for one in json.loads(words_text())["recipes"]}
+    assert "at most 1000 mg/L of chloride" in sources["ISO 15705, high range"]
+    assert "of chloride" not in sources["Standard Methods 5220 D, high range"]
