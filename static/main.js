@@ -8,6 +8,7 @@ import { startSync } from "./parts/sync.js";
 import { offer } from "./parts/update.js";
 import { loadUnits } from "./parts/units.js";
 import { load } from "./parts/view.js";
+import { loadDrafts } from "./parts/fields.js";
 import { go } from "./parts/frame.js";
 import { bench } from "./bench/index.js";
 import { field } from "./field/index.js";
@@ -116,7 +117,7 @@ function sayTrouble() {
 async function begin() {
   applyComfort();
   addEventListener("weirbook-store", sayTrouble);
-  await Promise.all([loadUnits(), load(), gradeNow().catch(() => {})]);
+  await Promise.all([loadUnits(), load(), loadDrafts(), gradeNow().catch(() => {})]);
   followLinks();
   const open = location.pathname === "/emergency" || location.pathname === "/start";
   const here = await getMeta("person");

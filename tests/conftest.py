@@ -41,10 +41,11 @@ def pytest_report_header() -> str:
 
 
 def pytest_collection_modifyitems(items: list[pytest.Item]) -> None:
-    """Mark what lies in tests/browser."""
+    """Mark what lies in tests/browser; one second try is given there, and told at the end."""
     for item in items:
         if item.path.is_relative_to(BROWSER_TESTS):
             item.add_marker(pytest.mark.browser)
+            item.add_marker(pytest.mark.flaky(reruns=1))
 
 
 def pytest_runtest_setup(item: pytest.Item) -> None:
@@ -63,6 +64,11 @@ def pytest_terminal_summary(
     """Say last of all, too loudly to miss, what was not tested."""
     yield
     skipped = terminalreporter.stats.get("skipped", [])
+    again = terminalreporter.stats.get("rerun", [])
+    if again:
+        terminalreporter.section("FAILED ONCE AND WAS TRIED AGAIN", sep="!", yellow=True, bold=True)
+        for report in again:
+            terminalreporter.write_line(f"{report.nodeid}\n{report.longreprtext[-3000:]}")
     left_out = sum(WITHOUT_BROWSER in str(report.longrepr) for report in skipped)
     if left_out:
         terminalreporter.section("NOT EVERYTHING WAS TESTED", sep="!", red=True, bold=True)

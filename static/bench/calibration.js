@@ -45,9 +45,9 @@ export function AddCalibration() {
   const [v, set, forget] = useForm("add:calibration", { recipe: "", lot: "", instrument: "", model: "linear", weights: "equal", valid_until: "", rows: [] });
   const recipe = v && (one("recipe", v.recipe) ?? recipes[0]);
   const lots = useView(() => all("lot")).filter((lot) => lot.recipe === recipe?.id && lot.expires_on >= today);
-  const lot = (lots.find((one_) => one_.id === v?.lot) ?? lots[0])?.id;
-  const instrument = (photometers.find((one_) => one_.id === v?.instrument) ?? photometers[0])?.id;
-  const rows = v?.rows.length ? v.rows : levelsOf(recipe).map(row);
+  const lot = (lots.find((one_) => one_.id === v.lot) ?? lots[0])?.id;
+  const instrument = (photometers.find((one_) => one_.id === v.instrument) ?? photometers[0])?.id;
+  const rows = v.rows.length ? v.rows : levelsOf(recipe).map(row);
   const { save, problem, busy } = useSaving(async () => {
     const used = rows.filter((one_) => one_.read.trim());
     const wrong = [
@@ -63,7 +63,6 @@ export function AddCalibration() {
     say("Saved on this tablet.");
     go(`/bench/curve/${id}`);
   });
-  if (!v) return html`<${Frame} place="bench" title="Enter a calibration"><//>`;
   const change = (i, name) => (event) => {
     const text = event.target.value;
     // Two fields may change before the next drawing: each change begins with what the form holds by then.

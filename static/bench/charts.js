@@ -74,7 +74,7 @@ function Freeze({ chart }) {
   const of = (point) => `${point.run} ${point.position}`;
   const inside = (() => {
     const at = (id, other) => (id ? runs.findIndex(([run]) => run === id) : other);
-    const [from, to] = [at(v?.first, 0), at(v?.last, runs.length - 1)];
+    const [from, to] = [at(v.first, 0), at(v.last, runs.length - 1)];
     return chart.points.filter((point) => runs.findIndex(([run]) => run === point.run) >= from && runs.findIndex(([run]) => run === point.run) <= to);
   })();
   const gone = (point) => v.left_out.find((row) => of(row) === of(point))?.reason || point.left_out;
@@ -88,7 +88,6 @@ function Freeze({ chart }) {
     await forget().catch(() => {});
     say("Saved on this tablet: the limits come with the server's answer.");
   });
-  if (!v) return null;
   const leave = () => {
     const point = inside.find((row) => of(row) === v.out);
     if (!point || !v.cause.trim()) return;

@@ -1,8 +1,7 @@
 // One curve: what it is valid for, how it fits, what is the matter with it, and the standards of another source read against it.
 
 import { html } from "../parts/html.js";
-import { putDraft } from "../parts/db.js";
-import { Choice, TextField, useForm, useSaving } from "../parts/fields.js";
+import { Choice, TextField, keepDraft, useForm, useSaving } from "../parts/fields.js";
 import { day, plain } from "../parts/format.js";
 import { Empty, Frame, Problem, Where, go, say } from "../parts/frame.js";
 import { state } from "../parts/journal.js";
@@ -77,7 +76,6 @@ function AddCheck({ curve }) {
     await forget();
     say("Saved on this tablet.");
   });
-  if (!v) return null;
   return html`<details><summary>Record a check of this curve</summary><form class="stack" onSubmit=${save} novalidate>
     <${Choice} label="What" value=${v.what} options=${[["second source", "Second source"], ["linear range", "Linear range"]]} onChoose=${(what) => set("what", what)} />
     <${TextField} label="Standard" value=${v.source} maxlength="200" onInput=${(text) => set("source", text)} hint="of another lot or maker than the calibration's" />
@@ -89,7 +87,7 @@ function AddCheck({ curve }) {
 async function again(curve) {
   const rows = curve.standards.map((level) => ({ cod: level.cod, read: level.absorbance.join(" ") }));
   const { recipe, lot, instrument, model, weights = "equal", valid_until } = curve;
-  await putDraft("add:calibration", { recipe, lot, instrument, model, weights, valid_until, rows });
+  await keepDraft("add:calibration", { recipe, lot, instrument, model, weights, valid_until, rows });
   go("/bench/stores/calibration");
 }
 

@@ -28,7 +28,6 @@ function CheckForm({ instrument }) {
     await forget();
     say("Saved on this tablet.");
   });
-  if (!v) return null;
   const line = (name, label, hint) => html`<${TextField} label=${label} inputmode="decimal" value=${v[name]} onInput=${(text) => set(name, text)} hint=${hint} />`;
   return html`<form class="card stack" onSubmit=${save} novalidate><h2>Check its ${WHAT[instrument.what]}</h2>${line("wanted", asks.wanted)}${line("found", asks.found, instrument.what === "pipette" ? "at least four deliveries of water, tared" : "")}
     ${instrument.what === "pipette" && line("water_c", "Temperature of the water, °C")}

@@ -38,7 +38,7 @@ const shownOf = (given) => `${given.text} ${given.unit}`;
 /** The form for values beside the COD. */
 export function Measure({ given = "" }) {
   const [v, set, forget] = useForm(`measure:${given}`, { code: given, chloride: "", nitrite: "", ferrous: "", sulfide: "", unit: {}, how: "", note: "" });
-  const { code, problem: wrong } = readCode(v?.code ?? "");
+  const { code, problem: wrong } = readCode(v.code);
   const known = useView(() => (code ? one("interferents", code) : null));
   const { save, problem, busy } = useSaving(async () => {
     if (!code) throw new Error(`Bottle code: ${wrong}.`);
@@ -55,7 +55,6 @@ export function Measure({ given = "" }) {
     say(`Saved on this tablet: values of ${code}.`);
     go("/bench");
   });
-  if (!v) return html`<${Frame} place="bench" title="Measured beside the COD"><//>`;
   return html`<${Frame} place="bench" title="Measured beside the COD"><form class="stack" onSubmit=${save} novalidate>
     <section class="card stack"><${TextField} label="Bottle" class="code" value=${v.code} onInput=${(text) => set("code", text)} maxlength="12" autocomplete="off" autocapitalize="characters"
         wrong=${v.code.length >= 6 && wrong ? wrong : ""} hint=${code ? `Read as ${code}.` : "The six characters on its label."} />

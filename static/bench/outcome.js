@@ -103,7 +103,6 @@ export function Close({ run }) {
     await forget().catch(() => {});
     say("Saved on this tablet: the run is closed.");
   });
-  if (!v) return null;
   return html`<form class="stack" onSubmit=${save} novalidate>
     ${run.questions.map((question) => html`<${Question} key=${keyOf(question)} question=${question} v=${v} set=${set} />`)}
     <${Problem} words=${problem} /><button class="main" disabled=${busy}>Close the run</button></form>`;

@@ -103,7 +103,6 @@ function useStores(v) {
 /** The form for a run. */
 export function Plan() {
   const [v, set, forget] = useForm("plan", BLANK);
-  if (!v) return html`<${Frame} place="bench" title="Plan a run"><//>`;
   return html`<${PlanForm} v=${v} set=${set} forget=${forget} />`;
 }
 

@@ -40,7 +40,7 @@ export function suggested(v, found) {
 export function Receive({ given }) {
   const [v, set, forget] = useForm(`receive:${given ?? ""}`, { ...BLANK, code: given ?? "" });
   const zone = useView(programme)?.zone;
-  const { code, problem: wrong } = readCode(v?.code ?? "");
+  const { code, problem: wrong } = readCode(v.code);
   const bottle = useView(() => (code ? one("bottle", code) : null));
   const sample = useView(() => (bottle?.sample ? one("sample", bottle.sample) : null));
   const point = useView(() => (sample ? one("point", sample.point) : null));
@@ -59,7 +59,6 @@ export function Receive({ given }) {
     say(`Saved on this tablet: ${code} ${decision}.`);
     go("/bench");
   });
-  if (!v) return html`<${Frame} place="bench" title="Receive a bottle"><//>`;
   return html`<${Frame} place="bench" title="Receive a bottle">
     <form class="stack" onSubmit=${save} novalidate>
       <section class="card stack"><${CodeField} label="Bottle" value=${v.code} onInput=${(text) => set("code", text)}

@@ -79,7 +79,6 @@ function Preparation({ recipe }) {
     const query = queryOf(v);
     setSheet({ found: await ask("GET", `${at}?${query}`), paper: `${at}.pdf?${query}` });
   });
-  if (!v) return null;
   const number = (name, label, unit) => html`<${NumberField} label=${label} unit=${unit} value=${v[name]} onInput=${(text) => set(name, text)} />`;
   return html`<form class="card stack" onSubmit=${save} novalidate><h2>Prepare reagents and standards</h2>
     <div class="two">${number("digestion_ml", "Digestion solution wanted", "mL")}${number("acid_ml", "Acid reagent wanted", "mL")}${number("stock", "Stock of phthalate", "mg/L")}${number("stock_ml", "Volume of the stock", "mL")}</div>
@@ -140,7 +139,6 @@ export function AddRecipe() {
     say("Saved on this tablet.");
     go("/bench/stores");
   });
-  if (!v) return null;
   const forms = words?.recipes ?? [];
   const take = (name) => {
     set("form", name);

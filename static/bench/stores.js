@@ -64,7 +64,6 @@ function AddLot() {
     need(given, [["name", "Name"], ["made_on", "Made on"], ["expires_on", "Expires on"]]);
     return ["lot.made", { ...given, recipe: given.recipe || recipes[0]?.id, standardised_on: given.standardised_on || null }];
   });
-  if (!v) return null;
   return html`<${Shell} title="A reagent lot" saving=${saving}>
     <${Select} label="Recipe" value=${v.recipe || recipes[0]?.id} options=${recipes.map((row) => [row.id, row.name])} onChoose=${(id) => set("recipe", id)} />
     <${Choice} label="The lot was" value=${v.origin} options=${["made", "bought"]} onChoose=${(origin) => set("origin", origin)} />
@@ -81,7 +80,6 @@ function AddInstrument() {
     const body = { name: given.name.trim(), what: given.what };
     return ["instrument.added", given.what === "block" ? { ...body, positions: Math.round(read(given.positions).value) } : body];
   });
-  if (!v) return null;
   return html`<${Shell} title="An instrument" saving=${saving}>
     <${Choice} label="Kind" value=${v.what} options=${["photometer", "block", "pipette", "meter"]} onChoose=${(what) => set("what", what)} />
     <${TextField} label="Name" value=${v.name} onInput=${(text) => set("name", text)} />
@@ -94,7 +92,6 @@ function AddContainer() {
     if (read(given.capacity_ml).problem) throw new Error(read(given.capacity_ml).problem);
     return ["container.opened", given];
   });
-  if (!v) return null;
   return html`<${Shell} title="A waste container" saving=${saving}>
     <p class="card wait">Acid COD digest only: acid-resistant, closed, labelled with its contents and hazards. Keep bases, cyanide, sulfide, metals and organics away. State and local rules decide on labels, amounts and days.</p>
     <${TextField} label="Name" value=${v.name} onInput=${(text) => set("name", text)} />

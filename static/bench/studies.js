@@ -42,10 +42,10 @@ export function PlanStudy() {
   const [v, set, forget] = useForm("study", BLANK);
   const recipes = useView(() => all("recipe")).sort((a, b) => b.working_high - a.working_high);
   const photometers = useView(() => all("instrument")).filter((row) => row.what === "photometer");
-  const estimate = number(v?.estimate ?? "");
-  const level = number(v?.level ?? "");
-  const chosen = v?.instruments ?? photometers.slice(0, 1).map((row) => row.id);
-  const recipe = v?.recipe || recipes[0]?.id;
+  const estimate = number(v.estimate);
+  const level = number(v.level);
+  const chosen = v.instruments ?? photometers.slice(0, 1).map((row) => row.id);
+  const recipe = v.recipe || recipes[0]?.id;
   const outside = estimate !== null && level !== null && (level < 2 * estimate || level > 10 * estimate);
   const range = estimate ? `2 to 10 times the estimate: ${plain(2 * estimate, 1)} to ${plain(10 * estimate, 1)} mg/L.` : "2 to 10 times the estimate.";
   const { save, problem, busy } = useSaving(async () => {
@@ -61,7 +61,6 @@ export function PlanStudy() {
     say("Saved on this tablet.");
     go(`/bench/study/${id}`);
   });
-  if (!v) return html`<${Frame} place="bench" title="Plan a study"><//>`;
   return html`<${Frame} place="bench" title="Plan a study"><form class="stack" onSubmit=${save} novalidate>
     <${TextField} label="Name" value=${v.name} onInput=${(text) => set("name", text)} />
     <${Select} label="Recipe" value=${recipe} options=${recipes.map((row) => [row.id, row.name])} onChoose=${(id) => set("recipe", id)} />

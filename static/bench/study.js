@@ -105,7 +105,6 @@ function Finish({ study }) {
 
 function Body({ study, today }) {
   const [v, set] = useForm(`study:${study.id}`, { form: fresh(study, today) });
-  if (!v) return null;
   const setAll = (form) => set("form", form);
   const correct = (row) => setAll({ ...fresh(study, today), row: row.row, tube: row.tube, on: row.on, batch: row.batch, instrument: row.instrument, result: row.result?.text ?? "", none: !row.result, left_out: row.left_out });
   const due = dutiesOf(study, today).map((duty) => ({ ...duty, study }));

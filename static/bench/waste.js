@@ -22,7 +22,6 @@ function Move({ container }) {
     await forget();
     say("Saved on this tablet.");
   });
-  if (!v) return null;
   return html`<details><summary>Record where it goes</summary><form class="stack" onSubmit=${save} novalidate>
     <${Choice} label="What happened" value=${v.to} options=${TO} onChoose=${(to) => set("to", to)} /><${TextField} label="Day" type="date" value=${v.on || today()} onInput=${(text) => set("on", text)} />
     <${TextField} label=${v.to === "picked up" ? "Who took it" : "Who moved it"} value=${v.by} maxlength="200" onInput=${(text) => set("by", text)} />
@@ -55,7 +54,6 @@ function Other() {
     await forget();
     say("Saved on this tablet.");
   });
-  if (!v) return null;
   return html`<details class="card"><summary>Other hazardous waste of the site</summary><form class="stack" onSubmit=${save} novalidate>
     <${TextField} label="Waste" value=${v.stream} maxlength="80" onInput=${(text) => set("stream", text)} /><${TextField} label="Day" type="date" value=${v.on || today()} onInput=${(text) => set("on", text)} />
     <${NumberField} label="Mass" value=${v.mass} unit=${v.unit} units=${["kg", "g"]} onInput=${(text) => set("mass", text)} onUnit=${(unit) => set("unit", unit)} />

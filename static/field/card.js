@@ -79,7 +79,6 @@ export function Card({ id }) {
     return html`<div class="screen"><h1>Unknown point</h1><${Empty} title="This point is not on this tablet">It comes with the next
       contact to the server, if it exists. <a href="/field">All points</a><//></div>`;
   }
-  if (!values) return null;
   const last = all("sample", id).at(-1);
   const visit = openVisit(id);
   const sampler = samplerAt(id);

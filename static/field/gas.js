@@ -34,7 +34,6 @@ function Test({ visit, done }) {
     await forget();
     done();
   });
-  if (!v) return null;
   return html`<form class="stack" onSubmit=${save} novalidate><div class="two">${GASES.map(([name, label, unit]) => html`<${NumberField} key=${name} label=${label} unit=${unit} value=${v[name]} onInput=${(text) => set(name, text)} />`)}</div>
     <${TextField} label="Gas meter" value=${v.meter} maxlength="200" onInput=${(text) => set("meter", text)} hint="its name or serial number; bump-tested today" />
     <${Problem} words=${problem} /><button disabled=${busy}>Save the gas reading</button></form>`;

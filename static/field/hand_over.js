@@ -58,7 +58,6 @@ function Form({ samples, values, set, forget }) {
 export function HandOver() {
   const samples = useView(inHand);
   const [values, set, forget] = useForm("hand_over", BLANK);
-  if (!values) return null;
   return html`<div class="screen stack"><p class="back"><a href="/field/samples">My samples</a></p><h1>Hand over</h1>
     ${samples.length === 0 ? html`<${Empty} title="No bottle is waiting">Bottles appear here once their sample was saved.<//>`
       : html`<${Form} ...${{ samples, values, set, forget }} />`}</div>`;

@@ -89,7 +89,6 @@ export function PlanRound() {
     await forget();
     go(`/field/round/${id}`);
   });
-  if (!v) return null;
   const put = (i, change) => set("stops", v.stops.map((stop, k) => (k === i ? { ...stop, ...change } : stop)));
   return html`<div class="screen stack"><p class="back"><a href="/field/rounds">All rounds</a></p><h1>Plan a round</h1><form class="stack" onSubmit=${save} novalidate>
     <${TextField} label="Name" value=${v.name} maxlength="200" placeholder="Round" onInput=${(text) => set("name", text)} /><${TextField} label="Day" type="date" value=${v.day || today} onInput=${(text) => set("day", text)} />

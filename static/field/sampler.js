@@ -81,7 +81,7 @@ export function SetSampler({ id }) {
   const visit = useView(() => openVisit(id));
   const unit = volumeUnits()[0];
   const [v, set, forget] = useForm(`sampler:${id}`, { ...BLANK, every_unit: unit, expected_unit: unit });
-  if (!point || !v) return html`<div class="screen"><h1>Set a sampler up</h1>${!point && html`<${Empty} title="This point is not on this tablet"><a href="/field">All points</a><//>`}</div>`;
+  if (!point) return html`<div class="screen"><h1>Set a sampler up</h1><${Empty} title="This point is not on this tablet"><a href="/field">All points</a><//></div>`;
   return html`<div class="screen stack"><p class="back"><a href=${visit ? `/field/visit/${visit.id}` : cardOf(id)}>Back</a></p>
     <header><h1>Set a sampler up</h1><p class="soft">${nameOf(point)}</p></header><${Form} ...${{ point, visit, v, set, forget }} /></div>`;
 }

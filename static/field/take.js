@@ -190,7 +190,6 @@ export function Take({ id }) {
   const point = useView(() => one("point", id));
   const [values, set, forget] = useForm(draftKey(id), BLANK);
   if (!point) return html`<div class="screen"><h1>Take a sample</h1><${Empty} title="This point is not on this tablet"><a href="/field">All points</a><//></div>`;
-  if (!values) return null;
   return html`<div class="screen stack"><p class="back"><a href=${cardOf(id)}>Back to the point</a></p>
     <header><h1>Take a sample</h1><p class="soft">${nameOf(point)}</p></header>
     <${Form} ...${{ point, values, set, forget }} /></div>`;

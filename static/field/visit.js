@@ -44,7 +44,7 @@ export function Arrive({ id, stop, round }) {
     await forget();
     go(`/field/visit/${about}`);
   });
-  if (!point || !v) return html`<div class="screen"><h1>Arrive</h1>${!point && html`<${Empty} title="This point is not on this tablet"><a href="/field">All points</a><//>`}</div>`;
+  if (!point) return html`<div class="screen"><h1>Arrive</h1><${Empty} title="This point is not on this tablet"><a href="/field">All points</a><//></div>`;
   const person = (i, name, text) => set("present", v.present.map((one_, k) => (k === i ? { ...one_, [name]: text } : one_)));
   return html`<div class="screen stack"><p class="back"><a href=${round ? `/field/round/${round}` : cardOf(id)}>Back</a></p>
     <header><h1>Arrive</h1><p class="soft">${nameOf(point)}</p></header><${Hazards} point=${point} />
@@ -84,7 +84,7 @@ const LEAVING = { outcome: "", reason: "", told: "", remarks: "", signature: UNS
 function Leave({ visit, point }) {
   const [v, set, forget] = useForm(`leave:${visit.id}`, LEAVING);
   const likely = visit.sampler || all("sampler", point.id).some((sampler) => sampler.visit === visit.id) ? "sampler set" : all("sample", point.id).some((sample) => sample.visit === visit.id) ? "sampled" : "";
-  const outcome = v?.outcome || likely;
+  const outcome = v.outcome || likely;
   const plainEnd = outcome === "sampled" || outcome === "sampler set";
   const { save, problem, busy } = useSaving(async () => {
     if (!outcome) throw new Error("Choose how the visit ended.");
@@ -96,7 +96,6 @@ function Leave({ visit, point }) {
     say("Saved on this tablet");
     go(visit.round ? `/field/round/${visit.round}` : cardOf(point.id));
   });
-  if (!v) return null;
   return html`<form class="card stack" onSubmit=${save} novalidate><h2>Leave</h2>
     <${Choice} label="How it ended" value=${outcome} options=${OUTCOMES} onChoose=${(key) => set("outcome", key)} />
     ${ASKS[outcome] && html`<p class="soft">${ASKS[outcome]}</p>`}
@@ -152,7 +151,7 @@ export function Split({ id }) {
     say("Saved on this tablet");
     go(back);
   });
-  if (!sample || !v) return html`<div class="screen"><h1>Split</h1>${!sample && html`<${Empty} title="This sample is not on this tablet"><a href="/field/samples">My samples</a><//>`}</div>`;
+  if (!sample) return html`<div class="screen"><h1>Split</h1><${Empty} title="This sample is not on this tablet"><a href="/field/samples">My samples</a><//></div>`;
   return html`<div class="screen stack"><p class="back"><a href=${back}>Back</a></p><h1>Split sample <span class="code">${sample.bottle}</span></h1>
     <p class="soft">Both parts from the same mixed container, poured in turns.</p><form class="stack" onSubmit=${save} novalidate>
     <${TextField} label="Who got the other part" value=${v.to} wrong=${asked && !v.to.trim() ? "A name is needed." : ""} maxlength="200" onInput=${(text) => set("to", text)} />

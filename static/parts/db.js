@@ -174,6 +174,11 @@ export async function putMeta(key, value) {
   await tx.done;
 }
 
+/** Everything typed into forms that were not saved yet. */
+export async function allDrafts() {
+  return (await begin("drafts")).store.getAll();
+}
+
 /** What was typed into a form that was not saved yet, or null. */
 export async function getDraft(key) {
   const tx = await begin("drafts");

@@ -1,7 +1,7 @@
 // Form fields. A number is a text with a decimal keypad: kept as typed, shown back as it was read.
 
 import { html, useEffect, useRef, useState } from "./html.js";
-import { dropDraft, getDraft, putDraft } from "./db.js";
+import { allDrafts, dropDraft, getDraft, putDraft } from "./db.js";
 import { plain } from "./format.js";
 import { read } from "./measured.js";
 import { shown } from "./units.js";
@@ -122,34 +122,64 @@ function noteTyped(key, values) {
   }
 }
 
+/** @type {Map<string, object>} the drafts as they stood when the page began and as typed since, so that a form is whole at its first drawing */
+const drafts = new Map();
+
+/** Read what was typed and not saved, before the first screen. */
+export async function loadDrafts() {
+  for (const { key, values } of await allDrafts()) drafts.set(key, values);
+}
+
+/** Lay out what a form will begin with. */
+export function keepDraft(key, values) {
+  drafts.set(key, values);
+  return putDraft(key, values);
+}
+
+/** What another window may have typed or saved since; undefined when nothing differs. */
+async function fromElsewhere(key, held) {
+  const found = await getDraft(key).catch(() => held);
+  return JSON.stringify(found) === JSON.stringify(held) ? undefined : found;
+}
+
 /**
  * A form's values, kept as a draft on every input and restored after the page was killed.
- * Returns [values, set(name, value), forget()]; values is null until the draft was looked for.
+ * Returns [values, set(name, value), forget()].
  */
 export function useForm(key, initial) {
-  const [values, setValues] = useState(null);
+  const begun = () => ({ key, values: { ...initial, ...drafts.get(key) } });
+  const [held, setHeld] = useState(begun);
+  const touched = useRef(null);
+  const { values } = held.key === key ? held : begun();
   useEffect(() => {
     let here = true;
-    getDraft(key)
-      .catch(() => null)
-      .then((draft) => {
-        if (!here) return;
-        noteTyped(key, draft);
-        setValues({ ...initial, ...draft });
-      });
+    const before = drafts.get(key) ?? null;
+    noteTyped(key, before);
+    fromElsewhere(key, before).then((found) => {
+      if (!here || found === undefined || touched.current === key) return;
+      if (found) drafts.set(key, found);
+      else drafts.delete(key);
+      noteTyped(key, found);
+      setHeld(begun());
+    });
     return () => {
       here = false;
       noteTyped(key, null);
     };
   }, [key]);
-  const set = (name, value) => setValues((before) => {
-    const after = { ...before, [name]: typeof value === "function" ? value(before[name]) : value };
-    noteTyped(key, after);
-    putDraft(key, after).catch(() => {});
-    return after;
-  });
+  const set = (name, value) => {
+    touched.current = key;
+    setHeld((last) => {
+      const before = last.key === key ? last.values : begun().values;
+      const after = { ...before, [name]: typeof value === "function" ? value(before[name]) : value };
+      noteTyped(key, after);
+      keepDraft(key, after).catch(() => {});
+      return { key, values: after };
+    });
+  };
   const forget = () => {
     noteTyped(key, null);
+    drafts.delete(key);
     return dropDraft(key);
   };
   return [values, set, forget];

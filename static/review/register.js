@@ -57,7 +57,6 @@ export function Register() {
     say("Saved on this tablet.");
     go(`/review/point/${point}/limit`);
   });
-  if (!v) return html`<${Frame} place="review" title="Register"><//>`;
   return html`<${Frame} place="review" title="Register a discharger">
     <form class="stack" onSubmit=${save}>
       <${TextField} label="Discharger" value=${v.name} onInput=${(name) => set("name", name)} required />
@@ -83,7 +82,6 @@ export function RegisterPoint({ id }) {
     await forget().catch(() => {});
     go(`/review/point/${point}/limit`);
   });
-  if (!v) return html`<${Frame} place="review" title="Register a point"><//>`;
   return html`<${Frame} place="review" title="Register a point" about=${discharger?.name}>
     <form class="stack" onSubmit=${save}><${PointFields} v=${v} set=${set} /><${Problem} words=${problem} /><button class="main" disabled=${busy}>Save on this tablet</button></form><//>`;
 }
@@ -102,7 +100,7 @@ export function SetLimit({ id }) {
     say("Saved on this tablet.");
     go(`/review/point/${encodeURIComponent(id)}`);
   });
-  if (!point || !v) return html`<${Frame} place="review" title="Set a limit">${!point && html`<${Empty} title="This point is not on this tablet"><a href="/review">Review</a><//>`}<//>`;
+  if (!point) return html`<${Frame} place="review" title="Set a limit"><${Empty} title="This point is not on this tablet"><a href="/review">Review</a><//><//>`;
   return html`<${Frame} place="review" title="Set a limit" about="${point.discharger_name}, ${point.name}">
     <form class="stack" onSubmit=${save}>
       <p class="soft">The limit in force on the day of a sample decides; earlier results keep the verdict they were given. A limit is needed before a result can be judged.</p>
