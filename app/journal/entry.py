@@ -56,6 +56,8 @@ class Entry:
     ----------
     raw : bytes
         The received text; what the chain's digest covers.
+    blobs : tuple of str
+        SHA-256 of each attachment that it names; they come apart from it.
     """
 
     id: str
@@ -72,6 +74,7 @@ class Entry:
     base: int
     body: dict[str, Any]
     raw: bytes
+    blobs: tuple[str, ...] = ()
 
     @property
     def raw_digest(self) -> str:
@@ -130,4 +133,5 @@ def _entry(given: dict[str, Any], raw: bytes) -> Entry:
         "by",
         "base",
     )
-    return Entry(**{name: given[name] for name in names}, body=given["body"], raw=raw)
+    told = {name: given[name] for name in names}
+    return Entry(**told, body=given["body"], raw=raw, blobs=tuple(given.get("blobs", ())))

@@ -68,6 +68,18 @@ CREATE TABLE session (
 """
 
 
+_PARTS = """
+CREATE TABLE part (
+  digest TEXT NOT NULL,
+  at INTEGER NOT NULL,
+  size INTEGER NOT NULL,
+  bytes BLOB NOT NULL,
+  received_at TEXT NOT NULL,
+  PRIMARY KEY (digest, at)
+) STRICT;
+"""
+
+
 @migrations()
 def m001_journal(db: Database) -> None:
     """The journal, append-only by trigger."""
@@ -84,3 +96,9 @@ def m002_records(db: Database) -> None:
 def m003_beside(db: Database) -> None:
     """What is not derived: attachments, credentials, sessions, the store's own facts."""
     db.executescript(_BESIDE)
+
+
+@migrations()
+def m004_parts(db: Database) -> None:
+    """What has come of attachments that are not whole yet."""
+    db.executescript(_PARTS)

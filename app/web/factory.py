@@ -12,7 +12,17 @@ from app.journal.store import Store
 from app.journal.units import STATIC
 from app.records.ledger import Ledger
 from app.records.rebuild import bring_up_to_date
-from app.web import certificates, papers, programme, security, sessions, shell, store_papers, sync
+from app.web import (
+    attachments,
+    certificates,
+    papers,
+    programme,
+    security,
+    sessions,
+    shell,
+    store_papers,
+    sync,
+)
 from app.web.backups import Backups
 from app.web.context import Context
 from app.web.limits import Attempts
@@ -62,7 +72,7 @@ def create_app(
     )
     security.install(app)
     api = security.OneBodyApi(app)
-    for module in (sessions, programme, sync, certificates, papers, store_papers):
+    for module in (sessions, programme, sync, attachments, certificates, papers, store_papers):
         api.register_blueprint(module.blueprint)
     app.register_blueprint(certificates.public)
     app.register_blueprint(shell.blueprint)

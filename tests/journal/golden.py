@@ -21,6 +21,16 @@ from tests.tools import devices
 GOLDEN = Path(__file__).with_name("golden")
 
 
+def _photo(device: devices.Device) -> dict[str, bytes]:
+    """Return a photo, and the arrival of its picture."""
+    of = {"type": "visit", "id": "0197b3b2-7c1e-7f60-8a51-2f6d1c0a4e12"}
+    body = {"of": of, "taken_at": "2031-06-01T09:30:00-06:00", "caption": "the crest, from above"}
+    photo = device.make("photo.taken", "0197b3b2-7c1e-7f60-8a51-2f6d1c0a4e13", body, blobs=["2" * 64])
+    picture = {"size": 412_345, "media_type": "image/jpeg"}
+    arrived = device.make("attachment.arrived", "2" * 64, picture)
+    return {"photo.taken": photo.encode(), "attachment.arrived": arrived.encode()}
+
+
 def texts() -> dict[str, bytes]:
     """Return one text of each kind."""
     found: dict[str, bytes] = {}
@@ -43,6 +53,7 @@ def texts() -> dict[str, bytes]:
     settled = {"decision": "set aside", "reason": "the label was wrong"}
     about = "0197b3b2-7c1e-7f60-8a51-2f6d1c0a4e11"
     found["entry.settled"] = device.make("entry.settled", about, settled).encode()
+    found |= _photo(device)
     issued = {
         "number": "2031-0001",
         "result": "run-1:223D38",
